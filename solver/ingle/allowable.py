@@ -39,7 +39,7 @@ def allowable(cases: Cases, structure: Structure, steps: Steps) -> Allowable:
     zero = np.zeros_like(steps.d)
     best = np.full_like(steps.d, np.inf)
     governs = np.zeros(len(steps.d), dtype=np.int8)
-    broken = np.zeros(len(steps.d), dtype=bool)
+    broken = np.zeros(len(steps.d), dtype=np.int8)  # by which limit
     limited = np.zeros(len(steps.d), dtype=bool)
     A = solve(cases, structure, steps, zero)
     B = solve(_without_sinks(cases), structure, steps, zero + 1.0)
@@ -47,10 +47,10 @@ def allowable(cases: Cases, structure: Structure, steps: Steps) -> Allowable:
     def first(q: Array, given: np.ndarray, over: np.ndarray, which: int) -> None:
         nonlocal best, governs, broken, limited
         limited = limited | given
-        broken = broken | over
+        broken = np.where((broken == 0) & given & over, which, broken).astype(np.int8)
         sooner = given & (q < best)
         best = np.where(sooner, q, best)
-        governs = np.where(sooner | (over & given), which, governs).astype(np.int8)
+        governs = np.where(sooner, which, governs).astype(np.int8)
 
     for which, limit, rise, slope in (
         (LEFT_LIMIT, cases.left_limit, A.rise_left, B.rise_left),
@@ -68,9 +68,9 @@ def allowable(cases: Cases, structure: Structure, steps: Steps) -> Allowable:
         q = _peak_root(cases, structure, steps, A, B, np.where(given & ~over, room, np.nan))
         first(q, given, over, PEAK_LIMIT)
 
-    lacking = np.where(~limited, NO_LIMIT, np.where(broken, BROKEN_WITHOUT_SOURCE, 0))
+    lacking = np.where(~limited, NO_LIMIT, np.where(broken > 0, BROKEN_WITHOUT_SOURCE, 0))
     lacking = np.where((lacking == 0) & np.isinf(best), NEVER_REACHED, lacking).astype(np.int8)
-    return Allowable(np.where(lacking == 0, best, np.nan), governs, lacking)
+    return Allowable(np.where(lacking == 0, best, np.nan), np.where(broken > 0, broken, governs), lacking)
 
 
 def _without_sinks(cases: Cases) -> Cases:

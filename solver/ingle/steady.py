@@ -70,18 +70,32 @@ class Solution:
         return allowable(self.cases, self.structure, self.steps)
 
     @cached_property
-    def headroom(self) -> Array:
-        """Kelvin left before the first limit, negative where one is passed; NaN where there is no limit."""
+    def rooms(self) -> Array:
+        """Kelvin left before each limit, by its number less 1: peak, left face, right face; infinite where there is none."""
         state, cases = self.state, self.cases
-        left = np.full(len(cases), np.nan)
-        for limit, rise in (
-            (cases.limit, self.extremes.peak),
-            (cases.left_limit, state.rise_left),
-            (cases.right_limit, state.rise_right),
+        rooms = np.full((3, len(cases)), np.inf)
+        for room, limit, rise in zip(
+            rooms,
+            (cases.limit, cases.left_limit, cases.right_limit),
+            (self.extremes.peak, state.rise_left, state.rise_right),
+            strict=True,
         ):
             if limit is not None:
-                left = np.fmin(left, (limit - state.sink) - rise)
-        return left
+                room[:] = np.where(np.isnan(limit), np.inf, (limit - state.sink) - rise)
+        return rooms
+
+    @cached_property
+    def governs(self) -> np.ndarray:
+        """The limit that the source would reach first; where no source can be allowed, the one now nearest or most passed."""
+        nearest = np.argmin(self.rooms, axis=0) + 1
+        has_limit = np.isfinite(self.rooms).any(axis=0)
+        return np.where(self.allowable.lacking == 0, self.allowable.governs, np.where(has_limit, nearest, 0))
+
+    @cached_property
+    def headroom(self) -> Array:
+        """Kelvin left before the governing limit, negative where it is passed; NaN where there is no limit."""
+        room = np.choose(np.maximum(self.governs - 1, 0), self.rooms)
+        return np.where(self.governs > 0, room, np.nan)
 
     @cached_property
     def probe(self) -> Array:
@@ -117,7 +131,7 @@ QUANTITIES: dict[str, Callable[[Solution], Array]] = {
     "balance": lambda s: field.balance(s.state),
     "headroom": lambda s: s.headroom,
     "allowable_generation": lambda s: s.allowable.generation,
-    "governs": lambda s: s.allowable.governs.astype(np.float64),
+    "governs": lambda s: s.governs.astype(np.float64),
     "lacking": lambda s: s.allowable.lacking.astype(np.float64),
 }
 
@@ -136,8 +150,8 @@ def steady(cases: Cases, wanted: Iterable[str]) -> Answers:
     ``wanted`` names of ``QUANTITIES``: temperatures in °C (``peak``, ``left_face``, ``right_face``, ``mean``,
     ``probe_temperature``), ``peak_place`` [m] from the left face or as a radius, ``left_flux`` and ``right_flux`` [W/m² of
     that face], ``left_heat``, ``right_heat`` and ``heat_made`` [W/m² of wall, W/m of cylinder, W of sphere],
-    ``left_share`` and ``balance`` [1], ``headroom`` [K], ``allowable_generation`` [W/m³] with ``governs`` (1 ``limit``,
-    2 ``left_limit``, 3 ``right_limit``) and ``lacking`` (1 no limit, 2 a limit broken with no source, 3 never reached).
+    ``left_share`` and ``balance`` [1], ``headroom`` [K] before the limit that ``governs`` (1 ``limit``, 2 ``left_limit``,
+    3 ``right_limit``, 0 none), ``allowable_generation`` [W/m³] and ``lacking`` (1 no limit, 2 a limit broken with no source, 3 never reached).
     Raises KeyError for another name. Source: Fourier's law and conservation of heat, integrated in closed form.
     """
     wanted = tuple(wanted)

@@ -1,0 +1,306 @@
+"""Rows of values under a plan of headings, to columns of answers: the one path every front end takes.
+
+    cells → headings and columns → cases (SI arrays) → solver → answers → cells
+
+Work goes in blocks of rows from the first check to the last answer. Within a block, rows that fill the same headings share
+a recipe; a row with a fault is left out of its group and keeps nothing but its fault.
+"""
+
+from __future__ import annotations
+
+from collections.abc import Sequence
+from dataclasses import dataclass, field
+
+import numpy as np
+
+from ingle import Status, steady
+from ingle.steady import BLOCK
+from ingle_addin import answers, checks, columns, recipe
+from ingle_addin.cautions import caution_masks
+from ingle_addin.cells import CellError
+from ingle_addin.columns import Values
+from ingle_addin.faults import ROW, Fault
+from ingle_addin.heading_reader import Asked, Column, Plan
+from ingle_addin.recipe import Recipe
+from ingle_addin.units import Kind
+
+_STATUS_FAULTS = {
+    Status.NO_OUTLET: Fault(
+        CellError.NUM, f"no heat can leave the body in {ROW}, so it has no steady state; give a face a film above 0 with its "
+        "fluid, or hold it at a temperature"),
+    Status.BELOW_ABSOLUTE_ZERO: Fault(
+        CellError.NUM, f"the answer in {ROW} would lie below absolute zero; check the signs of the generation and the fluxes"),
+    Status.OVERFLOW: Fault(
+        CellError.NUM, f"the values in {ROW} are so far apart that the answer is beyond the range of numbers; check their units"),
+}  # fmt: skip
+
+
+@dataclass
+class Evaluation:
+    """Answers of n rows. ``values[j]`` are numbers (in the answer's unit, NaN without one) or texts; ``fault[j]`` indexes
+    ``faults`` or is −1. ``blank`` marks rows that are wholly blank; ``caution`` indexes ``cautions`` or is −1."""
+
+    n: int
+    asked: tuple[Asked | Fault, ...]
+    values: list[np.ndarray]
+    fault: list[np.ndarray]
+    blank: np.ndarray
+    caution: np.ndarray
+    faults: list[Fault] = field(default_factory=list)
+    cautions: list[Fault] = field(default_factory=list)
+    known: dict[Fault, int] = field(default_factory=dict)
+
+    def number(self, fault: Fault) -> int:
+        """The fault's number in ``faults``."""
+        if fault not in self.known:
+            self.known[fault] = len(self.faults)
+            self.faults.append(fault)
+        return self.known[fault]
+
+
+def evaluate(plan: Plan, table: Sequence[Values], asked: Sequence[Asked | Fault], mismatch: Fault | None = None) -> Evaluation:
+    """Answer the rows of a table; never raises for anything a cell may hold.
+
+    ``table`` has one column a heading, each of n rows or of one that serves all. ``mismatch`` is a fault of the call
+    itself, such as a wrong number of columns, which every row that is not blank then has.
+    """
+    n = max((len(column) for column in table), default=0)
+    result = Evaluation(
+        n,
+        tuple(asked),
+        [np.full(n, None, object) if _is_text(a) else np.full(n, np.nan) for a in asked],
+        [np.full(n, -1, np.intp) for _ in asked],
+        np.zeros(n, bool),
+        np.full(n, -1, np.intp),
+    )
+    spoilt = mismatch or plan.fault
+    with np.errstate(all="ignore"):
+        for start in range(0, n, BLOCK):
+            rows = slice(start, min(start + BLOCK, n))
+            _Block(plan, [column.rows(rows.start, rows.stop) for column in table], result, rows).run(spoilt)
+    return result
+
+
+def _is_text(asked: Asked | Fault) -> bool:
+    return isinstance(asked, Asked) and asked.unit.kind is Kind.TEXT
+
+
+class _Block:
+    """A block of rows on its way from cells to answers."""
+
+    def __init__(self, plan: Plan, table: list[Values], result: Evaluation, rows: slice) -> None:
+        self.plan, self.table, self.result, self.rows = plan, table, result, rows
+        self.n = rows.stop - rows.start
+        self.fault: np.ndarray | None = None  # of the row as a whole, made when the first is found
+        self.first = np.zeros(0, bool)
+        self.base: dict[int, np.ndarray] = {}
+        self.filled: dict[int, np.ndarray | bool] = {}
+        self.words: dict[int, tuple[np.ndarray | None, list[str | None]]] = {}
+
+    def run(self, spoilt: Fault | None) -> None:
+        """Check the cells, group the rows and answer each group."""
+        if spoilt is not None:
+            self._spoil(spoilt)
+            return
+        for column in self.plan.columns:
+            self._check(column)
+        for key, rows in self._groups():
+            self._answer(key, rows)
+
+    def _spoil(self, fault: Fault) -> None:
+        blank: np.ndarray | bool = True
+        for column in self.table if len(self.table) != self.plan.width else [self.table[c.index] for c in self.plan.columns]:
+            blank = blank & column.blank()
+        self.result.blank[self.rows] = blank
+        for j, asked in enumerate(self.result.asked):
+            own = asked if isinstance(asked, Fault) else fault
+            self.result.fault[j][self.rows] = np.where(self.result.blank[self.rows], -1, self.result.number(own))
+
+    def _flag(self, mask: np.ndarray, fault: Fault, first: bool = False) -> None:
+        """The rows' fault, where they have none yet; one that goes ``first`` replaces any that did not."""
+        if self.fault is None:
+            self.fault = np.full(self.n, -1, np.intp)
+            self.first = np.zeros(self.n, bool)
+        free = self.fault < 0
+        if first:
+            free |= ~self.first
+            self.first |= mask
+        self.fault[mask & free] = self.result.number(fault)
+
+    # Cells, a heading at a time.
+
+    def _check(self, column: Column) -> None:
+        values = self.table[column.index]
+        if column.unit.kind is Kind.TEXT:
+            self._check_words(column, values)
+            return
+        if values.numbers is None:
+            values = columns.from_cells(values.cells.tolist() if values.cells is not None else [])
+            if values.kinds is None and values.cells is not None:  # texts alone
+                kinds = np.fromiter(map(columns.kind_of, values.cells), np.int8, self.n)
+                values = Values(np.full(self.n, np.nan), kinds, values.cells)
+        numbers = values.numbers
+        assert numbers is not None
+        base = column.unit.to_base(numbers)
+        if values.kinds is None:
+            blank = np.isnan(numbers)
+            self.filled[column.index] = ~blank if blank.any() else True
+        else:
+            self.filled[column.index] = values.kinds != columns.BLANK
+            self._check_odd(column, values)
+        bad = checks.outside(column, base)
+        if bad is not None:
+            self._flag(bad, checks.range_fault(column))
+        self.base[column.index] = base
+
+    def _check_odd(self, column: Column, values: Values) -> None:
+        assert values.kinds is not None and values.cells is not None
+        odd = np.flatnonzero(values.kinds >= columns.TEXT)
+        seen: dict[object, list[int]] = {}
+        for row in odd:  # reading: a fault is worded from the cell itself
+            cell = values.cells[row]
+            seen.setdefault(columns.key(cell), []).append(row)
+        for rows in seen.values():
+            mask = np.zeros(self.n, bool)
+            mask[rows] = True
+            cell = values.cells[rows[0]]
+            self._flag(mask, checks.cell_fault(column, cell), first=isinstance(cell, CellError))
+
+    def _check_words(self, column: Column, values: Values) -> None:
+        if values.cells is None:
+            assert values.numbers is not None
+            values = columns.from_objects(values.numbers)
+        codes, found = columns.codes(values)
+        words: list[str | None] = []
+        for code, cell in enumerate(found):
+            words.append(None if columns.is_blank(cell) else checks.word(cell))
+            fault = None if columns.is_blank(cell) else checks.word_fault(column, cell)
+            if fault is not None:
+                mask = np.ones(self.n, bool) if codes is None else codes == code
+                self._flag(mask, fault, first=isinstance(cell, CellError))
+        self.words[column.index] = codes, words
+        blanks = np.array([w is None for w in words])
+        self.filled[column.index] = (not blanks[0]) if codes is None else ~blanks[codes]
+
+    # Groups of rows that fill the same headings with the same shape.
+
+    def _groups(self) -> list[tuple[tuple[tuple[int, ...], str | None], np.ndarray | slice]]:
+        used = self.plan.columns
+        mixed = [c for c in used if not isinstance(self.filled[c.index], bool)]
+        always = [c.index for c in used if self.filled[c.index] is True]
+        shape = next((c for c in used if c.item.name == "shape"), None)
+        codes, words = self.words[shape.index] if shape else (None, [None])
+        keys = np.zeros(self.n, np.int64) if codes is None else codes.astype(np.int64)
+        blank = np.zeros(self.n, bool) if always else np.ones(self.n, bool)
+        for count, column in enumerate(mixed):
+            filled = self.filled[column.index]
+            assert isinstance(filled, np.ndarray)
+            blank &= ~filled
+            keys = keys * 2 + filled
+            if count % 40 == 39:  # before the bits run out
+                keys = np.unique(keys, return_inverse=True)[1].reshape(-1).astype(np.int64)
+        self.result.blank[self.rows] = blank
+        clean: np.ndarray | None = None
+        if self.fault is not None:
+            self.fault[blank] = -1
+            self._spread(self.fault)
+            clean = (self.fault < 0) & ~blank
+        elif blank.any():
+            clean = ~blank
+        if clean is None and codes is None and not mixed:
+            return [((tuple(always), words[0]), slice(None))]
+        rows = np.arange(self.n) if clean is None else np.flatnonzero(clean)
+        groups: list[tuple[tuple[tuple[int, ...], str | None], np.ndarray | slice]] = []
+        _, first, inverse = np.unique(keys[rows], return_index=True, return_inverse=True)
+        for number, start in enumerate(first):
+            example = rows[start]
+            filled_columns = tuple(
+                c.index for c in used if self.filled[c.index] is True or (c in mixed and self.filled[c.index][example])  # type: ignore[index]
+            )
+            text = words[0] if codes is None else words[codes[example]]
+            groups.append(((filled_columns, text), rows[inverse.reshape(-1) == number]))
+        return groups
+
+    def _spread(self, fault: np.ndarray) -> None:
+        """Give every answer the rows' own fault."""
+        for j in range(len(self.result.asked)):
+            part = self.result.fault[j][self.rows]
+            self.result.fault[j][self.rows] = np.where(part < 0, fault, part)
+
+    # Answers of one group.
+
+    def _answer(self, key: tuple[tuple[int, ...], str | None], rows: np.ndarray | slice) -> None:
+        made = _recipe(self.plan, key)
+        result = self.result
+        if isinstance(made, Fault):
+            for j in range(len(result.asked)):
+                self._put_fault(j, rows, made)
+            return
+        ready = [_ready(a, self.plan, made) if isinstance(a, Asked) else a for a in result.asked]
+        wanted = dict.fromkeys(name for r in ready if isinstance(r, answers.Ready) for name in r.quantities)
+        for j, r in enumerate(ready):
+            if isinstance(r, Fault):
+                self._put_fault(j, rows, r)
+        judged = any(isinstance(a, Asked) and a.item.quantity in ("why", "verdict") for a in result.asked)
+        if not wanted:
+            return
+        cache: dict[str, np.ndarray] = {}
+
+        def get(slot: str) -> np.ndarray:
+            if slot not in cache:
+                cache[slot] = self.base[made.filled[slot].index][rows]
+            return cache[slot]
+
+        faults: list[tuple[np.ndarray, Fault]] = []
+        cases, extent, scale = recipe.cases_of(made, get, lambda mask, fault: faults.append((mask, fault)))
+        solved = steady(cases, wanted)
+        failed = [(solved.status == code, fault) for code, fault in _STATUS_FAULTS.items()] if solved.status.any() else []
+        whole = [(mask, fault) for mask, fault in (*faults, *failed) if mask.any()]
+        if judged:
+            for mask, caution in caution_masks(made, get, cases):
+                self._put_caution(rows, mask, caution)
+        context = answers.Solved(solved.values, extent, scale, get)
+        for j, r in enumerate(ready):
+            if isinstance(r, answers.Ready):
+                values, own = r.work(context)
+                self._put(j, rows, values, [*whole, *((mask, fault) for mask, fault in own if mask.any())])
+
+    def _put_fault(self, j: int, rows: np.ndarray | slice, fault: Fault) -> None:
+        self.result.fault[j][self.rows][rows] = self.result.number(fault)
+
+    def _put_caution(self, rows: np.ndarray | slice, mask: np.ndarray, caution: Fault) -> None:
+        part = self.result.caution[self.rows]
+        chosen = np.arange(self.n)[rows][mask]
+        chosen = chosen[part[chosen] < 0]
+        part[chosen] = len(self.result.cautions)
+        self.result.cautions.append(caution)
+
+    def _put(self, j: int, rows: np.ndarray | slice, values: np.ndarray, faults: list[tuple[np.ndarray, Fault]]) -> None:
+        asked = self.result.asked[j]
+        assert isinstance(asked, Asked)
+        if asked.unit.kind is not Kind.TEXT:
+            values = asked.unit.from_base(values) + 0.0  # + 0.0: no cell shows −0
+        if faults:
+            number = np.full(len(values), -1, np.intp)
+            for mask, fault in faults:
+                number[mask & (number < 0)] = self.result.number(fault)
+            self.result.fault[j][self.rows][rows] = number
+            bad = number >= 0
+            values = np.where(bad, None if values.dtype == object else np.nan, values)
+        self.result.values[j][self.rows][rows] = values
+
+
+def _recipe(plan: Plan, key: tuple[tuple[int, ...], str | None]) -> Recipe | Fault:
+    made = plan.recipes.get(key)
+    if made is None:
+        made = recipe.build(plan, tuple(c for c in plan.columns if c.index in key[0]), key[1])
+        plan.recipes[key] = made
+    return made
+
+
+def _ready(asked: Asked, plan: Plan, made: Recipe) -> answers.Ready | Fault:
+    found = made.answers.get(asked)
+    if found is None:
+        found = answers.ready(asked, plan, made)
+        made.answers[asked] = found
+    return found

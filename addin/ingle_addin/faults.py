@@ -1,0 +1,43 @@
+"""Why a cell has no answer: the error it shows and the sentence behind it, with the row and the value filled in late."""
+
+from __future__ import annotations
+
+from dataclasses import dataclass
+
+from ingle_addin.cells import CellError
+
+# Stand for the row and the cell's value in a sentence until it is shown; no heading can hold them.
+ROW, HERE = "\x00", "\x01"
+LONGEST = 255
+
+
+@dataclass(frozen=True)
+class Fault:
+    """``error`` is the cell's; ``sentence`` may hold ROW and HERE; ``column`` is the column whose value HERE stands for."""
+
+    error: CellError
+    sentence: str
+    column: int = -1
+
+
+def quoted(text: str) -> str:
+    """A user's own text inside a sentence, short and on one line."""
+    line = " ".join("".join(c if c.isprintable() else " " for c in text).split())
+    return f"'{line if len(line) <= 60 else line[:57] + '...'}'"
+
+
+def row_words(number: int) -> str:
+    """How a sentence names a row: by its number among several, else as this one."""
+    return f"row {number}" if number > 0 else "this row"
+
+
+def finished(sentence: str, row: int, value: str = "") -> str:
+    """The sentence as shown: the row and value in their places, at most 255 characters."""
+    text = sentence.replace(ROW, row_words(row)).replace(HERE, value)
+    text = text[:1].upper() + text[1:]
+    return text if len(text) <= LONGEST else text[: LONGEST - 3] + "..."
+
+
+def number_text(x: float) -> str:
+    """A number as a person would type it."""
+    return f"{x:.10g}"
