@@ -16,7 +16,9 @@ from ingle_addin.recipe import Extent, Recipe
 from ingle_addin.units import Kind
 
 _PLAIN = ("peak", "peak_place", "mean", "probe_temperature", "left_share", "balance", "headroom")
-_GOVERNS = ("allowable_generation", "governs", "lacking")
+_ALLOWED = ("allowable_generation", "first_broken", "lacking")
+# A limit is passed when the temperature is this much above it: less is rounding, at an allowable source put back.
+_PASSED = 1e-8
 _SHAPE_WORDS = {Shape.WALL: "wall", Shape.CYLINDER: "cylinder", Shape.SPHERE: "sphere"}
 
 
@@ -57,14 +59,16 @@ def not_yet(label: str) -> Fault:
 def ready(asked: Asked, plan: Plan, recipe: Recipe) -> Ready | Fault:
     """How an answer is worked out on a recipe's rows, or why it has none there."""
     quantity = asked.item.quantity
-    if quantity in ("why", "verdict"):
-        quantity = "peak"  # they judge the row by its peak
     if not quantity or asked.layer > 1:
         return not_yet(asked.label)
     if quantity.startswith("allowable ") or quantity == "limited by":
         return _allowable(asked, plan, recipe)
     if recipe.no_source is not None:
         return recipe.no_source
+    if quantity == "why":
+        return Ready(("peak",), lambda solved: (np.full(len(solved.values["peak"]), "ok", object), []))
+    if quantity == "verdict":
+        return Ready(("peak", "least_room"), _verdict)
     if quantity == "utilisation":
         return _utilisation(asked, plan, recipe)
     if quantity == "face":
@@ -81,6 +85,11 @@ def ready(asked: Asked, plan: Plan, recipe: Recipe) -> Ready | Fault:
     if quantity == "left_share":
         return _plain(quantity, _nothing_leaves, 100.0)
     return _plain(quantity, factor=100.0 if quantity == "balance" else 1.0)
+
+
+def _verdict(solved: Solved) -> Worked:
+    room = solved.values["least_room"]
+    return np.where(room < -_PASSED, "over limit", np.where(np.isfinite(room), "ok", "no limit")).astype(object), []
 
 
 def _nothing_leaves(share: Array) -> list[tuple[np.ndarray, Fault]]:
@@ -128,12 +137,14 @@ def _heat(asked: Asked, recipe: Recipe) -> Ready | Fault:
             return _plain(f"{asked.side}_flux")
         if shape == Shape.WALL:
             return _plain(heat)
-        return Fault(CellError.VALUE, f"{asked.label}: heat made in a {word} has no one face; ask for it in W or W/m")
+        return Fault(CellError.NA, f"{asked.label}: heat made in a {word} has no one face; ask for it in W or W/m")
     if kind is Kind.LINE_POWER:
         if shape == Shape.SPHERE:
-            return Fault(CellError.VALUE, f"{asked.label}: a sphere has no length; ask for it in W")
+            return Fault(CellError.NA, f"{asked.label}: a sphere has no length; ask for it in W")
         if shape == Shape.WALL:
-            return Fault(CellError.NA, f"{asked.label}: the wall in {ROW} has no length; ask in W, with its area, or in W/m²")
+            return Fault(
+                CellError.NA, f"{asked.label}: the wall in {ROW} has no length; ask in W, with its area, or in W/m²"
+            )
         return _plain(heat)
     if shape == Shape.SPHERE:
         return _plain(heat)
@@ -147,13 +158,13 @@ def _heat(asked: Asked, recipe: Recipe) -> Ready | Fault:
 
 
 def _limit_faults(solved: Solved, recipe: Recipe) -> list[tuple[np.ndarray, Fault]]:
-    lacking, governs = solved.values["lacking"], solved.values["governs"]
+    lacking, broken = solved.values["lacking"], solved.values["first_broken"]
     faults = []
     for code, slot in enumerate(_limit_slots(recipe), 1):
         if slot:
             label = recipe.label(slot)
             faults.append((
-                (lacking == 2) & (governs == code),
+                broken == code,
                 Fault(CellError.NUM, f"{label} in {ROW} is passed even with no source at all; raise the limit or cool the body more"),
             ))  # fmt: skip
     faults.append((
@@ -165,19 +176,21 @@ def _limit_faults(solved: Solved, recipe: Recipe) -> list[tuple[np.ndarray, Faul
 
 def _limit_slots(recipe: Recipe) -> tuple[str, str, str]:
     body = "limit" if "limit" in recipe.filled else ("limit 1" if "limit 1" in recipe.filled else "")
-    return body, "left limit" if "left limit" in recipe.filled else "", "right limit" if "right limit" in recipe.filled else ""
+    return (
+        body,
+        "left limit" if "left limit" in recipe.filled else "",
+        "right limit" if "right limit" in recipe.filled else "",
+    )
 
 
 def _allowable(asked: Asked, plan: Plan, recipe: Recipe) -> Ready | Fault:
     if not recipe.has_limit:
         return _no_limit(plan)
+    if not recipe.scaled:
+        return recipe.no_source or not_yet(asked.label)
     if asked.item.quantity == "limited by":
         return Ready(("governs",), lambda solved: (_governing(solved, recipe), []))
     wanted = asked.item.quantity.removeprefix("allowable ")
-    if not recipe.scaled:
-        if recipe.no_source is not None and not any(plan.has(s) for s in (wanted,)):
-            return recipe.no_source
-        return recipe.no_source or not_yet(asked.label)
     if wanted not in ("source", recipe.scaled):
         have = recipe.scaled
         return Fault(CellError.NA, f"{asked.label}: the source in {ROW} is its {have}; ask for 'allowable {have}'")
@@ -186,7 +199,7 @@ def _allowable(asked: Asked, plan: Plan, recipe: Recipe) -> Ready | Fault:
         q = solved.values["allowable_generation"]
         return (q if solved.scale is None else q / solved.scale), _limit_faults(solved, recipe)
 
-    return Ready(_GOVERNS, work)
+    return Ready(_ALLOWED, work)
 
 
 def _governing(solved: Solved, recipe: Recipe) -> np.ndarray:
@@ -213,4 +226,4 @@ def _utilisation(asked: Asked, plan: Plan, recipe: Recipe) -> Ready | Fault:
         fault = Fault(CellError.NUM, f"the allowable source in {ROW} is 0, so none of it can be used; raise the limit")
         return share, [*_limit_faults(solved, recipe), (nothing & ~np.isnan(q), fault)]
 
-    return Ready(_GOVERNS, work)
+    return Ready(_ALLOWED, work)

@@ -22,7 +22,9 @@ def caution_masks(recipe: Recipe, get: Callable[[str], Array], cases: Cases) -> 
     layer = cases.layers[0]
     if recipe.source:
         label, q = recipe.label(recipe.source), layer.generation
-        yield _where(q < 0.0, f"{label} in {ROW} is negative, so the body takes heat up; make it positive if it heats itself")
+        yield _where(
+            q < 0.0, f"{label} in {ROW} is negative, so the body takes heat up; make it positive if it heats itself"
+        )
         yield _where(np.abs(q) > IMPLAUSIBLE_GENERATION, f"{label} in {ROW} is over 1e13 W/m³, more than a fusing wire makes; "
                      "check its unit")  # fmt: skip
     yield _where(layer.thickness > IMPLAUSIBLE_SIZE, f"{recipe.label(recipe.outer)} in {ROW} makes the body over 100 m thick; "

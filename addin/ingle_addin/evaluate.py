@@ -19,7 +19,7 @@ from ingle_addin import answers, checks, columns, recipe
 from ingle_addin.cautions import caution_masks
 from ingle_addin.cells import CellError
 from ingle_addin.columns import Values
-from ingle_addin.faults import ROW, Fault
+from ingle_addin.faults import ROW, Fault, finished, number_text
 from ingle_addin.heading_reader import Asked, Column, Plan
 from ingle_addin.recipe import Recipe
 from ingle_addin.units import Kind
@@ -58,11 +58,18 @@ class Evaluation:
         return self.known[fault]
 
 
-def evaluate(plan: Plan, table: Sequence[Values], asked: Sequence[Asked | Fault], mismatch: Fault | None = None) -> Evaluation:
+def evaluate(
+    plan: Plan,
+    table: Sequence[Values],
+    asked: Sequence[Asked | Fault],
+    mismatch: Fault | None = None,
+    numbers: np.ndarray | None = None,
+) -> Evaluation:
     """Answer the rows of a table; never raises for anything a cell may hold.
 
     ``table`` has one column a heading, each of n rows or of one that serves all. ``mismatch`` is a fault of the call
-    itself, such as a wrong number of columns, which every row that is not blank then has.
+    itself, such as a wrong number of columns, which every row that is not blank then has. ``numbers`` are the rows' numbers
+    in sentences, 0 for a row that stands alone; from 1 if not given.
     """
     n = max((len(column) for column in table), default=0)
     result = Evaluation(
@@ -78,7 +85,46 @@ def evaluate(plan: Plan, table: Sequence[Values], asked: Sequence[Asked | Fault]
         for start in range(0, n, BLOCK):
             rows = slice(start, min(start + BLOCK, n))
             _Block(plan, [column.rows(rows.start, rows.stop) for column in table], result, rows).run(spoilt)
+    _judge(result, table, numbers)
     return result
+
+
+def reason(result: Evaluation, table: Sequence[Values], j: int, row: int, number: int) -> str | None:
+    """The sentence why answer j of a row is missing, None where it is not."""
+    index = result.fault[j][row]
+    return None if index < 0 else sentence(result.faults[index], table, row, number)
+
+
+def sentence(fault: Fault, table: Sequence[Values], row: int, number: int) -> str:
+    """A fault's sentence for one row; ``number`` names the row, 0 where it is the only one."""
+    value = number_text(table[fault.column].cell(row)) if fault.column >= 0 else ""
+    return finished(fault.sentence, number, value)
+
+
+def _judge(result: Evaluation, table: Sequence[Values], numbers: np.ndarray | None) -> None:
+    """Turn what was found into the words of `why` and `verdict`, which are texts whatever the row holds."""
+    names = [a.item.quantity if isinstance(a, Asked) else "" for a in result.asked]
+    others = [j for j, name in enumerate(names) if name not in ("why", "verdict")]
+    for j, name in enumerate(names):
+        if name not in ("why", "verdict"):
+            continue
+        found = np.full(result.n, -1, np.intp)
+        for other in others if name == "why" and others else [j]:
+            found = np.where(found < 0, result.fault[other], found)
+        texts = np.where(result.blank, "", result.values[j])
+        if name == "verdict":
+            doubtful = (result.caution >= 0) & (found < 0) & (texts != "over limit")
+            texts = np.where(found >= 0, "no answer", np.where(doubtful, "caution", texts))
+        else:
+            texts = np.where(result.blank, "", "ok").astype(object)
+            for row in np.flatnonzero((found >= 0) | (result.caution >= 0)):  # writing: a sentence is worded for its cell
+                fault = result.faults[found[row]] if found[row] >= 0 else result.cautions[result.caution[row]]
+                number = (int(row) + 1 if result.n > 1 else 0) if numbers is None else int(numbers[row])
+                texts[row] = sentence(fault, table, int(row), number)
+        result.values[j] = texts.astype(object)
+    for j, name in enumerate(names):
+        if name in ("why", "verdict"):
+            result.fault[j] = np.full(result.n, -1, np.intp)
 
 
 def _is_text(asked: Asked | Fault) -> bool:
@@ -188,8 +234,7 @@ class _Block:
         used = self.plan.columns
         mixed = [c for c in used if not isinstance(self.filled[c.index], bool)]
         always = [c.index for c in used if self.filled[c.index] is True]
-        shape = next((c for c in used if c.item.name == "shape"), None)
-        codes, words = self.words[shape.index] if shape else (None, [None])
+        codes, words = self._shapes()
         keys = np.zeros(self.n, np.int64) if codes is None else codes.astype(np.int64)
         blank = np.zeros(self.n, bool) if always else np.ones(self.n, bool)
         for count, column in enumerate(mixed):
@@ -215,11 +260,26 @@ class _Block:
         for number, start in enumerate(first):
             example = rows[start]
             filled_columns = tuple(
-                c.index for c in used if self.filled[c.index] is True or (c in mixed and self.filled[c.index][example])  # type: ignore[index]
+                c.index
+                for c in used
+                if self.filled[c.index] is True or (c in mixed and self.filled[c.index][example])  # type: ignore[index]
             )
             text = words[0] if codes is None else words[codes[example]]
             groups.append(((filled_columns, text), rows[inverse.reshape(-1) == number]))
         return groups
+
+    def _shapes(self) -> tuple[np.ndarray | None, list[str | None]]:
+        """The shape of each row as a number into a list of words, None for the number where all have the first."""
+        given = [self.words[c.index] for c in self.plan.columns if c.item.name == "shape"]
+        if len(given) == 1:
+            return given[0]
+        words: list[str | None] = [None]
+        number = np.zeros(self.n, np.intp)
+        for codes, found in given:  # a second heading for it is allowed as long as no row fills both
+            each = np.array([0 if w is None else len(words) + i for i, w in enumerate(found)])
+            words += found
+            number = np.maximum(number, each[0] if codes is None else each[codes])
+        return number, words
 
     def _spread(self, fault: np.ndarray) -> None:
         """Give every answer the rows' own fault."""

@@ -97,9 +97,9 @@ INPUTS: tuple[Input, ...] = (
     Input("conductivity slope", _PER_K, "k = k₀[1 + slope (T − reference)]", _LAYER, -1e3, 1e3, above=False),
     _temperature("conductivity reference", "of the slope; 20 °C if blank", _LAYER),
     Input("material", _TEXT, "a row of the bundled materials table", _LAYER),
-    Input("generation", (Kind.GENERATION,), "heat per volume; a number or a text table", _LAYER, -1e20, 1e20, above=False,
+    Input("generation", (Kind.GENERATION,), "heat per volume; a number or a text table", _LAYER, -1e25, 1e25, above=False,
           table=True, available=True),
-    Input("specific generation", (Kind.SPECIFIC_GENERATION,), "heat per mass, with density", _LAYER, -1e18, 1e18,
+    Input("specific generation", (Kind.SPECIFIC_GENERATION,), "heat per mass, with density", _LAYER, -1e22, 1e22,
           above=False, available=True),
     Input("power", (Kind.POWER,), "spread evenly over the layer's volume; needs the area of a wall or the length of a "
           "cylinder", _LAYER, -1e15, 1e15, above=False, available=True),
@@ -124,9 +124,9 @@ INPUTS: tuple[Input, ...] = (
     Input("joint", (Kind.AREA_RESISTANCE, Kind.FILM), "between two layers, per area where they meet", Where.JOINT, 0.0, 1e9,
           False),
     _temperature("held", "temperature the face is held at", _FACE, available=True),
-    Input("flux in", (Kind.HEAT_FLUX,), "heat put into the body at that surface; may stand beside a film", _FACE, -1e15,
-          1e15, above=False, available=True),
-    Input("film", (Kind.FILM,), "convection coefficient, with its fluid", _BOTH, 0.0, 1e9, above=False, available=True),
+    Input("flux in", (Kind.HEAT_FLUX,), "heat put into the body at that surface; may stand beside a film", _FACE, -1e20,
+          1e20, above=False, available=True),
+    Input("film", (Kind.FILM,), "convection coefficient, with its fluid", _BOTH, 0.0, 1e20, above=False, available=True),
     _temperature("fluid", "temperature of the fluid, with its film", _BOTH, available=True),
     Input("emissivity", _N, "radiation to large surroundings", _BOTH, 0.0, 1.0, False),
     _temperature("surroundings", "of the radiation; the fluid's temperature if blank", _BOTH),
@@ -168,7 +168,9 @@ ANSWERS: tuple[Answer, ...] = (
     Answer("probe temperature", _T, "temperature at the probe", quantity="probe_temperature"),
     Answer("joint left", _T, "temperature on the left of a joint: joint 1 left", Where.JOINT),
     Answer("joint right", _T, "temperature on the right of a joint: joint 1 right", Where.JOINT),
-    Answer("heat out", _HEATS, "net heat leaving through a face: W/m² of that face, W/m or W by the unit", _FACE, "heat out"),
+    Answer(
+        "heat out", _HEATS, "net heat leaving through a face: W/m² of that face, W/m or W by the unit", _FACE, "heat out"
+    ),
     Answer("side heat out", _HEATS, "heat leaving through a bar's sides"),
     Answer("heat made", _HEATS, "heat generated: W/m² of a wall, W/m or W by the unit", quantity="heat made"),
     Answer("left share", _PERCENT, "of all heat leaving, what leaves on the left", quantity="left_share"),
@@ -178,7 +180,9 @@ ANSWERS: tuple[Answer, ...] = (
     Answer("resistance", (Kind.RESISTANCE,), "along the length"),
     *(
         Answer(
-            f"allowable {source}", (kind,), f"{source} at which the first limit is reached",
+            f"allowable {source}",
+            (kind,),
+            f"{source} at which the first limit is reached",
             quantity=f"allowable {source}" if source in SOURCES[:4] else "",
         )  # fmt: skip
         for source, kind in _SOURCE_KINDS.items()

@@ -80,7 +80,9 @@ def build(plan: Plan, filled_columns: tuple[Column, ...], shape_text: str | None
 def _build(plan: Plan, columns: tuple[Column, ...], shape_text: str | None) -> Recipe:
     for column in columns:
         if not column.available:
-            raise _stop(CellError.NA, f"{column.label} in {ROW} is not available yet; leave it blank or wait for a later version")
+            raise _stop(
+                CellError.NA, f"{column.label} in {ROW} is not available yet; leave it blank or wait for a later version"
+            )
     if shape_text is None:
         raise _missing(plan, "shape", "write wall, cylinder or sphere")
     if shape_text == "bar":
@@ -154,7 +156,9 @@ def _outside(plan: Plan, filled: dict[str, Column], shape_text: str) -> str:
     if not outer:
         there = [plan.label(slot) for slot in (*_OUTSIDES, "thickness") if plan.has(slot)]
         if there:
-            raise _stop(CellError.NA, f"the outside of this {shape_text} is blank in {ROW}; fill in {' or '.join(there[:2])}")
+            raise _stop(
+                CellError.NA, f"the outside of this {shape_text} is blank in {ROW}; fill in {' or '.join(there[:2])}"
+            )
         raise _missing(plan, "outer radius", "type a value")
     return outer
 
@@ -165,7 +169,8 @@ def _source(plan: Plan, filled: dict[str, Column], shape_text: str) -> tuple[str
         raise _stop(CellError.VALUE, f"{filled[given[0]].label} and {filled[given[1]].label} in {ROW} are two sources in one layer; "
                     "leave one blank")  # fmt: skip
     headed = [slot for slot in SOURCES if plan.has(slot)]
-    scaled = given[0] if given else (headed[0] if len(headed) == 1 else "")
+    columns = sum(slot in SOURCES for column in plan.columns for slot in column.slots)
+    scaled = given[0] if given else (headed[0] if columns == 1 else "")
     for slot in (scaled,) if scaled else ():
         need = _source_needs(slot, filled, shape_text)
         if need:
@@ -176,7 +181,7 @@ def _source(plan: Plan, filled: dict[str, Column], shape_text: str) -> tuple[str
         return given[0], scaled, None
     words = " and ".join(plan.label(slot) for slot in headed)
     if headed:
-        verb = "is" if len(headed) == 1 else "are"
+        verb = "is" if columns == 1 else "are"
         return "", scaled, Fault(CellError.NA, f"{words} in {ROW} {verb} blank; write 0 for no source")
     fault = Fault(CellError.NA, f"{ROW} has no source, and no heading for one; add a column 'generation [W/m³]', 0 for none")
     return "", "", fault
@@ -191,7 +196,9 @@ def _source_needs(slot: str, filled: dict[str, Column], shape_text: str) -> Faul
     if slot == "power" and shape_text == "wall" and "area" not in filled:
         return Fault(CellError.NA, f"{label} in {ROW} needs the wall's area; fill in 'area [m²]'")
     if slot == "line power" and shape_text == "wall":
-        return Fault(CellError.NA, f"{label} in {ROW} is by length, which a wall has not; give its power in W, with its area")
+        return Fault(
+            CellError.NA, f"{label} in {ROW} is by length, which a wall has not; give its power in W, with its area"
+        )
     if slot == "line power" and shape_text == "sphere":
         return Fault(CellError.VALUE, f"{label} in {ROW} has no meaning for a sphere; give its power in W")
     return None

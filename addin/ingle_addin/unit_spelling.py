@@ -125,16 +125,19 @@ _REWRITES = tuple(
 _NAME = re.compile(r'°[CFRK]|°|[A-Za-zµΩ]+|[%‰"]')
 _POWER = re.compile(r"\s*\^\s*(?:\((-?\d+)\)|(-?\d+))|(-?\d+)")
 _STARTS = r'(?=[A-Za-zµΩ°%‰"(])'
-# Side by side is a product too, as in m²K; but not before an inch sign, since mm" is no unit.
-_MULTIPLY = re.compile(rf"\s*[·.]\s*|\s*-\s*{_STARTS}|\s+{_STARTS}|(?=[A-Za-zµΩ°%‰(])")
+# Side by side is a product too, as in m²K; but not beside an inch sign, since mm" is no unit.
+_MULTIPLY = re.compile(rf"\s*[·.]\s*|\s*-\s*{_STARTS}|\s+{_STARTS}|(?<!\")(?=[A-Za-zµΩ°%‰(])")
 _ONE_OVER = re.compile(r"\s*1(?=\s*/)")
 _SLASH = re.compile(r"\s*/\s*")
 _OPEN = re.compile(r"\s*\(\s*")
 _CLOSE = re.compile(r"\s*\)")
 _PREFIXED_DEGREE = re.compile(rf"[{''.join(_PREFIXES)}]\s?°?[CFKR]")
+# Two lengths side by side are no area: mmm is a slip of the finger.
 _GLUED = re.compile(
-    "(mm|cm|µm|um|m|ft|kg|g|lb|[kMm]?W|[km]?A|[km]?V|[kM]?J|k?cal|[nµumkM]?Ω)(?:(K|C|F|R|mm|cm|m|kg|mol)|([kcf]))"
+    "(?:(?P<length>mm|cm|µm|um|m|ft|lb)|(?P<other>[kMm]?W|[km]?A|[km]?V|[kM]?J|k?cal|[nµumkM]?Ω|kg|g))"
+    "(?:(?P<degree>[KCFR])|(?P<small>[kcf])|(?P<unit>mm|cm|m|kg|mol))"
 )
+_SHARES = frozenset({"percent", "permille", "ppm"})
 
 
 def _all_names() -> tuple[dict[str, str], dict[str, str]]:
@@ -217,8 +220,11 @@ class _Reader:
         if self.units == 1 and self.last in _ALONE:
             problem, remedy = _ALONE[self.last]
             raise SpellingError(f"'{self.last}' {problem}", remedy)
+        powers, strict = _without_zeros(powers), _without_zeros(strict)
+        if _SHARES.intersection(powers) and not _is_share(powers):
+            raise SpellingError(f"'{self.text}' mixes a percentage with another unit")
         lone = self.units == 1 and list(powers.values()) == [1]
-        return Spelling(_without_zeros(powers), _without_zeros(strict), self.degree if lone else "", self.letter)
+        return Spelling(powers, strict, self.degree if lone else "", self.letter)
 
     def expression(self) -> tuple[Counter[str], Counter[str]]:
         powers: Counter[str] = Counter()
@@ -265,8 +271,10 @@ class _Reader:
             return 1
         self.at = found.end()
         power = int(found[1] or found[2] or found[3])
-        if not 1 <= abs(power) <= HIGHEST_POWER:
-            raise SpellingError(f"'{self.text}' has the power {power}; powers go from 1 to {HIGHEST_POWER}")
+        # A power of 1 is nobody's way to write a unit, but A1 is a cell.
+        if not 1 <= abs(power) <= HIGHEST_POWER or power == 1:
+            allowed = f"2 to {HIGHEST_POWER} or -1 to -{HIGHEST_POWER}"
+            raise SpellingError(f"'{self.text}' has the power {power}; a power is {allowed}")
         return power
 
     def names(self, name: str) -> list[str]:
@@ -290,9 +298,11 @@ class _Reader:
         if re.fullmatch("[kMµ][CFKR]", name):
             raise self.prefixed_degree()
         if glued := _GLUED.fullmatch(name):
-            if glued[3]:
-                raise SpellingError(f"'{name}' is not a unit", f"write {glued[1]}·{glued[3].upper()}")
-            return [*self.names(glued[1]), *self.names(glued[2])]
+            first, second = glued["length"] or glued["other"], glued["degree"] or glued["unit"]
+            if glued["small"]:
+                raise SpellingError(f"'{name}' is not a unit", f"write {first}·{glued['small'].upper()}")
+            if not (glued["length"] and glued["unit"]):
+                return [*self.names(first), *self.names(second)]
         raise SpellingError(f"'{name}' is not a unit known here")
 
     def skip(self, pattern: re.Pattern[str]) -> bool:
@@ -317,8 +327,15 @@ def _raised(powers: Counter[str], by: int) -> Counter[str]:
     return Counter({name: power * by for name, power in powers.items()})
 
 
-def _without_zeros(powers: Counter[str]) -> dict[str, int]:
-    return {name: power for name, power in powers.items() if power}
+def _without_zeros(powers: Counter[str]) -> Counter[str]:
+    return Counter({name: power for name, power in powers.items() if power})
+
+
+def _is_share(powers: Counter[str]) -> bool:
+    """Whether this is %, ‰ or ppm, alone or per degree."""
+    others = [(name, power) for name, power in powers.items() if name not in _SHARES]
+    per_degree = len(others) == 1 and others[0][0] in _DEGREES.values() and others[0][1] == -1
+    return len(powers) - len(others) == 1 and sum(powers[name] for name in _SHARES) == 1 and (not others or per_degree)
 
 
 def _other_case(name: str) -> str:

@@ -132,6 +132,8 @@ QUANTITIES: dict[str, Callable[[Solution], Array]] = {
     "headroom": lambda s: s.headroom,
     "allowable_generation": lambda s: s.allowable.generation,
     "governs": lambda s: s.governs.astype(np.float64),
+    "least_room": lambda s: np.min(s.rooms, axis=0),
+    "first_broken": lambda s: np.where(s.allowable.lacking == 2, s.allowable.governs, 0).astype(np.float64),
     "lacking": lambda s: s.allowable.lacking.astype(np.float64),
 }
 
@@ -151,7 +153,8 @@ def steady(cases: Cases, wanted: Iterable[str]) -> Answers:
     ``probe_temperature``), ``peak_place`` [m] from the left face or as a radius, ``left_flux`` and ``right_flux`` [W/m² of
     that face], ``left_heat``, ``right_heat`` and ``heat_made`` [W/m² of wall, W/m of cylinder, W of sphere],
     ``left_share`` and ``balance`` [1], ``headroom`` [K] before the limit that ``governs`` (1 ``limit``, 2 ``left_limit``,
-    3 ``right_limit``, 0 none), ``allowable_generation`` [W/m³] and ``lacking`` (1 no limit, 2 a limit broken with no source, 3 never reached).
+    3 ``right_limit``, 0 none), ``allowable_generation`` [W/m³] and ``lacking`` (1 no limit, 2 a limit broken with no source, which
+    ``first_broken`` names, 3 never reached), and ``least_room`` [K] before any limit, infinite where there is none.
     Raises KeyError for another name. Source: Fourier's law and conservation of heat, integrated in closed form.
     """
     wanted = tuple(wanted)

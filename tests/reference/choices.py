@@ -96,7 +96,8 @@ CHOICES: tuple[tuple[str, str], ...] = (
     (
         "`limited by` is the limit that sets the allowable, as `limit`, `limit 1`, `left limit`, `right limit` "
         "whatever the spelling used; if there is no allowable, the one with the least kelvin left. `headroom` is of "
-        "that limit at the present source, negative when it is broken.",
+        "that limit at the present source, negative when it is broken. `limited by` is answered for a blank source too, "
+        "as the allowable is.",
         "which limit (or `runaway`); kelvin left before it",
     ),
     (

@@ -137,9 +137,7 @@ class Row:
         return source
 
     def margin(self, name: str) -> float:
-        if self.source is None:
-            raise RefusedError(NEEDED)
-        return self.limits[name] - self.limited(name, self.source)
+        return self.limits[name] - self.limited(name, self.source or 0.0)
 
     def limited_by(self) -> str:
         name, source = self.first
@@ -176,6 +174,8 @@ class Row:
                 raise RefusedError(NEEDED)
             return self.allowable() / self.per_source
         q, solved, body = self.source, self.solved, self.body
+        if name == "limited by" and self.source_kind:
+            return self.limited_by()
         if q is None:
             raise RefusedError(NEEDED)
         if name in ("peak", "peak 1"):
@@ -206,8 +206,6 @@ class Row:
             return self._left_share(q)
         if name == "balance":
             return self._balance(q)
-        if name == "limited by":
-            return self.limited_by()
         if name == "headroom":
             return self.margin(self.limited_by()) if self.limits else self._no_limit()
         if name == "utilisation":
@@ -272,9 +270,9 @@ def _geometry(row: dict[str, float | str], shape: int) -> tuple[float, float, li
         errors.append(WRONG)
     if bores and ("radius" in row or "diameter" in row):
         errors.append(WRONG)
-    if not outsides:
-        return 0.0, 0.0, [*errors, NEEDED]
     bore = float(row[bores[0]]) * (0.5 if "diameter" in bores[0] else 1.0) if bores else 0.0
+    if not outsides:
+        return bore, 0.0, [*errors, NEEDED]
     size = float(row[outsides[0]]) * (0.5 if "diameter" in outsides[0] else 1.0)
     thickness = size if outsides[0] == "thickness" else size - bore
     if thickness <= 0.0:
