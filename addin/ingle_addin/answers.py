@@ -6,9 +6,9 @@ from collections.abc import Callable, Mapping
 from dataclasses import dataclass
 
 import numpy as np
-
 from ingle import Shape
 from ingle.shapes import Array
+
 from ingle_addin.cells import CellError
 from ingle_addin.faults import ROW, Fault
 from ingle_addin.heading_reader import Asked, Plan
@@ -142,19 +142,22 @@ def _heat(asked: Asked, recipe: Recipe) -> Ready | Fault:
         if shape == Shape.SPHERE:
             return Fault(CellError.NA, f"{asked.label}: a sphere has no length; ask for it in W")
         if shape == Shape.WALL:
-            return Fault(
-                CellError.NA, f"{asked.label}: the wall in {ROW} has no length; ask in W, with its area, or in W/m²"
-            )
+            return Fault(CellError.NA, f"{asked.label}: the wall in {ROW} has no length; ask in W, with its area, or in W/m²")
         return _plain(heat)
     if shape == Shape.SPHERE:
         return _plain(heat)
     if shape == Shape.CYLINDER:
         if "length" not in filled:
             return Fault(CellError.NA, f"{asked.label}: the cylinder in {ROW} needs its length; fill in 'length [mm]'")
-        return Ready((heat,), lambda solved: (solved.values[heat] * solved.extent.length, []))
+        return Ready((heat,), lambda solved: (solved.values[heat] * _given(solved.extent.length), []))
     if "area" not in filled:
         return Fault(CellError.NA, f"{asked.label}: the wall in {ROW} needs its area; fill in 'area [m²]'")
-    return Ready((heat,), lambda solved: (solved.values[heat] * solved.extent.area, []))
+    return Ready((heat,), lambda solved: (solved.values[heat] * _given(solved.extent.area), []))
+
+
+def _given(size: Array | None) -> Array:
+    assert size is not None  # the recipe's rows all give it
+    return size
 
 
 def _limit_faults(solved: Solved, recipe: Recipe) -> list[tuple[np.ndarray, Fault]]:
@@ -191,13 +194,16 @@ def _allowable(asked: Asked, plan: Plan, recipe: Recipe) -> Ready | Fault:
     if asked.item.quantity == "limited by":
         return Ready(("governs",), lambda solved: (_governing(solved, recipe), []))
     wanted = asked.item.quantity.removeprefix("allowable ")
+    own = next(column.unit for column in plan.columns if recipe.scaled in column.slots)
+    own = recipe.filled[recipe.scaled].unit if recipe.scaled in recipe.filled else own
     if wanted not in ("source", recipe.scaled):
         have = recipe.scaled
         return Fault(CellError.NA, f"{asked.label}: the source in {ROW} is its {have}; ask for 'allowable {have}'")
 
     def work(solved: Solved) -> Worked:
         q = solved.values["allowable_generation"]
-        return (q if solved.scale is None else q / solved.scale), _limit_faults(solved, recipe)
+        source = q if solved.scale is None else q / solved.scale
+        return (own.from_base(source) if wanted == "source" else source), _limit_faults(solved, recipe)
 
     return Ready(_ALLOWED, work)
 

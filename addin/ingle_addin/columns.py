@@ -52,12 +52,14 @@ class Values:
     def blank(self) -> np.ndarray | bool:
         """Which rows are blank: a boolean for all, or an array."""
         if self.kinds is not None:
-            return self.kinds == BLANK
+            blank: np.ndarray = self.kinds == BLANK
+            return blank
         if self.numbers is not None:
-            return np.isnan(self.numbers)
+            missing: np.ndarray = np.isnan(self.numbers)
+            return missing
         assert self.cells is not None
         if self.cells.dtype.kind == "U":
-            return np.char.strip(self.cells) == ""
+            return np.equal(np.char.str_len(np.char.strip(self.cells)), 0)
         return np.fromiter((is_blank(c) for c in self.cells), bool, len(self.cells))
 
 
@@ -96,7 +98,7 @@ def from_cells(cells: Sequence[Cell]) -> Values:
     kinds = np.fromiter(map(kind_of, cells), np.int8, len(cells))
     numbers = np.full(len(cells), np.nan)
     for row in np.flatnonzero(kinds == NUMBER):
-        numbers[row] = _float(cells[row])
+        numbers[row] = _float(cells[int(row)])
     return Values(numbers, kinds, array)
 
 

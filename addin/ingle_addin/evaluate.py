@@ -12,9 +12,9 @@ from collections.abc import Sequence
 from dataclasses import dataclass, field
 
 import numpy as np
-
-from ingle import Status, steady
+from ingle import Cases, Status, steady
 from ingle.steady import BLOCK
+
 from ingle_addin import answers, checks, columns, recipe
 from ingle_addin.cautions import caution_masks
 from ingle_addin.cells import CellError
@@ -49,6 +49,8 @@ class Evaluation:
     faults: list[Fault] = field(default_factory=list)
     cautions: list[Fault] = field(default_factory=list)
     known: dict[Fault, int] = field(default_factory=dict)
+    cases: list[Cases] = field(default_factory=list)
+    keep_cases: bool = False
 
     def number(self, fault: Fault) -> int:
         """The fault's number in ``faults``."""
@@ -64,12 +66,13 @@ def evaluate(
     asked: Sequence[Asked | Fault],
     mismatch: Fault | None = None,
     numbers: np.ndarray | None = None,
+    keep_cases: bool = False,
 ) -> Evaluation:
     """Answer the rows of a table; never raises for anything a cell may hold.
 
     ``table`` has one column a heading, each of n rows or of one that serves all. ``mismatch`` is a fault of the call
     itself, such as a wrong number of columns, which every row that is not blank then has. ``numbers`` are the rows' numbers
-    in sentences, 0 for a row that stands alone; from 1 if not given.
+    in sentences, 0 for a row that stands alone; from 1 if not given. ``keep_cases`` keeps the solver's cases for a profile.
     """
     n = max((len(column) for column in table), default=0)
     result = Evaluation(
@@ -79,6 +82,7 @@ def evaluate(
         [np.full(n, -1, np.intp) for _ in asked],
         np.zeros(n, bool),
         np.full(n, -1, np.intp),
+        keep_cases=keep_cases,
     )
     spoilt = mismatch or plan.fault
     with np.errstate(all="ignore"):
@@ -200,12 +204,13 @@ class _Block:
         self.base[column.index] = base
 
     def _check_odd(self, column: Column, values: Values) -> None:
-        assert values.kinds is not None and values.cells is not None
+        assert values.kinds is not None
+        assert values.cells is not None
         odd = np.flatnonzero(values.kinds >= columns.TEXT)
         seen: dict[object, list[int]] = {}
         for row in odd:  # reading: a fault is worded from the cell itself
             cell = values.cells[row]
-            seen.setdefault(columns.key(cell), []).append(row)
+            seen.setdefault(columns.key(cell), []).append(int(row))
         for rows in seen.values():
             mask = np.zeros(self.n, bool)
             mask[rows] = True
@@ -313,11 +318,13 @@ class _Block:
 
         faults: list[tuple[np.ndarray, Fault]] = []
         cases, extent, scale = recipe.cases_of(made, get, lambda mask, fault: faults.append((mask, fault)))
+        if self.result.keep_cases:
+            self.result.cases.append(cases)
         solved = steady(cases, wanted)
         failed = [(solved.status == code, fault) for code, fault in _STATUS_FAULTS.items()] if solved.status.any() else []
         whole = [(mask, fault) for mask, fault in (*faults, *failed) if mask.any()]
         if judged:
-            for mask, caution in caution_masks(made, get, cases):
+            for mask, caution in caution_masks(made, cases):
                 self._put_caution(rows, mask, caution)
         context = answers.Solved(solved.values, extent, scale, get)
         for j, r in enumerate(ready):
@@ -340,13 +347,17 @@ class _Block:
         assert isinstance(asked, Asked)
         if asked.unit.kind is not Kind.TEXT:
             values = asked.unit.from_base(values) + 0.0  # + 0.0: no cell shows −0
+            empty = np.isnan(values)
+            if empty.any():  # a number that is none never leaves without a fault
+                faults = [*faults, (empty, _STATUS_FAULTS[Status.OVERFLOW])]
         if faults:
             number = np.full(len(values), -1, np.intp)
             for mask, fault in faults:
                 number[mask & (number < 0)] = self.result.number(fault)
             self.result.fault[j][self.rows][rows] = number
             bad = number >= 0
-            values = np.where(bad, None if values.dtype == object else np.nan, values)
+            values = values.copy()
+            values[bad] = None if values.dtype == object else np.nan
         self.result.values[j][self.rows][rows] = values
 
 

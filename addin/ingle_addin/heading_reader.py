@@ -266,3 +266,11 @@ def read_answer(text: str) -> Asked | Fault:
     except UnitError as error:
         return _bad(text, str(error))
     return Asked(item, side, number, unit, label)
+
+
+def allowable_source() -> Asked:
+    """The answer of INGLE.ALLOW: the allowable source in the unit of whichever source heading a row fills."""
+    return Asked(_ALLOWABLE_SOURCE, "", 0, Unit(Kind.RATIO, 1.0), "allowable source")
+
+
+_ALLOWABLE_SOURCE = Answer("allowable source", (Kind.RATIO,), "the allowable source", quantity="allowable source")

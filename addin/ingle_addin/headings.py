@@ -168,9 +168,7 @@ ANSWERS: tuple[Answer, ...] = (
     Answer("probe temperature", _T, "temperature at the probe", quantity="probe_temperature"),
     Answer("joint left", _T, "temperature on the left of a joint: joint 1 left", Where.JOINT),
     Answer("joint right", _T, "temperature on the right of a joint: joint 1 right", Where.JOINT),
-    Answer(
-        "heat out", _HEATS, "net heat leaving through a face: W/m² of that face, W/m or W by the unit", _FACE, "heat out"
-    ),
+    Answer("heat out", _HEATS, "net heat leaving through a face: W/m² of that face, W/m or W by the unit", _FACE, "heat out"),
     Answer("side heat out", _HEATS, "heat leaving through a bar's sides"),
     Answer("heat made", _HEATS, "heat generated: W/m² of a wall, W/m or W by the unit", quantity="heat made"),
     Answer("left share", _PERCENT, "of all heat leaving, what leaves on the left", quantity="left_share"),
@@ -184,7 +182,7 @@ ANSWERS: tuple[Answer, ...] = (
             (kind,),
             f"{source} at which the first limit is reached",
             quantity=f"allowable {source}" if source in SOURCES[:4] else "",
-        )  # fmt: skip
+        )
         for source, kind in _SOURCE_KINDS.items()
     ),
     Answer("limited by", _TEXT, "the limit that governs the allowable source", quantity="limited by"),

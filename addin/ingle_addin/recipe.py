@@ -10,9 +10,9 @@ from dataclasses import dataclass, field
 from typing import Any
 
 import numpy as np
-
 from ingle import Cases, Face, Layer, Shape
 from ingle.shapes import MEASURE, Array, solid_volume, volume
+
 from ingle_addin.cells import CellError
 from ingle_addin.faults import ROW, Fault
 from ingle_addin.heading_reader import Column, Plan
@@ -80,9 +80,7 @@ def build(plan: Plan, filled_columns: tuple[Column, ...], shape_text: str | None
 def _build(plan: Plan, columns: tuple[Column, ...], shape_text: str | None) -> Recipe:
     for column in columns:
         if not column.available:
-            raise _stop(
-                CellError.NA, f"{column.label} in {ROW} is not available yet; leave it blank or wait for a later version"
-            )
+            raise _stop(CellError.NA, f"{column.label} in {ROW} is not available yet; leave it blank or wait for a later version")
     if shape_text is None:
         raise _missing(plan, "shape", "write wall, cylinder or sphere")
     if shape_text == "bar":
@@ -156,9 +154,7 @@ def _outside(plan: Plan, filled: dict[str, Column], shape_text: str) -> str:
     if not outer:
         there = [plan.label(slot) for slot in (*_OUTSIDES, "thickness") if plan.has(slot)]
         if there:
-            raise _stop(
-                CellError.NA, f"the outside of this {shape_text} is blank in {ROW}; fill in {' or '.join(there[:2])}"
-            )
+            raise _stop(CellError.NA, f"the outside of this {shape_text} is blank in {ROW}; fill in {' or '.join(there[:2])}")
         raise _missing(plan, "outer radius", "type a value")
     return outer
 
@@ -196,9 +192,7 @@ def _source_needs(slot: str, filled: dict[str, Column], shape_text: str) -> Faul
     if slot == "power" and shape_text == "wall" and "area" not in filled:
         return Fault(CellError.NA, f"{label} in {ROW} needs the wall's area; fill in 'area [m²]'")
     if slot == "line power" and shape_text == "wall":
-        return Fault(
-            CellError.NA, f"{label} in {ROW} is by length, which a wall has not; give its power in W, with its area"
-        )
+        return Fault(CellError.NA, f"{label} in {ROW} is by length, which a wall has not; give its power in W, with its area")
     if slot == "line power" and shape_text == "sphere":
         return Fault(CellError.VALUE, f"{label} in {ROW} has no meaning for a sphere; give its power in W")
     return None
@@ -255,7 +249,7 @@ def cases_of(recipe: Recipe, get: Get, flag: Flag) -> tuple[Cases, Extent, Array
             d = d - a
             flag(d <= 0.0, Fault(CellError.NUM, f"{recipe.label(recipe.inner)} in {ROW} is not below "
                  f"{recipe.label(recipe.outer)}; a bore is smaller than the outside"))  # fmt: skip
-    if recipe.inner and not recipe.shape == Shape.WALL:
+    if recipe.inner:
         _flag_solid_left(recipe, a, flag)
     if shape == Shape.WALL:
         V = d
@@ -265,10 +259,9 @@ def cases_of(recipe: Recipe, get: Get, flag: Flag) -> tuple[Cases, Extent, Array
         V = volume(shape, a, d)
     extent = Extent(V * MEASURE[shape], maybe("area"), maybe("length"))
     scale = _scale(recipe, get, extent)
-    if recipe.source:
-        q = get(recipe.source) if scale is None else get(recipe.source) * scale
-    else:
-        q = np.zeros_like(d)
+    q = get(recipe.source) if recipe.source else np.zeros_like(d)
+    if scale is not None:
+        q = q * scale
     if "probe" in filled:
         from_left = get("probe") - (a if a is not None else 0.0)
         slack = 1e-9 * (d + get("probe"))
@@ -284,8 +277,8 @@ def cases_of(recipe: Recipe, get: Get, flag: Flag) -> tuple[Cases, Extent, Array
     cases = Cases(
         shape,
         (Layer(d, get("conductivity"), q),),
-        _face(recipe, "left", maybe),
-        _face(recipe, "right", maybe),
+        _face("left", maybe),
+        _face("right", maybe),
         a,
         limit_1 if limit is None else limit,
         left_limit,
@@ -303,7 +296,7 @@ def _flag_solid_left(recipe: Recipe, a: Array | None, flag: Flag) -> None:
                  "inner radius above 0 or leave it blank"))  # fmt: skip
 
 
-def _face(recipe: Recipe, side: str, maybe: Callable[[str], Array | None]) -> Face:
+def _face(side: str, maybe: Callable[[str], Array | None]) -> Face:
     return Face(maybe(f"{side} held"), maybe(f"{side} film"), maybe(f"{side} fluid"), maybe(f"{side} flux in"))
 
 

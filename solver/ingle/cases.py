@@ -94,13 +94,9 @@ class Cases:
 
     def take(self, rows: np.ndarray | slice) -> Cases:
         """Some of the cases."""
-        rest = (
-            None if x is None else x[rows] for x in (self.inner, self.limit, self.left_limit, self.right_limit, self.probe)
-        )
+        rest = (None if x is None else x[rows] for x in (self.inner, self.limit, self.left_limit, self.right_limit, self.probe))
         shape = self.shape if isinstance(self.shape, Shape) else self.shape[rows]
-        return Cases(
-            shape, tuple(layer.take(rows) for layer in self.layers), self.left.take(rows), self.right.take(rows), *rest
-        )
+        return Cases(shape, tuple(layer.take(rows) for layer in self.layers), self.left.take(rows), self.right.take(rows), *rest)
 
 
 @dataclass(frozen=True)
