@@ -12,6 +12,7 @@ from functools import partial
 import numpy as np
 
 from ingle_addin import more_functions
+from ingle_addin.about import about
 from ingle_addin.asking import mismatch_of
 from ingle_addin.calls import Outcome
 from ingle_addin.cells import Cell, CellError, Grid
@@ -178,5 +179,5 @@ def _cells(result: Evaluation, j: int) -> list[Cell]:
 _OTHERS: dict[str, Callable[[Sequence[Sequence[Grid]]], list[Outcome]]] = {
     "INGLE.PROFILE": lambda calls: [more_functions.profile(call, failed) for call in calls],
     "INGLE.POINTS": lambda calls: [more_functions.points(call, failed) for call in calls],
-    "INGLE.ABOUT": lambda calls: [Outcome(((more_functions.about(),),), (None,)) for _ in calls],
+    "INGLE.ABOUT": lambda calls: [Outcome(((about(),),), (None,)) for _ in calls],
 }

@@ -88,7 +88,7 @@ INPUTS: tuple[Input, ...] = (
     Input("outer diameter", _L, "outside of a layer, instead of its thickness", _LAYER, available=True),
     Input("radius", _L, "of a solid body of one layer", available=True),
     Input("diameter", _L, "of a solid body of one layer", available=True),
-    Input("length", _L, "along a cylinder's axis or a bar's heat path; with a width, the other side of a wall", available=True),
+    Input("length", _L, "along a cylinder's axis or a bar's heat path", available=True),
     Input("width", _L, "of a wall, across the current", available=True),
     Input("area", (Kind.AREA,), "of a wall's face", highest=1e12, available=True),
     Input("section", (Kind.AREA,), "of a bar", highest=1e12),
@@ -103,7 +103,7 @@ INPUTS: tuple[Input, ...] = (
           above=False, available=True),
     Input("power", (Kind.POWER,), "spread evenly over the layer's volume; needs the area of a wall or the length of a "
           "cylinder", _LAYER, -1e15, 1e15, above=False, available=True),
-    Input("line power", (Kind.LINE_POWER,), "spread evenly: per metre of a cylinder, or of a wall of that width", _LAYER,
+    Input("line power", (Kind.LINE_POWER,), "spread evenly over each metre of a cylinder", _LAYER,
           -1e15, 1e15, above=False, available=True),
     Input("current", (Kind.CURRENT,), "along the layer of a wall or cylinder, or along a bar", _LAYER, -1e12, 1e12, False),
     Input("voltage", (Kind.VOLTAGE,), "along the length, instead of a current", _LAYER, -1e12, 1e12, False),

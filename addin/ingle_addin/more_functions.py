@@ -3,7 +3,6 @@
 from __future__ import annotations
 
 from collections.abc import Callable, Sequence
-from functools import cache
 from itertools import pairwise
 
 import ingle
@@ -21,17 +20,6 @@ MOST_POINTS = 10_000
 _LONGEST_TEXT = 32_767  # characters a cell holds
 
 Failed = Callable[[Fault], Outcome]
-
-
-@cache
-def about() -> str:
-    """The name and version of this installation."""
-    from importlib.metadata import PackageNotFoundError, version
-
-    try:
-        return f"Ingle {version('ingle')}"
-    except PackageNotFoundError:
-        return "Ingle (not installed as a package)"
 
 
 def _number(grid: Grid, what: str) -> float | Fault:

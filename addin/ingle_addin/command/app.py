@@ -1,0 +1,113 @@
+"""The commands and their options."""
+
+from __future__ import annotations
+
+import sys
+from pathlib import Path
+from typing import Annotated
+
+import typer
+
+app = typer.Typer(
+    name="ingle",
+    help="How hot parts that heat themselves get, and what a temperature limit allows, in workbook cells.",
+    epilog="Begin with: ingle fill workbooks/busbars.xlsx",
+    no_args_is_help=False,
+    rich_markup_mode=None,
+    add_completion=False,
+    context_settings={"help_option_names": ["-h", "--help"], "max_content_width": 100},
+)
+
+
+def run(arguments: list[str] | None = None) -> int:
+    """Run with these arguments (the process's own if None); the exit code."""
+    from ingle_addin.command.failure import Failure
+
+    try:
+        result = app(arguments, standalone_mode=False)
+    except Failure as failure:
+        print(f"ingle: {failure}", file=sys.stderr)
+        return 2
+    except (typer.Abort, KeyboardInterrupt):
+        print("ingle: stopped; nothing was written", file=sys.stderr)
+        return 2
+    except BrokenPipeError:
+        sys.stderr.close()  # the reader of our output has left
+        return 0
+    except Exception as error:
+        shown = _usage(error)
+        if shown is None:
+            raise
+        print(f"ingle: {shown}", file=sys.stderr)
+        return 2
+    return result if isinstance(result, int) else 0
+
+
+def _usage(error: Exception) -> str | None:
+    """The words of a wrong use of the command line, None for any other error."""
+    words = getattr(error, "format_message", None)
+    if words is None:
+        return None
+    context = getattr(error, "ctx", None)
+    path = context.command_path if context is not None else "ingle"
+    message = str(words()).rstrip(".").replace("\n", " ")
+    return f"{message[:1].lower()}{message[1:]}; see {path} --help"
+
+
+def _version(wanted: bool) -> None:
+    if wanted:
+        from ingle_addin.about import about
+
+        print(about())
+        raise typer.Exit
+
+
+@app.callback(invoke_without_command=True)
+def _first(
+    context: typer.Context,
+    version: Annotated[bool, typer.Option("--version", callback=_version, is_eager=True, help="Show the version.")] = False,
+) -> None:
+    if context.invoked_subcommand is None and not version:
+        print(
+            "Ingle fills workbooks whose cells ask how hot self-heating parts get.\n"
+            "  ingle fill BOOK.xlsx    computes a workbook into BOOK.filled.xlsx\n"
+            "  ingle ask ANSWERS CASE  answers one case here\n"
+            "  ingle reference         lists all headings and functions\n"
+            "  ingle --help            lists all commands"
+        )
+
+
+@app.command(short_help="Compute a workbook.", epilog="Example: ingle fill candidates.xlsx -o candidates.out.xlsx")
+def fill(
+    book: Annotated[Path, typer.Argument(help="The workbook, .xlsx or .xlsm.", show_default=False)],
+    out: Annotated[Path | None, typer.Option("-o", "--out", help="Where to write; STEM.filled.xlsx if not given.")] = None,
+    in_place: Annotated[bool, typer.Option("--in-place", help="Write into BOOK itself, which is kept as BOOK.bak.")] = False,
+    strict: Annotated[bool, typer.Option("--strict", help="Leave with 1 if a row has no answer.")] = False,
+) -> int:
+    """Compute a workbook and write every computed value into its cell; all else in the file stays as it is."""
+    from ingle_addin.command.filling import fill_book
+
+    return fill_book(book, out, in_place, strict)
+
+
+@app.command(
+    short_help="Answer one case.",
+    epilog='Example: ingle ask "peak [°C]; why" "shape = wall; thickness [mm] = 10; conductivity [W/(m·K)] = 390; '
+    'generation [W/cm³] = 2; both film [W/(m²·K)] = 12; both fluid [°C] = 35"',
+)
+def ask(
+    answers: Annotated[str, typer.Argument(help="Answer headings, split by ;", show_default=False)],
+    case: Annotated[str, typer.Argument(help="HEADING = VALUE; HEADING = VALUE …", show_default=False)],
+) -> int:
+    """Answer one case in the terminal."""
+    from ingle_addin.command.asking import ask_case
+
+    return ask_case(answers, case)
+
+
+@app.command(short_help="List headings and functions.", epilog="Example: ingle reference")
+def reference() -> int:
+    """List the input headings, answer headings and worksheet functions."""
+    from ingle_addin.command.reference import print_reference
+
+    return print_reference()
