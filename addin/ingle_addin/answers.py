@@ -10,7 +10,7 @@ from ingle import Shape
 from ingle.shapes import Array
 
 from ingle_addin.cells import CellError
-from ingle_addin.faults import ROW, Fault
+from ingle_addin.faults import HERE, ROW, Fault
 from ingle_addin.heading_reader import Asked, Plan
 from ingle_addin.recipe import Extent, Recipe
 from ingle_addin.units import Kind
@@ -165,15 +165,11 @@ def _limit_faults(solved: Solved, recipe: Recipe) -> list[tuple[np.ndarray, Faul
     faults = []
     for code, slot in enumerate(_limit_slots(recipe), 1):
         if slot:
-            label = recipe.label(slot)
-            faults.append((
-                broken == code,
-                Fault(CellError.NUM, f"{label} in {ROW} is passed even with no source at all; raise the limit or cool the body more"),
-            ))  # fmt: skip
-    faults.append((
-        lacking == 3,
-        Fault(CellError.NUM, f"no source reaches the limit in {ROW}: that face is held below it; give a limit for the peak"),
-    ))  # fmt: skip
+            column = recipe.filled[slot]
+            sentence = f"{column.label} in {ROW} is {HERE}, passed even with no source; raise it or cool the body more"
+            faults.append((broken == code, Fault(CellError.NUM, sentence, (column.index,))))
+    sentence = f"no source reaches the limit in {ROW}, since that face is held below it; give a limit for the peak"
+    faults.append((lacking == 3, Fault(CellError.NUM, sentence)))
     return faults
 
 

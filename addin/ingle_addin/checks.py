@@ -77,7 +77,7 @@ def range_fault(column: Column) -> Fault:
     else:
         low, high = (number_text(column.unit.from_base(x)) for x in (item.lowest, item.highest))
         limits = f"it must be {'above' if item.above else 'at least'} {low} and at most {high}"
-    return Fault(CellError.NUM, f"{where} is {HERE}; {limits}; correct the value or the heading's unit", column.index)
+    return Fault(CellError.NUM, f"{where} is {HERE}; {limits}; correct the value or the heading's unit", (column.index,))
 
 
 def outside(column: Column, base: np.ndarray) -> np.ndarray | None:

@@ -101,8 +101,7 @@ def reason(result: Evaluation, table: Sequence[Values], j: int, row: int, number
 
 def sentence(fault: Fault, table: Sequence[Values], row: int, number: int) -> str:
     """A fault's sentence for one row; ``number`` names the row, 0 where it is the only one."""
-    value = number_text(table[fault.column].cell(row)) if fault.column >= 0 else ""
-    return finished(fault.sentence, number, value)
+    return finished(fault.sentence, number, [number_text(table[column].cell(row)) for column in fault.columns])
 
 
 def _judge(result: Evaluation, table: Sequence[Values], numbers: np.ndarray | None) -> None:

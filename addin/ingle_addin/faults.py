@@ -2,22 +2,23 @@
 
 from __future__ import annotations
 
+from collections.abc import Sequence
 from dataclasses import dataclass
 
 from ingle_addin.cells import CellError
 
-# Stand for the row and the cell's value in a sentence until it is shown; no heading can hold them.
-ROW, HERE = "\x00", "\x01"
+# Stand for the row and one or two cells' values in a sentence until it is shown; no heading can hold them.
+ROW, HERE, THERE = "\x00", "\x01", "\x02"
 LONGEST = 255
 
 
 @dataclass(frozen=True)
 class Fault:
-    """``error`` is the cell's; ``sentence`` may hold ROW and HERE; ``column`` is the column whose value HERE stands for."""
+    """``error`` is the cell's; ``sentence`` may hold ROW, HERE and THERE; ``columns`` hold the values of the last two."""
 
     error: CellError
     sentence: str
-    column: int = -1
+    columns: tuple[int, ...] = ()
 
 
 def quoted(text: str) -> str:
@@ -31,9 +32,11 @@ def row_words(number: int) -> str:
     return f"row {number}" if number > 0 else "this row"
 
 
-def finished(sentence: str, row: int, value: str = "") -> str:
-    """The sentence as shown: the row and value in their places, at most 255 characters."""
-    text = sentence.replace(ROW, row_words(row)).replace(HERE, value)
+def finished(sentence: str, row: int, values: Sequence[str] = ()) -> str:
+    """The sentence as shown: the row and values in their places, at most 255 characters."""
+    text = sentence.replace(ROW, row_words(row))
+    for mark, value in zip((HERE, THERE), values, strict=False):
+        text = text.replace(mark, value)
     text = text[:1].upper() + text[1:]
     return text if len(text) <= LONGEST else text[: LONGEST - 3] + "..."
 

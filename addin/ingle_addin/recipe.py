@@ -14,7 +14,7 @@ from ingle import Cases, Face, Layer, Shape
 from ingle.shapes import MEASURE, Array, solid_volume, volume
 
 from ingle_addin.cells import CellError
-from ingle_addin.faults import ROW, Fault
+from ingle_addin.faults import HERE, ROW, THERE, Fault
 from ingle_addin.heading_reader import Column, Plan
 from ingle_addin.headings import SOURCES
 
@@ -242,13 +242,14 @@ def cases_of(recipe: Recipe, get: Get, flag: Flag) -> tuple[Cases, Extent, Array
     a = length(recipe.inner) if recipe.inner else None
     d = length(recipe.outer)
     if a is not None:
+        inner, outer = filled[recipe.inner], filled[recipe.outer]
         if recipe.outer in ("radius", "diameter"):
-            flag(a > 0.0, Fault(CellError.VALUE, f"{recipe.label(recipe.outer)} in {ROW} is for a solid body, and "
-                 f"{recipe.label(recipe.inner)} is filled in; use outer radius or outer diameter"))  # fmt: skip
+            sentence = f"{outer.label} in {ROW} is for a solid body, and {inner.label} is {HERE}; use outer {recipe.outer} instead"
+            flag(a > 0.0, Fault(CellError.VALUE, sentence, (inner.index,)))
         if recipe.outer != "thickness":
             d = d - a
-            flag(d <= 0.0, Fault(CellError.NUM, f"{recipe.label(recipe.inner)} in {ROW} is not below "
-                 f"{recipe.label(recipe.outer)}; a bore is smaller than the outside"))  # fmt: skip
+            sentence = f"{inner.label} in {ROW} is {HERE}, not below {outer.label} of {THERE}; make the bore smaller than the outside"
+            flag(d <= 0.0, Fault(CellError.NUM, sentence, (inner.index, outer.index)))
     if recipe.inner:
         _flag_solid_left(recipe, a, flag)
     if shape == Shape.WALL:
@@ -266,8 +267,9 @@ def cases_of(recipe: Recipe, get: Get, flag: Flag) -> tuple[Cases, Extent, Array
         from_left = get("probe") - (a if a is not None else 0.0)
         slack = 1e-9 * (d + get("probe"))
         where = "from the left face" if shape == Shape.WALL else "a radius"
-        flag((from_left < -slack) | (from_left > d + slack), Fault(CellError.NUM, f"{recipe.label('probe')} in {ROW} lies outside "
-             f"the body; give a place in it, {where}"))  # fmt: skip
+        probe = filled["probe"]
+        sentence = f"{probe.label} in {ROW} is {HERE}, outside the body; give a place in it, {where}"
+        flag((from_left < -slack) | (from_left > d + slack), Fault(CellError.NUM, sentence, (probe.index,)))
     limit, limit_1 = maybe("limit"), maybe("limit 1")
     if limit is not None and limit_1 is not None:
         limit = np.fmin(limit, limit_1)

@@ -55,8 +55,9 @@ def depth_of_volume(shape: Shape, a: Array, v: Array) -> Array:
     if shape == Shape.WALL:
         return v
     if shape == Shape.CYLINDER:
-        return 2.0 * v / (a + np.sqrt(a * a + 2.0 * v))
-    b = np.cbrt(a * a * a + 3.0 * v)
+        root: Array = np.sqrt(a * a + 2.0 * v)
+        return 2.0 * v / (a + root)
+    b: Array = np.cbrt(a * a * a + 3.0 * v)
     return 3.0 * v / (a * a + a * b + b * b)
 
 
