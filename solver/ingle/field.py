@@ -101,10 +101,11 @@ def heat_made(state: State) -> Array:
 
 
 def left_share(state: State) -> Array:
-    """Share of all heat that leaves which leaves on the left, 0 to 1; NaN where none leaves."""
+    """Share of all heat that leaves which leaves on the left, 0 to 1; NaN where none leaves beyond rounding."""
     left, right = np.maximum(-state.Q_left, 0.0), np.maximum(state.Q_right, 0.0)
     total = left + right
-    return np.where(total > 0.0, left / np.where(total > 0.0, total, 1.0), np.nan)
+    leaves = total > 1e-13 * _largest_heat(state)
+    return np.where(leaves, left / np.where(leaves, total, 1.0), np.nan)
 
 
 def balance(state: State) -> Array:
@@ -112,10 +113,15 @@ def balance(state: State) -> Array:
     made = state.q * state.steps.V
     # Q₁ − Q₀ = made by the march itself; what can be wrong is the far face's law, and the sum in floating point.
     short = np.abs(state.imbalance) + np.abs(state.Q_right - state.Q_left - made)
-    scale = np.abs(made)
+    scale = _largest_heat(state)
+    return np.where(scale > 0.0, short / np.where(scale > 0.0, scale, 1.0), short)
+
+
+def _largest_heat(state: State) -> Array:
+    scale = np.abs(state.q * state.steps.V)
     for heat in (state.Q_left, state.Q_right, state.F_left, state.F_right):
         scale = np.maximum(scale, np.abs(heat))
-    return np.where(scale > 0.0, short / np.where(scale > 0.0, scale, 1.0), short)
+    return scale
 
 
 def origin(state: State) -> Array | float:

@@ -110,8 +110,7 @@ CHOICES: tuple[tuple[str, str], ...] = (
     ),
     ("Where a body is at one temperature the peak's place is its left face.", "where (from the left face, or the radius)"),
     (
-        "In `conductivity` and `generation` a text with a `:` is a text table, out of scope (#N/A); any other text is "
-        "#VALUE!.",
+        "In `conductivity` and `generation` a text with a `:` is a text table, out of scope (#N/A); any other text is #VALUE!.",
         "a number or a text table; A number stored as text is `#VALUE!`",
     ),
     ("BTU is the international table one, 1055.05585262 J; lb is the avoirdupois pound.", "then pint reads it"),

@@ -49,9 +49,17 @@ def _place(row: Row) -> float:
     return RELATIVE * (row.body.thickness + row.body.inner * 1e-6)
 
 
+def _tied(row: Row) -> bool:
+    """Whether two limits are reached at the same source, so that either may be named."""
+    known = sorted(source for source in row.reached.values() if source is not None)
+    return len(known) > 1 and known[1] - known[0] <= 2.0 * _allowable(row)
+
+
 def _absolute(row: Row, ask: h.Asked) -> float:
     """Error in the unit asked."""
     factor = ask.unit[0]
+    if ask.name in ("limited by", "headroom") and _tied(row):
+        return math.inf
     if ask.name in TEMPERATURES:
         return RELATIVE * temperature_scale(row) / factor + 1e-12 * max(abs(sink) for sink in row.solved.sinks) / factor
     if ask.name == "peak place":
@@ -80,7 +88,8 @@ def tolerances(answers: str | Sequence[str], headings: Sequence[str], rows: Sequ
     """For every row and answer the greatest error of the reference's number, in the unit asked.
 
     0 for texts and errors, infinite where the answer is not defined (the place of the peak of a body at one
-    temperature; the share of heats that cancel). Everything rests on 1e-6 of the row's temperature scale, of its
+    temperature; the share of heats that cancel; which of
+    two limits is reached first at the same source). Everything rests on 1e-6 of the row's temperature scale, of its
     largest heat, and of its thickness.
     """
     asks = wanted(answers)
