@@ -1,0 +1,156 @@
+"""The calculation engine as the rest sees it: constants and formulas in, values out, many at a time."""
+
+from __future__ import annotations
+
+import contextlib
+import importlib.util
+import math
+import os
+import subprocess
+import sys
+from collections.abc import Iterable, Sequence
+from pathlib import Path
+from typing import Any, BinaryIO, cast
+
+from ingle_addin.book import child
+from ingle_addin.book.errors import BookError
+from ingle_addin.cells import Cell, CellError
+
+_ERRORS = {error.value: error for error in CellError}
+# Cells sent at a time: large enough to cost little, small enough that no second copy of a sheet is in memory.
+_BATCH = 50_000
+
+
+_SCRIPT = child.__file__
+
+
+class Strange(str):
+    """An error of the engine that is none of a spreadsheet's: a formula it cannot read, a circle, an array that spills."""
+
+    __slots__ = ()
+
+
+class Engine:
+    """One workbook in the engine, sheets by index, cells by :func:`ingle_addin.book.refs.key_of`.
+
+    Lives in a process of its own, so that a crash of native code loses nothing; whatever the process does wrong is a
+    :class:`BookError` that names the workbook. Close it, or use it in ``with``.
+    """
+
+    def __init__(self, path: Path, sheet_names: Sequence[str]) -> None:
+        if not _is_installed():
+            raise BookError(NOT_INSTALLED)
+        self._path = path
+        environment = {**os.environ, "PYTHONPATH": os.pathsep.join(each for each in sys.path if each)}
+        self._process = subprocess.Popen(
+            [sys.executable, "-P", _SCRIPT],
+            stdin=subprocess.PIPE,
+            stdout=subprocess.PIPE,
+            stderr=subprocess.DEVNULL,
+            env=environment,
+        )
+        # Both are there, since both were asked for.
+        self._input, self._output = cast(BinaryIO, self._process.stdin), cast(BinaryIO, self._process.stdout)
+        names = self._ask("start", list(sheet_names))
+        if names is None:
+            self.close()
+            raise BookError(NOT_INSTALLED)
+        self.sheet_names: tuple[str, ...] = tuple(names)
+
+    def __enter__(self) -> Engine:
+        return self
+
+    def __exit__(self, *_: object) -> None:
+        self.close()
+
+    def close(self) -> None:
+        """End the process."""
+        self._process.kill()
+        with contextlib.suppress(OSError):  # what is still in the pipe has no reader
+            self._input.close()
+        self._output.close()
+        self._process.wait()
+
+    def _tell(self, name: str, *args: object) -> None:
+        """Send a command that is not answered."""
+        try:
+            child.send(self._input, (name, args))
+        except OSError:
+            raise self._stopped() from None
+
+    def _ask(self, name: str, *args: object) -> Any:
+        """Send a command and wait for its answer."""
+        self._tell(name, *args)
+        try:
+            return child.receive(self._output)
+        except (OSError, EOFError):
+            raise self._stopped() from None
+
+    def _stopped(self) -> BookError:
+        self.close()
+        return BookError(
+            f"{self._path}: the calculation engine stopped on this workbook; nothing was written. "
+            "Simplify its longest formulas and try again"
+        )
+
+    def put(self, sheet: int, cells: Iterable[tuple[int, Cell]]) -> None:
+        """Set constants; None empties the cell."""
+        keys: list[int] = []
+        values: list[object] = []
+        for key, value in cells:
+            keys.append(key)
+            values.append(_outward(value))
+            if len(keys) >= _BATCH:
+                self._tell("put", sheet, keys, values)
+                keys, values = [], []
+        if keys:
+            self._tell("put", sheet, keys, values)
+
+    def put_formulas(self, sheet: int, keys: Sequence[int], texts: Sequence[str]) -> None:
+        """Set formulas (without ``=``)."""
+        for at in range(0, len(keys), _BATCH):
+            self._tell("formulas", sheet, keys[at : at + _BATCH], texts[at : at + _BATCH])
+
+    def put_array(self, sheet: int, key: int, rows: int, columns: int, text: str) -> None:
+        """Set an array formula over a range."""
+        self._tell("array", sheet, key, rows, columns, text)
+
+    def refused(self) -> list[tuple[int, int]]:
+        """The cells (sheet, cell) whose formula the engine has refused since the last time of asking."""
+        return [(sheet, key) for sheet, key in self._ask("refused")]
+
+    def evaluate(self) -> None:
+        """Work everything out."""
+        self._tell("evaluate")
+
+    def values(self, sheet: int, keys: Sequence[int]) -> list[Cell]:
+        """Read cells; an error that no spreadsheet knows comes back as :class:`Strange`."""
+        found: list[Cell] = []
+        for at in range(0, len(keys), _BATCH):
+            for value in self._ask("values", sheet, keys[at : at + _BATCH]):
+                found.append(_inward(value[0]) if type(value) is tuple else value)
+        return found
+
+
+NOT_INSTALLED = (
+    "the workbook commands need the ironcalc package, which has no wheel for this platform or is not installed; "
+    "try pip install ironcalc, or use Python 3.11 to 3.14 on 64-bit Linux, Windows or macOS"
+)
+
+
+def _is_installed() -> bool:
+    return importlib.util.find_spec("ironcalc") is not None
+
+
+def _outward(value: Cell) -> object:
+    if value is None or type(value) is str or type(value) is bool:
+        return value
+    if type(value) is float:
+        return value if math.isfinite(value) else ("#NUM!",)
+    if isinstance(value, CellError):
+        return (value.value,)
+    return float(value) if isinstance(value, (int, float)) else str(value)
+
+
+def _inward(text: str) -> Cell:
+    return _ERRORS.get(text) or Strange(text)

@@ -1,0 +1,115 @@
+"""What came of filling a workbook, as data and as plain lines for people."""
+
+from __future__ import annotations
+
+from dataclasses import dataclass
+from pathlib import Path
+
+SHOWN = 10
+
+
+@dataclass(frozen=True)
+class NoAnswer:
+    """A row of an Ingle answer that holds an error: ``cell`` is where, ``error`` what it shows, ``reason`` why."""
+
+    sheet: str
+    cell: str
+    row: int
+    error: str
+    reason: str
+
+
+@dataclass(frozen=True)
+class NotComputed:
+    """A formula that kept its stored value; ``ingle`` if there is an Ingle call in it.
+
+    ``rests`` if it was computed, but from a cell that was not.
+    """
+
+    sheet: str
+    cell: str
+    reason: str
+    rests: bool = False
+    ingle: bool = False
+
+
+@dataclass(frozen=True)
+class Truncated:
+    """An answer larger than the cells its formula may fill (``stored``; empty where one value is used in a formula)."""
+
+    sheet: str
+    cell: str
+    rows: int
+    columns: int
+    stored: str
+
+    def __str__(self) -> str:
+        used = f"fills only {self.stored}" if self.stored else "uses only its first value"
+        return f"the answer has {_count(self.rows, 'row')} and {_count(self.columns, 'column')}, but the formula {used}"
+
+
+@dataclass(frozen=True)
+class Report:
+    """Counts and lists: Ingle cells and ordinary cells computed, cells whose value changed, and all that is amiss."""
+
+    book: Path
+    out: Path | None = None
+    ingle_cells: int = 0
+    ordinary_cells: int = 0
+    changed_cells: int = 0
+    no_answers: tuple[NoAnswer, ...] = ()
+    not_computed: tuple[NotComputed, ...] = ()
+    truncated: tuple[Truncated, ...] = ()
+    backup: Path | None = None
+    remarks: tuple[str, ...] = ()
+
+    @property
+    def complete(self) -> bool:
+        """Whether every Ingle call was computed, has an answer in every row, and all of it is shown."""
+        return not (self.no_answers or self.truncated or any(each.ingle for each in self.not_computed))
+
+
+def summary(report: Report) -> list[str]:
+    """Plain lines, the main result first, at most ten examples of each kind."""
+    lines = [
+        f"{_count(report.ingle_cells, 'cell')} with Ingle formulas and {_count(report.ordinary_cells, 'other formula')} "
+        f"computed; {_count(report.changed_cells, 'value')} changed."
+    ]
+    if report.no_answers:
+        lines.append(f"{_count(len(report.no_answers), 'row')} without an answer:")
+        _examples(lines, [f"{_at(each.sheet, each.cell)} {each.error}: {each.reason}" for each in report.no_answers])
+    left = [each for each in report.not_computed if not each.rests]
+    resting = [each for each in report.not_computed if each.rests]
+    if left:
+        lines.append(f"{_count(len(left), 'formula')} not computed; the stored value was kept:")
+        _examples(lines, [f"{_at(each.sheet, each.cell)}: {each.reason}" for each in left])
+    if resting:
+        lines.append(f"{_count(len(resting), 'formula')} computed from such kept values:")
+        _examples(lines, [f"{_at(each.sheet, each.cell)}: {each.reason}" for each in resting])
+    if report.truncated:
+        lines.append(f"{_count(len(report.truncated), 'answer')} larger than the cells to hold it:")
+        _examples(lines, [f"{_at(each.sheet, each.cell)}: {each}" for each in report.truncated])
+    lines.extend(report.remarks)
+    if report.backup is not None:
+        lines.append(f"The workbook as it was is kept in {report.backup}.")
+    if report.out is not None:
+        lines.append(f"Written to {report.out}.")
+    return lines
+
+
+def _examples(lines: list[str], texts: list[str]) -> None:
+    lines.extend("  " + text for text in texts[:SHOWN])
+    if len(texts) > SHOWN:
+        lines.append(f"  … and {_number(len(texts) - SHOWN)} more")
+
+
+def _at(sheet: str, cell: str) -> str:
+    return f"{sheet}!{cell}"
+
+
+def _number(count: int) -> str:
+    return f"{count:,}"
+
+
+def _count(count: int, noun: str) -> str:
+    return f"{_number(count)} {noun}" + ("" if count == 1 else "s")

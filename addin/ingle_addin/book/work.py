@@ -1,0 +1,281 @@
+"""A workbook taken apart: which formula goes to the engine, which is a call, which keeps its stored value."""
+
+from __future__ import annotations
+
+import datetime
+import re
+from collections.abc import Callable, Collection, Sequence
+from dataclasses import dataclass
+
+from ingle_addin.book.bind import Binder, HelperSheet
+from ingle_addin.book.blocks import Blocks
+from ingle_addin.book.book import Book, Formulas
+from ingle_addin.book.calling import Call
+from ingle_addin.book.engine import Engine
+from ingle_addin.book.formula import MAX_NESTING, UnreadableError, check_size
+from ingle_addin.book.lift import Lifter
+from ingle_addin.book.plan import Plan, Result, render
+from ingle_addin.book.refs import key_of, place_of
+from ingle_addin.book.resolve import Resolver
+from ingle_addin.book.scan import FormulaCell
+from ingle_addin.book.spelling import Spelling
+from ingle_addin.cells import Cell, CellError
+
+# Told about the work as (what is being done, share done from 0 to 1).
+Progress = Callable[[str, float], None]
+
+_BATCH = 50_000
+_FORBIDDEN_IN_NAMES = re.compile(r"[\[\]*?/\\:\x00-\x1f]")
+_MAX_ARRAY = 1_000_000
+
+
+@dataclass(slots=True)
+class Lifted:
+    """A formula with calls nested in ordinary functions; ``elements`` are its cells with their place in the array."""
+
+    sheet: int
+    cell: FormulaCell
+    plan: Plan
+    slots: Sequence[str]
+    calls: list[Call]
+    elements: list[tuple[int, tuple[int, int] | None]]
+
+
+class Work:
+    """A workbook taken apart, ready for the rounds of :mod:`ingle_addin.book.rounds`.
+
+    ``values`` holds every cell as it is known now; ``engine_cells`` are those the engine computes; ``whole`` are the
+    calls that are a cell's whole formula; ``kept`` says why a formula keeps its stored value.
+    """
+
+    def __init__(self, book: Book, functions: Collection[str], now: datetime.datetime, progress: Progress) -> None:
+        self.book = book
+        self.progress = progress
+        count = len(book.sheets)
+        self.helper_index, self.block_index, self.test_index = count, count + 1, count + 2
+        self.sheet_names = _engine_names([sheet.name for sheet in book.parts.sheets])
+        self.values = [sheet.values for sheet in book.sheets]
+        self.engine_cells: list[list[int]] = [[] for _ in book.sheets]
+        self.whole: list[tuple[Call, FormulaCell]] = []
+        self.nested: list[Lifted] = []
+        self.kept: dict[tuple[int, int], str] = {}
+        self.plans: list[list[Plan]] = []
+        self.formulas: list[Formulas] = []
+        self._waiting: list[tuple[list[int], list[str]]] = [([], []) for _ in book.sheets]
+        self.helper = HelperSheet()
+        self.blocks = Blocks(self.sheet_names[self.block_index])
+        self.tests: list[tuple[int, Plan]] = []
+        self._engine: Engine | None = None
+        self._lifter = Lifter(
+            Resolver(book.parts),
+            Spelling(functions),
+            tuple(self.sheet_names),
+            book.parts.date1904,
+            any(sheet.has_hidden_rows for sheet in book.sheets),
+            now,
+        )
+        self._cache: dict[tuple[int, str, bool], Plan] = {}
+        self._table_sheets = {table.sheet for table in book.parts.tables}
+
+    @property
+    def engine(self) -> Engine:
+        """The engine, started when first needed."""
+        if self._engine is None:
+            self._engine = Engine(self.book.path, self.sheet_names)
+        return self._engine
+
+    @property
+    def has_engine(self) -> bool:
+        """Whether any formula needed the engine."""
+        return self._engine is not None
+
+    def close(self) -> None:
+        """End the engine."""
+        if self._engine is not None:
+            self._engine.close()
+
+    # -- taking the formulas apart ------------------------------------------------------------------------------------
+
+    def prepare(self) -> None:
+        """Plan and bind every formula, and put into the engine what it is to compute."""
+        moving = [{key for cell in sheet.formulas for key, _ in elements_of(cell)} for sheet in self.book.sheets]
+        binder = Binder(self.book.sheets, moving, self.helper, self.blocks.address)
+        for sheet, each in enumerate(self.book.sheets):
+            formulas = Formulas(each)
+            self.formulas.append(formulas)
+            plans: list[Plan] = []
+            self.plans.append(plans)
+            for index, cell in enumerate(each.formulas):
+                if index % _BATCH == 0:
+                    self.progress("reading formulas", index / len(each.formulas))
+                plan, slots = self._plan_of(formulas, cell, sheet)
+                plans.append(plan)
+                if plan.keep is not None:
+                    self.keep(sheet, cell, plan.keep)
+                elif plan.calls:
+                    self._bind(binder, sheet, cell, plan, slots)
+                elif cell.rect is not None:
+                    self._put_array(sheet, cell, plan, slots)
+                else:
+                    self._queue(sheet, [cell.key], [render(plan.pieces, slots, cell.key)])
+                    self.engine_cells[sheet].append(cell.key)
+            self._send(sheet)
+        if self.helper.keys:
+            self.engine.put_formulas(self.helper_index, self.helper.keys, self.helper.texts)
+        if self.has_engine:
+            self._load()
+
+    def _queue(self, sheet: int, keys: list[int], texts: list[str]) -> None:
+        """Have formulas put into the engine, many at a time."""
+        waiting_keys, waiting_texts = self._waiting[sheet]
+        waiting_keys += keys
+        waiting_texts += texts
+        if len(waiting_keys) >= _BATCH:
+            self._send(sheet)
+
+    def _send(self, sheet: int) -> None:
+        keys, texts = self._waiting[sheet]
+        if keys:
+            self.engine.put_formulas(sheet, keys, texts)
+            self._waiting[sheet] = ([], [])
+
+    def _plan_of(self, formulas: Formulas, cell: FormulaCell, sheet: int) -> tuple[Plan, Sequence[str]]:
+        try:
+            if cell.kind == "data table":
+                raise UnreadableError("it is part of a what-if data table")
+            if len(cell.text) > MAX_NESTING:  # a shorter one cannot be too long or nested too deep
+                check_size(cell.text)
+            taken = formulas.take(cell)
+            if taken is None or (not cell.text.strip() and cell.shared is None):
+                raise UnreadableError("the formula could not be read")
+        except UnreadableError as reason:
+            return Plan(keep=str(reason), is_ingle="INGLE" in cell.text.upper()), ()
+        shape, slots = taken
+        in_array = cell.kind == "array"
+        cached = (sheet, shape, in_array)
+        plan = self._cache.get(cached)
+        if plan is None:
+            plan = self._lifter.plan(shape, sheet, place_of(cell.key), in_array=in_array)
+            # "[column]" without a table's name means the table around the cell: not the same for every cell.
+            if not (sheet in self._table_sheets and "[" in shape):
+                self._cache[cached] = plan
+            if plan.keep is None and not plan.whole and not plan.array:
+                self._add_test(plan, slots, cell.key)
+        return plan, slots
+
+    def _add_test(self, plan: Plan, slots: Sequence[str], key: int) -> None:
+        """One formula of each shape stands on a sheet of its own, to tell a formula the engine cannot read."""
+        place = key_of(1_048_000 - len(self.tests), 16_384) if len(self.tests) < 1_000_000 else None
+        if place is not None:
+            self.tests.append((place, plan))
+            self.engine.put_formulas(self.test_index, [place], [render(plan.pieces, slots, key, (0, 0), _one)])
+
+    def keep(self, sheet: int, cell: FormulaCell, reason: str) -> dict[int, Cell]:
+        """Leave the stored value in a formula's cell, and in the children of its array; return these values."""
+        self.kept[sheet, cell.key] = reason
+        children = self.book.sheets[sheet].children
+        stored = {key: children.get(key, (None, 0, 0))[0] for key, _ in elements_of(cell)}
+        stored[cell.key] = cell.stored
+        values = self.values[sheet]
+        for key, value in stored.items():
+            if value is None:
+                values.pop(key, None)
+            else:
+                values[key] = value
+        return stored
+
+    def _put_array(self, sheet: int, cell: FormulaCell, plan: Plan, slots: Sequence[str]) -> None:
+        rect = cell.rect
+        assert rect is not None
+        elements = elements_of(cell)
+        if len(elements) < rect.rows * rect.columns:
+            self.keep(sheet, cell, "its array has too many cells")
+            return
+        if plan.array:
+            text = render(plan.pieces, slots, cell.key)
+            self.engine.put_array(sheet, cell.key, rect.rows, rect.columns, text)
+        else:
+            texts = [render(plan.pieces, slots, cell.key, at) for _, at in elements]
+            self._queue(sheet, [key for key, _ in elements], texts)
+        self.engine_cells[sheet] += [key for key, _ in elements]
+
+    def _bind(self, binder: Binder, sheet: int, cell: FormulaCell, plan: Plan, slots: Sequence[str]) -> None:
+        """Make the calls of a formula."""
+        try:
+            calls = binder.calls(plan, slots, sheet, cell.key)
+        except UnreadableError as reason:
+            self.keep(sheet, cell, str(reason))
+            return
+        elements = elements_of(cell)
+        for piece in plan.pieces if cell.kind != "array" else ():
+            if isinstance(piece, Result) and not piece.whole:
+                calls[piece.call].first_only = True
+        if plan.whole:
+            self.values[sheet].update((key, CellError.NA) for key, _ in elements)
+            self.whole.append((calls.pop(), cell))
+            elements = []
+        if calls or elements:
+            lifted = Lifted(sheet, cell, plan, slots, calls, elements)
+            self.nested.append(lifted)
+            if elements:
+                self.write_nested(lifted)
+                self.engine_cells[sheet] += [key for key, _ in elements]
+
+    def write_nested(self, lifted: Lifted) -> None:
+        """Put the formula around nested calls into the engine, with the answers' present places."""
+        plan, cell = lifted.plan, lifted.cell
+
+        def address(call: int, whole: bool, element: tuple[int, int] | None) -> str:
+            return self.blocks.address(lifted.calls[call], whole, element)
+
+        if plan.array and cell.rect is not None:
+            text = render(plan.pieces, lifted.slots, cell.key, None, address)
+            self.engine.put_array(lifted.sheet, cell.key, cell.rect.rows, cell.rect.columns, text)
+            return
+        keys = [key for key, _ in lifted.elements]
+        texts = [render(plan.pieces, lifted.slots, cell.key, at, address) for _, at in lifted.elements]
+        self._queue(lifted.sheet, keys, texts)
+
+    def rewrite(self, lifted: Sequence[Lifted]) -> None:
+        """As :meth:`write_nested` for many, sent at once."""
+        for each in lifted:
+            self.write_nested(each)
+        for sheet in range(len(self._waiting)):
+            self._send(sheet)
+
+    def _load(self) -> None:
+        for sheet, values in enumerate(self.values):
+            self.progress("loading the calculation engine", sheet / len(self.values))
+            self.engine.put(sheet, values.items())
+        self.engine.put(self.block_index, ((key, CellError.NA) for key in self.blocks.first_cells()))
+
+
+def _one(_call: int, _whole: bool, _element: tuple[int, int] | None) -> str:
+    return "1"
+
+
+def elements_of(cell: FormulaCell) -> list[tuple[int, tuple[int, int] | None]]:
+    """The cells that a formula fills, with their place in its array (None outside of an array formula)."""
+    rect = cell.rect
+    if rect is None:
+        return [(cell.key, None)]
+    if rect.rows * rect.columns > _MAX_ARRAY:
+        return [(cell.key, (0, 0))]
+    return [(key_of(rect.top + i, rect.left + j), (i, j)) for i in range(rect.rows) for j in range(rect.columns)]
+
+
+def _engine_names(names: Sequence[str]) -> list[str]:
+    """Names that the engine takes: those of the file where it can, and three more for our own sheets."""
+    taken: set[str] = set()
+    found: list[str] = []
+    for index, name in enumerate([*names, "in", "out", "try"]):
+        ours = index >= len(names)
+        good = (
+            not ours and 0 < len(name) <= 31 and not _FORBIDDEN_IN_NAMES.search(name) and "'" not in (name[0], name[-1])
+        )
+        free = name if good and name.casefold() not in taken else f"of Ingle {index}"
+        while free.casefold() in taken:
+            free += "'s"
+        taken.add(free.casefold())
+        found.append(free)
+    return found
