@@ -210,8 +210,8 @@ def test_cells_as_they_are_written(tmp_path: Path, cell: str, expected: str, pre
     def prefixed(text: str) -> str:
         return re.sub(r"<(/?)(row|c|f|v|is|t|extLst|ext)\b", rf"<\1{prefix}:\2", text) if prefix else text
 
-    if prefix and "<!--" in cell:
-        pytest.skip("the comment would be rewritten too")
+    if "<!--" in cell:
+        prefix = ""  # the comment would be rewritten too
     around = '<row r="1">{}<c r="B1" t="inlineStr"><is><t>é</t></is></c></row>'
     book = with_sheet_xml(tmp_path / "book.xlsx", prefixed(around.format(cell)), prefix=prefix)
     fill(book, tmp_path / "out.xlsx", functions=FUNCTIONS, solve=Solver())

@@ -19,5 +19,6 @@ class Computed:
     ingle: set[tuple[int, int]] = field(default_factory=set)
     ordinary_cells: int = 0
     no_answers: list[NoAnswer] = field(default_factory=list)
+    hidden: int = 0  # calls without an answer inside formulas that show a value
     not_computed: list[NotComputed] = field(default_factory=list)
     truncated: list[Truncated] = field(default_factory=list)

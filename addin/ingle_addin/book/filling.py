@@ -92,6 +92,7 @@ def report_of(book: Book, computed: Computed, changed: int, out: Path | None, ba
         ordinary_cells=computed.ordinary_cells,
         changed_cells=changed,
         no_answers=tuple(computed.no_answers),
+        hidden=computed.hidden,
         not_computed=tuple(computed.not_computed),
         truncated=tuple(computed.truncated),
         backup=backup,

@@ -2,6 +2,7 @@
 
 from __future__ import annotations
 
+from collections.abc import Sequence
 from dataclasses import dataclass
 from pathlib import Path
 
@@ -58,6 +59,7 @@ class Report:
     ordinary_cells: int = 0
     changed_cells: int = 0
     no_answers: tuple[NoAnswer, ...] = ()
+    hidden: int = 0
     not_computed: tuple[NotComputed, ...] = ()
     truncated: tuple[Truncated, ...] = ()
     backup: Path | None = None
@@ -76,8 +78,12 @@ def summary(report: Report) -> list[str]:
         f"computed; {_count(report.changed_cells, 'value')} changed."
     ]
     if report.no_answers:
-        lines.append(f"{_count(len(report.no_answers), 'row')} without an answer:")
-        _examples(lines, [f"{_at(each.sheet, each.cell)} {each.error}: {each.reason}" for each in report.no_answers])
+        rows = _by_row(report.no_answers)
+        lines.append(f"{_count(len(rows), 'row')} without an answer:")
+        _examples(lines, rows)
+    if report.hidden:
+        verb = "stands" if report.hidden == 1 else "stand"
+        lines.append(f"{_count(report.hidden, 'Ingle call')} without an answer {verb} inside formulas that show a value.")
     left = [each for each in report.not_computed if not each.rests]
     resting = [each for each in report.not_computed if each.rests]
     if left:
@@ -94,6 +100,18 @@ def summary(report: Report) -> list[str]:
         lines.append(f"The workbook as it was is kept in {report.backup}.")
     if report.out is not None:
         lines.append(f"Written to {report.out}.")
+    return lines
+
+
+def _by_row(missing: Sequence[NoAnswer]) -> list[str]:
+    """One line a row and reason: a row at fault has as many cells in error as it has answers."""
+    found: dict[tuple[str, int, str], list[NoAnswer]] = {}
+    for each in missing:
+        found.setdefault((each.sheet, each.row, each.reason), []).append(each)
+    lines = []
+    for (sheet, _, reason), cells in found.items():
+        more = f" and {_count(len(cells) - 1, 'cell')} beside it" if len(cells) > 1 else ""
+        lines.append(f"{_at(sheet, cells[0].cell)}{more} {cells[0].error}: {reason}")
     return lines
 
 

@@ -336,6 +336,10 @@ class _Rounds:
                 keys = [cell.key] if cell.kind != "array" else [key for key, _ in laid(call.grid, cell.rect, False)]  # type: ignore[arg-type]
                 values = work.values[call.sheet]
                 result.values[call.sheet].update((key, values[key]) for key in keys)
+            if cell is None and not isinstance(work.values[call.sheet].get(call.key), CellError):
+                # A call in a branch not taken, or whose error its formula answers for: the cell shows a value.
+                result.hidden += any(True for _ in unanswered(call.grid, call.reasons))
+                continue
             self._note_unanswered(call, cell, answers)
         result.no_answers = [answers[key] for key in sorted(answers)]
         result.truncated = [note for _, note in sorted(self._truncated.values(), key=lambda each: each[0])]
