@@ -6,6 +6,7 @@ import math
 from collections.abc import Sequence
 
 from . import headings as h
+from . import headings2, table2
 from .rows import RefusedError, Row, read, understand
 from .table import padded, wanted
 
@@ -55,7 +56,7 @@ def _tied(row: Row) -> bool:
     return len(known) > 1 and known[1] - known[0] <= 2.0 * _allowable(row)
 
 
-def _absolute(row: Row, ask: h.Asked) -> float:
+def _absolute(row: Row, ask: headings2.Asked) -> float:
     """Error in the unit asked."""
     factor = ask.unit[0]
     if ask.name in ("limited by", "headroom") and _tied(row):
@@ -94,9 +95,13 @@ def tolerances(answers: str | Sequence[str], headings: Sequence[str], rows: Sequ
     """
     asks = wanted(answers)
     columns = [h.column(heading) for heading in headings]
+    wider = [headings2.column(heading) for heading in headings]
     out = []
     for given in rows:
         cells = padded(given, len(columns))
+        if table2.concerns(wider, cells):
+            out.append(table2.tolerances(asks, wider, cells))
+            continue
         try:
             row = understand(read(columns, cells), columns)
         except RefusedError:

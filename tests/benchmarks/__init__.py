@@ -1,0 +1,1 @@
+"""Benchmarks: run a script of this folder to print its table."""
