@@ -9,17 +9,19 @@ import numpy as np
 from ingle import Shape
 from ingle.shapes import Array
 
+from ingle_addin.case_builder import Built
 from ingle_addin.cells import CellError
 from ingle_addin.faults import HERE, ROW, Fault
 from ingle_addin.heading_reader import Asked, Plan
-from ingle_addin.recipe import Extent, Recipe
+from ingle_addin.recipe import Recipe, base_name
 from ingle_addin.units import Kind
 
-_PLAIN = ("peak", "peak_place", "mean", "probe_temperature", "left_share", "balance", "headroom")
-_ALLOWED = ("allowable_generation", "first_broken", "lacking")
+_ALLOWED = ("allowable_multiple", "first_broken", "lacking")
 # A limit is passed when the temperature is this much above it: less is rounding, at an allowable source put back.
 _PASSED = 1e-8
 _SHAPE_WORDS = {Shape.WALL: "wall", Shape.CYLINDER: "cylinder", Shape.SPHERE: "sphere"}
+# The solver's numbers of limits: 1 anywhere, 2 left face, 3 right face, 3 + n layer n.
+_LIMIT_SLOTS = ("limit", "left limit", "right limit")
 
 
 @dataclass(frozen=True)
@@ -27,8 +29,7 @@ class Solved:
     """What an answer is worked out from: the solver's quantities for a recipe's rows, and the rows' own values."""
 
     values: Mapping[str, Array]
-    extent: Extent
-    scale: Array | None
+    built: Built
     get: Callable[[str], Array]
 
 
@@ -59,16 +60,18 @@ def not_yet(label: str) -> Fault:
 def ready(asked: Asked, plan: Plan, recipe: Recipe) -> Ready | Fault:
     """How an answer is worked out on a recipe's rows, or why it has none there."""
     quantity = asked.item.quantity
-    if not quantity or asked.layer > 1:
+    if not quantity:
         return not_yet(asked.label)
+    if asked.layer > len(recipe.layers) - (quantity in ("joint_left", "joint_right")):
+        return Fault(CellError.NA, f"{asked.label}: the body in {ROW} has {_layers(len(recipe.layers))}")
     if quantity.startswith("allowable ") or quantity == "limited by":
         return _allowable(asked, plan, recipe)
     if recipe.no_source is not None:
         return recipe.no_source
     if quantity == "why":
-        return Ready(("peak",), lambda solved: (np.full(len(solved.values["peak"]), "ok", object), []))
+        return _why(recipe)
     if quantity == "verdict":
-        return Ready(("peak", "least_room"), _verdict)
+        return Ready(("peak", "least_room", *_table_quantities(recipe)), _verdict)
     if quantity == "utilisation":
         return _utilisation(asked, plan, recipe)
     if quantity == "face":
@@ -76,15 +79,63 @@ def ready(asked: Asked, plan: Plan, recipe: Recipe) -> Ready | Fault:
     if quantity in ("heat out", "heat made"):
         heat = _heat(asked, recipe)
         return _of_left(asked, recipe, heat) if isinstance(heat, Ready) and asked.side else heat
-    if quantity == "peak layer":
-        return Ready(("peak",), lambda solved: (np.ones_like(solved.values["peak"]), []))
-    if quantity == "headroom" and not recipe.has_limit:
+    if quantity in ("peak", "mean") and asked.layer:
+        return _plain(f"layer_{quantity} {asked.layer}")
+    if quantity in ("joint_left", "joint_right"):
+        return _plain(f"{quantity} {asked.layer}")
+    if quantity == "headroom" and not recipe.limits:
         return _no_limit(plan)
     if quantity == "probe_temperature":
         return _probe(plan, recipe)
     if quantity == "left_share":
         return _plain(quantity, _nothing_leaves, 100.0)
     return _plain(quantity, factor=100.0 if quantity == "balance" else 1.0)
+
+
+def _why(recipe: Recipe) -> Ready:
+    """A row's own fault; also a limit passed without any source, which leaves no allowable."""
+    tables = _table_quantities(recipe)
+    if not recipe.limits:
+        return Ready(("peak", *tables), lambda solved: (np.full(len(solved.values["peak"]), "ok", object), []))
+
+    def work(solved: Solved) -> Worked:
+        words = np.full(len(solved.values["peak"]), "ok", object)
+        return words, _broken_faults(solved.values["cold_broken"], recipe) if recipe.scaled else []
+
+    return Ready(("peak", "cold_broken", "worst_limit", "least_room", *tables), work)
+
+
+def _table_quantities(recipe: Recipe) -> list[str]:
+    """The temperatures that tell whether a layer's text table reaches far enough."""
+    numbers = [layer.number for layer in recipe.layers if layer.slot("conductivity") in recipe.tabled]
+    return [f"layer_{end} {number}" for number in numbers for end in ("low", "peak")]
+
+
+def passed_limits(recipe: Recipe, values: Mapping[str, Array]) -> list[tuple[np.ndarray, Fault]]:
+    """The rows whose temperatures are above a limit now, by the limit most passed."""
+    if not recipe.limits or "worst_limit" not in values:
+        return []
+    over = values["least_room"] < -_PASSED
+    found = []
+    for code, slot in _limits_of(recipe):
+        what = {"limit": "the peak", "left limit": "the left face", "right limit": "the right face"}.get(slot, "that layer's peak")
+        sentence = f"{recipe.label(slot)} in {ROW} is {HERE}, and {what} is above it; lower the source or cool the body more"
+        found.append((over & (values["worst_limit"] == code), Fault(CellError.NA, sentence, (recipe.filled[slot].index,))))
+    return found
+
+
+def _limits_of(recipe: Recipe) -> list[tuple[int, str]]:
+    codes = range(1, len(_LIMIT_SLOTS) + len(recipe.layers) + 1)
+    return [(code, _limit_slot(code)) for code in codes if _limit_slot(code) in recipe.filled]
+
+
+def _broken_faults(broken: Array, recipe: Recipe) -> list[tuple[np.ndarray, Fault]]:
+    faults = []
+    for code, slot in _limits_of(recipe):
+        column = recipe.filled[slot]
+        sentence = f"{column.label} in {ROW} is {HERE}, passed even with no source; raise it or cool the body more"
+        faults.append((broken == code, Fault(CellError.NUM, sentence, (column.index,))))
+    return faults
 
 
 def _verdict(solved: Solved) -> Worked:
@@ -149,10 +200,10 @@ def _heat(asked: Asked, recipe: Recipe) -> Ready | Fault:
     if shape == Shape.CYLINDER:
         if "length" not in filled:
             return Fault(CellError.NA, f"{asked.label}: the cylinder in {ROW} needs its length; fill in 'length [mm]'")
-        return Ready((heat,), lambda solved: (solved.values[heat] * _given(solved.extent.length), []))
+        return Ready((heat,), lambda solved: (solved.values[heat] * _given(solved.built.length), []))
     if "area" not in filled:
         return Fault(CellError.NA, f"{asked.label}: the wall in {ROW} needs its area; fill in 'area [m²]'")
-    return Ready((heat,), lambda solved: (solved.values[heat] * _given(solved.extent.area), []))
+    return Ready((heat,), lambda solved: (solved.values[heat] * _given(solved.built.area), []))
 
 
 def _given(size: Array | None) -> Array:
@@ -160,72 +211,78 @@ def _given(size: Array | None) -> Array:
     return size
 
 
+def _layers(count: int) -> str:
+    return "one layer" if count == 1 else f"{count} layers"
+
+
+def _limit_slot(code: int) -> str:
+    """The heading of a limit by the solver's number."""
+    return _LIMIT_SLOTS[code - 1] if code <= len(_LIMIT_SLOTS) else f"limit {code - len(_LIMIT_SLOTS)}"
+
+
 def _limit_faults(solved: Solved, recipe: Recipe) -> list[tuple[np.ndarray, Fault]]:
-    lacking, broken = solved.values["lacking"], solved.values["first_broken"]
-    faults = []
-    for code, slot in enumerate(_limit_slots(recipe), 1):
-        if slot:
-            column = recipe.filled[slot]
-            sentence = f"{column.label} in {ROW} is {HERE}, passed even with no source; raise it or cool the body more"
-            faults.append((broken == code, Fault(CellError.NUM, sentence, (column.index,))))
+    faults = _broken_faults(solved.values["first_broken"], recipe)
     sentence = f"no source reaches the limit in {ROW}, since that face is held below it; give a limit for the peak"
-    faults.append((lacking == 3, Fault(CellError.NUM, sentence)))
+    faults.append((solved.values["lacking"] == 3, Fault(CellError.NUM, sentence)))
     return faults
 
 
-def _limit_slots(recipe: Recipe) -> tuple[str, str, str]:
-    body = "limit" if "limit" in recipe.filled else ("limit 1" if "limit 1" in recipe.filled else "")
-    return (
-        body,
-        "left limit" if "left limit" in recipe.filled else "",
-        "right limit" if "right limit" in recipe.filled else "",
-    )
-
-
 def _allowable(asked: Asked, plan: Plan, recipe: Recipe) -> Ready | Fault:
-    if not recipe.has_limit:
+    if not recipe.limits:
         return _no_limit(plan)
     if not recipe.scaled:
         return recipe.no_source or not_yet(asked.label)
     if asked.item.quantity == "limited by":
         return Ready(("governs",), lambda solved: (_governing(solved, recipe), []))
     wanted = asked.item.quantity.removeprefix("allowable ")
-    own = next(column.unit for column in plan.columns if recipe.scaled in column.slots)
-    own = recipe.filled[recipe.scaled].unit if recipe.scaled in recipe.filled else own
-    if wanted not in ("source", recipe.scaled):
+    kinds = {base_name(layer.source) for layer in recipe.layers if layer.source} or {recipe.scaled}
+    if wanted != "source" and wanted not in kinds:
         have = recipe.scaled
         return Fault(CellError.NA, f"{asked.label}: the source in {ROW} is its {have}; ask for 'allowable {have}'")
+    if len(kinds) > 1:
+        return not_yet(asked.label)
+    slots = recipe.scaled_slots or tuple(slot for column in plan.columns for slot in column.slots if base_name(slot) == recipe.scaled)
+    own = recipe.filled[slots[0]].unit if slots[0] in recipe.filled else next(c.unit for c in plan.columns if slots[0] in c.slots)
 
     def work(solved: Solved) -> Worked:
-        q = solved.values["allowable_generation"]
-        source = q if solved.scale is None else q / solved.scale
-        return (own.from_base(source) if wanted == "source" else source), _limit_faults(solved, recipe)
+        multiple, faults = solved.values["allowable_multiple"], _limit_faults(solved, recipe)
+        source = multiple
+        if not solved.built.single:
+            source = multiple * solved.get(slots[0])
+            nothing = Fault(CellError.NUM, f"the sources in {ROW} are all 0, so they do not say how they scale together; give them")
+            faults = [(_all_zero(solved, slots), nothing), *faults]
+        return (own.from_base(source) if wanted == "source" else source), faults
 
     return Ready(_ALLOWED, work)
 
 
+def _all_zero(solved: Solved, slots: tuple[str, ...]) -> np.ndarray:
+    zero: np.ndarray = solved.get(slots[0]) == 0.0
+    for slot in slots[1:]:
+        zero = zero & (solved.get(slot) == 0.0)
+    return zero
+
+
 def _governing(solved: Solved, recipe: Recipe) -> np.ndarray:
-    names = np.array(["", *_limit_slots(recipe)], dtype=object)
+    count = len(_LIMIT_SLOTS) + len(recipe.layers)
+    names = np.array(["", *(_limit_slot(code) for code in range(1, count + 1))], dtype=object)
     governs = solved.values["governs"]
-    text = names[np.where(np.isnan(governs), 0, governs).astype(np.intp)]
-    if "limit" in recipe.filled and "limit 1" in recipe.filled:
-        sooner = solved.get("limit 1") < solved.get("limit")
-        text = np.where(sooner & (governs == 1), "limit 1", text)
-    return text
+    found: np.ndarray = names[np.where(np.isnan(governs), 0, governs).astype(np.intp)]
+    return found
 
 
 def _utilisation(asked: Asked, plan: Plan, recipe: Recipe) -> Ready | Fault:
-    base = _allowable(Asked(asked.item, "", 0, asked.unit, asked.label), plan, recipe) if not recipe.has_limit else None
-    if isinstance(base, Fault):
-        return base
+    if not recipe.limits:
+        return _no_limit(plan)
+    if not recipe.scaled:
+        return recipe.no_source or not_yet(asked.label)
 
     def work(solved: Solved) -> Worked:
-        q = solved.values["allowable_generation"]
-        source = solved.get(recipe.source)
-        used = source if solved.scale is None else source * solved.scale
-        nothing = q == 0.0
-        share = 100.0 * (used / np.where(nothing, np.nan, q))
+        multiple = solved.values["allowable_multiple"]
+        used = solved.get(recipe.scaled_slots[0]) if solved.built.single else np.ones_like(multiple)
+        nothing = multiple == 0.0
+        share = 100.0 * (used / np.where(nothing, np.nan, multiple))
         fault = Fault(CellError.NUM, f"the allowable source in {ROW} is 0, so none of it can be used; raise the limit")
-        return share, [*_limit_faults(solved, recipe), (nothing & ~np.isnan(q), fault)]
+        return share, [*_limit_faults(solved, recipe), (nothing, fault)]
 
     return Ready(_ALLOWED, work)

@@ -63,9 +63,9 @@ def mismatch_of(width: int, plan: Plan) -> Fault | None:
     """The fault of a call whose columns are not as many as its headings."""
     if plan.fault is not None or width == plan.width:
         return None
-    heads = f"{plan.width} heading{'s' if plan.width != 1 else ''}"
+    heads = f"are {plan.width} headings" if plan.width != 1 else "is 1 heading"
     columns = f"{width} column{'s' if width != 1 else ''}"
-    return Fault(CellError.VALUE, f"there are {heads} but {columns} of values; pass one column a heading")
+    return Fault(CellError.VALUE, f"there {heads} but {columns} of values; pass one column a heading")
 
 
 def _columns(value: Any) -> list[Values]:

@@ -17,7 +17,7 @@ from ingle_addin.asking import mismatch_of
 from ingle_addin.calls import Outcome
 from ingle_addin.cells import Cell, CellError, Grid
 from ingle_addin.evaluate import Evaluation, evaluate, reason
-from ingle_addin.faults import Fault, finished
+from ingle_addin.faults import Fault, finished, quoted
 from ingle_addin.functions import FUNCTIONS
 from ingle_addin.heading_reader import Asked, Plan, allowable_source, read_answer, read_headings
 from ingle_addin.tables import heading_texts, join, to_columns
@@ -54,7 +54,8 @@ def solve_calls(name: str, calls: Sequence[Sequence[Grid]]) -> list[Outcome]:
     for i, call in enumerate(calls):
         if len(call) < least or (len(call) > len(function.arguments) and not _repeats(name)):
             words = ", ".join(argument.name for argument in function.arguments) or "nothing"
-            outcomes[i] = failed(Fault(CellError.VALUE, f"{name} takes {words}; {len(call)} arguments were given"))
+            given = "argument was" if len(call) == 1 else "arguments were"
+            outcomes[i] = failed(Fault(CellError.VALUE, f"{name} takes {words}; {len(call)} {given} given"))
         else:
             good.append(i)
     answer = _OTHERS.get(name) or partial(_row_calls, name)
@@ -120,7 +121,9 @@ def _side(grid: Grid) -> Asked | Fault:
     if isinstance(cell, CellError):
         return Fault(cell, f"the side holds the error {cell}; correct that cell")
     word = " ".join(str(cell or "").split()).casefold()
-    return _FACES.get(word) or Fault(CellError.VALUE, "the side is not known; write left, right, inner or outer")
+    return _FACES.get(word) or Fault(
+        CellError.VALUE, f"the side {quoted(str(cell or ''))} is not known; write left, right, inner or outer"
+    )
 
 
 def _answer_group(asked: tuple[Asked | Fault, ...], plan: Plan, members: Sequence[tuple[int, _Call]]) -> list[tuple[int, Outcome]]:

@@ -2,13 +2,14 @@
 
 from __future__ import annotations
 
-from collections.abc import Iterator
+from collections.abc import Iterator, Mapping
 
 import numpy as np
-from ingle import Cases
+from ingle.conductivities import Conductivity
 
+from ingle_addin.case_builder import Built
 from ingle_addin.cells import CellError
-from ingle_addin.faults import ROW, Fault
+from ingle_addin.faults import HERE, ROW, Fault
 from ingle_addin.recipe import Recipe
 
 # Above anything built: a reactor fuel pellet makes below 2e9 W/m³, a fusing copper wire about 1e12.
@@ -16,16 +17,24 @@ IMPLAUSIBLE_GENERATION = 1e13
 IMPLAUSIBLE_SIZE = 100.0  # m; a mass concrete pour is a few metres
 
 
-def caution_masks(recipe: Recipe, cases: Cases) -> Iterator[tuple[np.ndarray, Fault]]:
+def caution_masks(recipe: Recipe, built: Built, values: Mapping[str, np.ndarray]) -> Iterator[tuple[np.ndarray, Fault]]:
     """Masks of a recipe's rows and the caution each has; the first that holds is the one shown."""
-    layer = cases.layers[0]
-    if recipe.source:
-        label, q = recipe.label(recipe.source), layer.generation
-        yield _where(q < 0.0, f"{label} in {ROW} is negative, so the body takes heat up; make it positive if it heats itself")
-        yield _where(np.abs(q) > IMPLAUSIBLE_GENERATION, f"{label} in {ROW} is over 1e13 W/m³, more than a fusing wire makes; "
-                     "check its unit")  # fmt: skip
-    yield _where(layer.thickness > IMPLAUSIBLE_SIZE, f"{recipe.label(recipe.outer)} in {ROW} makes the body over 100 m thick; "
-                 "check its unit")  # fmt: skip
+    for layer, case in zip(recipe.layers, built.cases.layers, strict=True):
+        if layer.source:
+            label, q = recipe.label(layer.source), case.generation
+            yield _where(q < 0.0, f"{label} in {ROW} is negative, so the body takes heat up; make it positive if it heats itself")
+            sentence = f"{label} in {ROW} is {HERE}, which makes over 1e13 W/m³, more than a fusing wire; check its unit"
+            column = recipe.filled[layer.source].index
+            yield np.abs(q) > IMPLAUSIBLE_GENERATION, Fault(CellError.NA, sentence, (column,))
+        slot = layer.slot("conductivity")
+        if slot in recipe.tabled and isinstance(case.conductivity, Conductivity) and case.conductivity.table is not None:
+            T = case.conductivity.table.T
+            low, high = values[f"layer_low {layer.number}"], values[f"layer_peak {layer.number}"]
+            sentence = f"{recipe.label(slot)} in {ROW} has a table that does not reach the body's temperatures"
+            held = f"{sentence}; its end value is held there, so extend it"
+            yield _where((low < T[:, 0]) | (high > built.table_ends[layer.number]), held)
+        sentence = f"{recipe.label(layer.outside)} in {ROW} makes the body over 100 m thick; check its unit"
+        yield _where(case.thickness > IMPLAUSIBLE_SIZE, sentence)
 
 
 def _where(mask: np.ndarray, sentence: str) -> tuple[np.ndarray, Fault]:

@@ -18,7 +18,6 @@ from ingle_addin.units import Kind
 _NUMERIC = re.compile(r"[+\-−]?\s*(\d+\.?\d*|\.\d+)([eE][+\-]?\d+)?\s*%?")
 _DECIMAL_COMMA = re.compile(r"[+\-−]?\s*\d[\d.  ' ]*,\d+([eE][+\-]?\d+)?")
 _THOUSANDS = re.compile(r"[+\-−]?\d{1,3}(,\d{3})+(\.\d+)?")
-_TABLE = re.compile(r"[^:;]+:[^:;]+(;[^:;]+:[^:;]+)*;?\s*")
 
 
 def text_fault(column: Column, cell: str) -> Fault:
@@ -28,24 +27,35 @@ def text_fault(column: Column, cell: str) -> Fault:
     if _NUMERIC.fullmatch(text):
         return Fault(CellError.VALUE, f"{where} is {shown} and is stored as text; convert it to a number")
     if _THOUSANDS.fullmatch(text):
-        return Fault(CellError.VALUE, f"{where} is {shown}, a text with a comma in it; type the number without commas")
+        remedy = "its comma may part thousands or decimals, so type it as a number of your spreadsheet"
+        return Fault(CellError.VALUE, f"{where} is {shown}, a text; {remedy}")
     if _DECIMAL_COMMA.fullmatch(text):
         return Fault(CellError.VALUE, f"{where} is {shown}, a text with a decimal comma; type it as a number of your spreadsheet")
-    if column.item.table and _TABLE.fullmatch(text):
+    if column.item.table and is_table(text):
         return Fault(CellError.NA, f"{where} is a text table, which is not available yet; give one number")
     return Fault(CellError.VALUE, f"{where} is the text {shown}; a number belongs here")
+
+
+def is_table(text: str) -> bool:
+    """Whether a text means to be a text table: `20:16.2; 500:21.5`."""
+    return ":" in text
 
 
 def cell_fault(column: Column, cell: Any) -> Fault:
     """Why a cell that is neither number nor blank cannot stand under a number's heading."""
     where, kind = f"{column.label} in {ROW}", columns.kind_of(cell)
     if kind == columns.ERROR:
-        return Fault(cell, f"{where} holds the error {cell}; correct that cell")
+        return error_fault(column.label, cell)
     if kind == columns.BOOLEAN:
         return Fault(CellError.VALUE, f"{where} is {str(bool(cell)).upper()}; a number belongs here")
     if kind == columns.DATE:
         return Fault(CellError.VALUE, f"{where} is a date or time; a number belongs here, so check the cell's format")
     return text_fault(column, str(cell))
+
+
+def error_fault(label: str, cell: Any) -> Fault:
+    """A cell that holds an error gives that error in its row."""
+    return Fault(cell, f"{label} in {ROW} holds the error {cell}; correct that cell")
 
 
 def word_fault(column: Column, cell: Any) -> Fault | None:
@@ -58,7 +68,7 @@ def word_fault(column: Column, cell: Any) -> Fault | None:
             return None
         return Fault(CellError.VALUE, f"{where} is {quoted(str(cell))}, which is not known; write {listed}")
     if kind == columns.ERROR:
-        return Fault(cell, f"{where} holds the error {cell}; correct that cell")
+        return error_fault(column.label, cell)
     what = {columns.BOOLEAN: str(cell).upper(), columns.DATE: "a date or time"}.get(kind, "a number")
     return Fault(CellError.VALUE, f"{where} is {what}; a text belongs here" + (f": {listed}" if listed else ""))
 
@@ -83,7 +93,7 @@ def range_fault(column: Column) -> Fault:
 def outside(column: Column, base: np.ndarray) -> np.ndarray | None:
     """Which numbers, in base units, lie outside the heading's range; None where none does. NaN is blank."""
     item = column.item
-    low, high = np.fmin.reduce(base), np.fmax.reduce(base)
+    low, high = (base[0], base[0]) if len(base) == 1 else (np.fmin.reduce(base), np.fmax.reduce(base))
     if not (low < item.lowest or high > item.highest or (item.above and low == item.lowest)):
         return None
     below = base <= item.lowest if item.above else base < item.lowest

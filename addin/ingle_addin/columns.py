@@ -93,12 +93,14 @@ def from_cells(cells: Sequence[Cell]) -> Values:
             pass  # a whole number beyond the floats: read below, as infinite
     array = np.empty(len(cells), dtype=object)
     array[:] = cells
-    if sorts <= {str, type(None)}:
-        return Values(None, None, array)
-    kinds = np.fromiter(map(kind_of, cells), np.int8, len(cells))
-    numbers = np.full(len(cells), np.nan)
+    return Values(None, None, array) if sorts <= {str, type(None)} else _mixed(array)
+
+
+def _mixed(array: np.ndarray) -> Values:
+    kinds = np.fromiter(map(kind_of, array), np.int8, len(array))
+    numbers = np.full(len(array), np.nan)
     for row in np.flatnonzero(kinds == NUMBER):
-        numbers[row] = _float(cells[int(row)])
+        numbers[row] = _float(array[row])
     return Values(numbers, kinds, array)
 
 
@@ -115,7 +117,10 @@ def from_array(array: np.ndarray) -> Values:
         return Values(np.ascontiguousarray(array, dtype=np.float64))
     if array.dtype.kind == "U":
         return Values(None, None, array)
-    return from_cells(array.tolist() if array.dtype.kind != "M" else list(array))
+    if array.dtype.kind == "O":
+        sorts = set(map(type, array))
+        return Values(None, None, array) if sorts <= {str, type(None)} else from_cells(array.tolist())
+    return from_cells(list(array))
 
 
 def from_objects(numbers: np.ndarray) -> Values:
@@ -134,8 +139,11 @@ def codes(column: Values) -> tuple[np.ndarray | None, list[Any]]:
     if cells.dtype.kind == "U":
         texts, inverse = np.unique(cells, return_inverse=True)
         return inverse.reshape(-1), texts.tolist()
-    found: dict[Any, int] = {}
-    each = np.fromiter((found.setdefault(key(c), len(found)) for c in cells), np.intp, len(cells))
+    if column.numbers is None:  # texts and blanks alone are their own keys
+        found = {cell: i for i, cell in enumerate(dict.fromkeys(cells))}
+        return np.fromiter(map(found.__getitem__, cells), np.intp, len(cells)), list(found)
+    keys: dict[Any, int] = {}
+    each = np.fromiter((keys.setdefault(key(c), len(keys)) for c in cells), np.intp, len(cells))
     first = np.unique(each, return_index=True)[1]
     return each, [cells[row] for row in first]
 

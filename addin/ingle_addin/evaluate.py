@@ -13,15 +13,18 @@ from dataclasses import dataclass, field
 
 import numpy as np
 from ingle import Cases, Status, steady
+from ingle.conductivities import Table
 from ingle.steady import BLOCK
 
 from ingle_addin import answers, checks, columns, recipe
+from ingle_addin.case_builder import build_cases
 from ingle_addin.cautions import caution_masks
 from ingle_addin.cells import CellError
 from ingle_addin.columns import Values
 from ingle_addin.faults import ROW, Fault, finished, number_text
-from ingle_addin.heading_reader import Asked, Column, Plan
+from ingle_addin.heading_reader import Asked, Column, Plan, clean
 from ingle_addin.recipe import Recipe
+from ingle_addin.text_tables import TextTables, read_table
 from ingle_addin.units import Kind
 
 _STATUS_FAULTS = {
@@ -30,6 +33,13 @@ _STATUS_FAULTS = {
         "fluid, or hold it at a temperature"),
     Status.BELOW_ABSOLUTE_ZERO: Fault(
         CellError.NUM, f"the answer in {ROW} would lie below absolute zero; check the signs of the generation and the fluxes"),
+    Status.NO_CONDUCTIVITY: Fault(
+        CellError.NUM,
+        f"the conductivity in {ROW} falls to zero within the body at its temperature; check the slope or give a table",
+    ),
+    Status.NOT_BALANCED: Fault(
+        CellError.NUM, f"no temperature was found at which the heats of {ROW} balance; check that its values belong together"
+    ),
     Status.OVERFLOW: Fault(
         CellError.NUM, f"the values in {ROW} are so far apart that the answer is beyond the range of numbers; check their units"),
 }  # fmt: skip
@@ -134,6 +144,9 @@ def _is_text(asked: Asked | Fault) -> bool:
     return isinstance(asked, Asked) and asked.unit.kind is Kind.TEXT
 
 
+_Key = tuple[tuple[int, ...], tuple[tuple[int, str | None], ...], tuple[int, ...]]
+
+
 class _Block:
     """A block of rows on its way from cells to answers."""
 
@@ -145,6 +158,7 @@ class _Block:
         self.base: dict[int, np.ndarray] = {}
         self.filled: dict[int, np.ndarray | bool] = {}
         self.words: dict[int, tuple[np.ndarray | None, list[str | None]]] = {}
+        self.tables: dict[int, TextTables] = {}
 
     def run(self, spoilt: Fault | None) -> None:
         """Check the cells, group the rows and answer each group."""
@@ -155,15 +169,27 @@ class _Block:
             self._check(column)
         for key, rows in self._groups():
             self._answer(key, rows)
+        for j, asked in enumerate(self.result.asked):
+            if isinstance(asked, Fault):  # an answer that cannot be read says so in every row
+                self.result.fault[j][self.rows] = np.where(self.result.blank[self.rows], -1, self.result.number(asked))
 
     def _spoil(self, fault: Fault) -> None:
         blank: np.ndarray | bool = True
-        for column in self.table if len(self.table) != self.plan.width else [self.table[c.index] for c in self.plan.columns]:
-            blank = blank & column.blank()
+        skipped = self.plan.own if len(self.table) == self.plan.width else frozenset()
+        for index, column in enumerate(self.table):
+            if index not in skipped:
+                blank = blank & column.blank()
+            if column.kinds is not None and column.cells is not None and index not in skipped:
+                label = clean(self.plan.texts[index]) if index < len(self.plan.texts) else f"column {index + 1}"
+                for row in np.flatnonzero(column.kinds == columns.ERROR):  # reading: the cell's error is the row's
+                    self._flag(np.arange(self.n) == row, checks.error_fault(label, column.cells[row]), first=True)
         self.result.blank[self.rows] = blank
         for j, asked in enumerate(self.result.asked):
-            own = asked if isinstance(asked, Fault) else fault
-            self.result.fault[j][self.rows] = np.where(self.result.blank[self.rows], -1, self.result.number(own))
+            own = self.result.number(asked if isinstance(asked, Fault) else fault)
+            shown = (
+                np.full(self.n, own) if self.fault is None or isinstance(asked, Fault) else np.where(self.fault < 0, own, self.fault)
+            )
+            self.result.fault[j][self.rows] = np.where(self.result.blank[self.rows], -1, shown)
 
     def _flag(self, mask: np.ndarray, fault: Fault, first: bool = False) -> None:
         """The rows' fault, where they have none yet; one that goes ``first`` replaces any that did not."""
@@ -207,14 +233,24 @@ class _Block:
         assert values.cells is not None
         odd = np.flatnonzero(values.kinds >= columns.TEXT)
         seen: dict[object, list[int]] = {}
-        for row in odd:  # reading: a fault is worded from the cell itself
-            cell = values.cells[row]
-            seen.setdefault(columns.key(cell), []).append(int(row))
+        tables = TextTables.none(self.n) if column.item.table and column.item.name == "conductivity" else None
+        for row in odd:  # reading: a fault is worded from the cell itself, a text table read from it
+            seen.setdefault(columns.key(values.cells[row]), []).append(int(row))
         for rows in seen.values():
+            cell = values.cells[rows[0]]
+            if tables is not None and isinstance(cell, str) and checks.is_table(cell):
+                table = read_table(column, cell)
+                if not isinstance(table, Fault):
+                    tables.put(rows, table)
+                    continue
+                fault = table
+            else:
+                fault = checks.cell_fault(column, cell)
             mask = np.zeros(self.n, bool)
             mask[rows] = True
-            cell = values.cells[rows[0]]
-            self._flag(mask, checks.cell_fault(column, cell), first=isinstance(cell, CellError))
+            self._flag(mask, fault, first=isinstance(cell, CellError))
+        if tables is not None and tables.given.any():
+            self.tables[column.index] = tables
 
     def _check_words(self, column: Column, values: Values) -> None:
         if values.cells is None:
@@ -232,22 +268,26 @@ class _Block:
         blanks = np.array([w is None for w in words])
         self.filled[column.index] = (not blanks[0]) if codes is None else ~blanks[codes]
 
-    # Groups of rows that fill the same headings with the same shape.
+    # Groups of rows that fill the same headings, with the same words and the same sort of value.
 
-    def _groups(self) -> list[tuple[tuple[tuple[int, ...], str | None], np.ndarray | slice]]:
+    def _groups(self) -> list[tuple[_Key, np.ndarray | slice]]:
         used = self.plan.columns
-        mixed = [c for c in used if not isinstance(self.filled[c.index], bool)]
-        always = [c.index for c in used if self.filled[c.index] is True]
-        codes, words = self._shapes()
-        keys = np.zeros(self.n, np.int64) if codes is None else codes.astype(np.int64)
-        blank = np.zeros(self.n, bool) if always else np.ones(self.n, bool)
-        for count, column in enumerate(mixed):
-            filled = self.filled[column.index]
+        mixed = [c.index for c in used if not isinstance(self.filled[c.index], bool)]
+        always = any(self.filled[c.index] is True for c in used)
+        worded = [(index, codes) for index, (codes, _) in self.words.items() if codes is not None]
+        keys = np.zeros(self.n, np.int64)
+        blank = np.full(self.n, not always)
+        for count, index in enumerate(mixed):
+            filled = self.filled[index]
             assert isinstance(filled, np.ndarray)
             blank &= ~filled
             keys = keys * 2 + filled
             if count % 40 == 39:  # before the bits run out
-                keys = np.unique(keys, return_inverse=True)[1].reshape(-1).astype(np.int64)
+                keys = _compact(keys)
+        for _, codes in worded:
+            keys = _compact(keys) * (int(codes.max()) + 1) + codes
+        for index in self.tables:
+            keys = _compact(keys) * 2 + self.tables[index].given
         self.result.blank[self.rows] = blank
         clean: np.ndarray | None = None
         if self.fault is not None:
@@ -256,34 +296,25 @@ class _Block:
             clean = (self.fault < 0) & ~blank
         elif blank.any():
             clean = ~blank
-        if clean is None and codes is None and not mixed:
-            return [((tuple(always), words[0]), slice(None))]
+        if clean is None and not worded and not mixed and not self.tables:
+            return [(self._key(0), slice(None))]
         rows = np.arange(self.n) if clean is None else np.flatnonzero(clean)
-        groups: list[tuple[tuple[tuple[int, ...], str | None], np.ndarray | slice]] = []
         _, first, inverse = np.unique(keys[rows], return_index=True, return_inverse=True)
-        for number, start in enumerate(first):
-            example = rows[start]
-            filled_columns = tuple(
-                c.index
-                for c in used
-                if self.filled[c.index] is True or (c in mixed and self.filled[c.index][example])  # type: ignore[index]
-            )
-            text = words[0] if codes is None else words[codes[example]]
-            groups.append(((filled_columns, text), rows[inverse.reshape(-1) == number]))
-        return groups
+        inverse = inverse.reshape(-1)
+        return [(self._key(int(rows[start])), rows[inverse == number]) for number, start in enumerate(first)]
 
-    def _shapes(self) -> tuple[np.ndarray | None, list[str | None]]:
-        """The shape of each row as a number into a list of words, None for the number where all have the first."""
-        given = [self.words[c.index] for c in self.plan.columns if c.item.name == "shape"]
-        if len(given) == 1:
-            return given[0]
-        words: list[str | None] = [None]
-        number = np.zeros(self.n, np.intp)
-        for codes, found in given:  # a second heading for it is allowed as long as no row fills both
-            each = np.array([0 if w is None else len(words) + i for i, w in enumerate(found)])
-            words += found
-            number = np.maximum(number, each[0] if codes is None else each[codes])
-        return number, words
+    def _key(self, row: int) -> _Key:
+        """What a row's group shares: the columns it fills, the words in them, the columns that hold text tables."""
+
+        def fills(index: int) -> bool:
+            filled = self.filled[index]
+            return filled if isinstance(filled, bool) else bool(filled[row])
+
+        indices = tuple(c.index for c in self.plan.columns if fills(c.index))
+        words = tuple(
+            (index, found[0 if codes is None else codes[row]]) for index, (codes, found) in self.words.items() if fills(index)
+        )
+        return indices, words, tuple(index for index in self.tables if self.tables[index].given[row])
 
     def _spread(self, fault: np.ndarray) -> None:
         """Give every answer the rows' own fault."""
@@ -293,7 +324,7 @@ class _Block:
 
     # Answers of one group.
 
-    def _answer(self, key: tuple[tuple[int, ...], str | None], rows: np.ndarray | slice) -> None:
+    def _answer(self, key: _Key, rows: np.ndarray | slice) -> None:
         made = _recipe(self.plan, key)
         result = self.result
         if isinstance(made, Fault):
@@ -316,20 +347,26 @@ class _Block:
             return cache[slot]
 
         faults: list[tuple[np.ndarray, Fault]] = []
-        cases, extent, scale = recipe.cases_of(made, get, lambda mask, fault: faults.append((mask, fault)))
-        if self.result.keep_cases:
-            self.result.cases.append(cases)
-        solved = steady(cases, wanted)
+        built = build_cases(
+            made, get, lambda slot: self._table(made.filled[slot].index, rows), lambda mask, fault: faults.append((mask, fault))
+        )
+        if result.keep_cases:
+            result.cases.append(built.cases)
+        solved = steady(built.cases, wanted)
         failed = [(solved.status == code, fault) for code, fault in _STATUS_FAULTS.items()] if solved.status.any() else []
         whole = [(mask, fault) for mask, fault in (*faults, *failed) if mask.any()]
         if judged:
-            for mask, caution in caution_masks(made, cases):
+            for mask, caution in (*answers.passed_limits(made, solved.values), *caution_masks(made, built, solved.values)):
                 self._put_caution(rows, mask, caution)
-        context = answers.Solved(solved.values, extent, scale, get)
+        context = answers.Solved(solved.values, built, get)
         for j, r in enumerate(ready):
             if isinstance(r, answers.Ready):
                 values, own = r.work(context)
                 self._put(j, rows, values, [*whole, *((mask, fault) for mask, fault in own if mask.any())])
+
+    def _table(self, index: int, rows: np.ndarray | slice) -> tuple[Table, np.ndarray]:
+        tables = self.tables[index]
+        return tables.of(rows), tables.ends(rows)
 
     def _put_fault(self, j: int, rows: np.ndarray | slice, fault: Fault) -> None:
         self.result.fault[j][self.rows][rows] = self.result.number(fault)
@@ -360,10 +397,20 @@ class _Block:
         self.result.values[j][self.rows][rows] = values
 
 
-def _recipe(plan: Plan, key: tuple[tuple[int, ...], str | None]) -> Recipe | Fault:
-    made = plan.recipes.get(key)
+def _compact(keys: np.ndarray) -> np.ndarray:
+    """The same groups by small numbers."""
+    small: np.ndarray = np.unique(keys, return_inverse=True)[1].reshape(-1).astype(np.int64)
+    return small
+
+
+def _recipe(plan: Plan, key: _Key) -> Recipe | Fault:
+    made: Recipe | Fault | None = plan.recipes.get(key)
     if made is None:
-        made = recipe.build(plan, tuple(c for c in plan.columns if c.index in key[0]), key[1])
+        indices, words, tabled = key
+        filled = {c.index: c for c in plan.columns if c.index in indices}
+        texts = {slot: word for index, word in words if word is not None for slot in filled[index].slots}
+        slots = frozenset(slot for index in tabled for slot in filled[index].slots)
+        made = recipe.build(plan, tuple(filled.values()), texts, slots)
         plan.recipes[key] = made
     return made
 

@@ -29,7 +29,7 @@ def quoted(text: str) -> str:
 
 def row_words(number: int) -> str:
     """How a sentence names a row: by its number among several, else as this one."""
-    return f"row {number}" if number > 0 else "this row"
+    return f"row {number} of the values" if number > 0 else "this row"
 
 
 def finished(sentence: str, row: int, values: Sequence[str] = ()) -> str:
@@ -43,4 +43,9 @@ def finished(sentence: str, row: int, values: Sequence[str] = ()) -> str:
 
 def number_text(x: float) -> str:
     """A number as a person would type it."""
-    return f"{x:.10g}"
+    try:
+        value = float(x)
+    except OverflowError:  # a whole number that no float holds
+        return "a number beyond 1e308"
+    text = f"{value:.10g}" if abs(value) < 1e7 else f"{value:.6g}"
+    return text.replace("e+0", "e").replace("e+", "e").replace("e-0", "e-")

@@ -33,6 +33,7 @@ class Column:
     unit: Unit
     label: str
     available: bool
+    numbered: bool = False
 
 
 @dataclass(frozen=True)
@@ -53,6 +54,8 @@ class Plan:
     width: int
     columns: tuple[Column, ...]
     fault: Fault | None = None
+    own: frozenset[int] = frozenset()
+    texts: tuple[str, ...] = ()
     recipes: dict[Any, Any] = field(default_factory=dict, compare=False, repr=False)  # kept beside the plan that made them
 
     def has(self, slot: str) -> bool:
@@ -76,8 +79,7 @@ def _input_names() -> dict[str, _Name]:
     for item in INPUTS:
         if item.where in (Where.FACE, Where.FACE_AND_SIDE, Where.FACE_AND_LAYER):
             for word, side in (*SIDES.items(), ("both", "both")):
-                if item.name != "contact" or word in ("left", "right"):
-                    names[f"{word} {item.name}"] = _Name(item, side)
+                names[f"{word} {item.name}"] = _Name(item, side)
         if item.where is Where.FACE_AND_SIDE:
             names[f"side {item.name}"] = _Name(item, "side")
         if item.where not in (Where.FACE, Where.FACE_AND_SIDE):
@@ -124,6 +126,10 @@ def _bad(text: str, rest: str) -> Fault:
 
 
 def _unknown(text: str, name: str, names: Sequence[str], kind: str) -> Fault:
+    sides = [known for known in names if known in (f"left {name}", f"right {name}", f"both {name}")]
+    if sides:
+        listed = ", ".join(f"'{side}'" for side in sides[:-1])
+        return _bad(text, f"say which face: {listed} or '{sides[-1]}'")
     close = difflib.get_close_matches(name, names, 1, 0.6)
     if "(" in name and name.split("(")[0].strip() in names:
         return _bad(text, "write the unit in square brackets, as in 'thickness [mm]'")
@@ -142,7 +148,7 @@ def read_headings(texts: tuple[str, ...]) -> Plan:
             fault = fault or column
         elif column is not None:
             columns.append(column)
-    return Plan(len(texts), tuple(columns), fault)
+    return Plan(len(texts), tuple(columns), fault, frozenset(index for index, text in enumerate(texts) if is_own(text)), texts)
 
 
 def is_own(text: str) -> bool:
@@ -171,24 +177,22 @@ def read_input(text: str, index: int) -> Column | Fault | None:
     number = 0 if name in INPUT_NAMES else number
     if known is None:
         if name in ANSWER_NAMES or base in ANSWER_NAMES or _JOINT_ANSWER.fullmatch(name):
-            return _bad(text, "this is an answer; it cannot stand among the inputs")
+            return _bad(text, "this is an answer; leave its column out of the headings and ask for it with INGLE.ASK")
         return _unknown(text, name, tuple(INPUT_NAMES), "input")
     item = known.item
     layered = item.where is Where.LAYER or item.where is Where.JOINT
     layered = layered or (item.where is Where.FACE_AND_LAYER and not known.side)
     if number and not layered:
-        return _bad(text, f"'{base}' takes no number")
-    if item.where is Where.JOINT and not number:
-        return _bad(text, "a joint takes a number: 'joint 1' lies between layers 1 and 2")
+        return _bad(text, f"'{base}' takes no number; write '{base}'")
     if name[-1:].isdigit() and not number:
-        return _bad(text, "layers are counted from 1")
+        return _bad(text, f"layers are counted from 1; write '{base} 1'")
     try:
         unit = read_unit(unit_text, *item.kinds)
     except UnitError as error:
         return _bad(text, str(error))
-    layer = number or (1 if item.where is Where.LAYER else 0)
-    available = item.available and layer <= 1 and known.side != "side"
-    return Column(index, item, _slots(item, known.side, layer), layer, unit, clean(text), available)
+    layer = number or (1 if item.where in (Where.LAYER, Where.JOINT) else 0)
+    available = item.available and known.side != "side"
+    return Column(index, item, _slots(item, known.side, layer), layer, unit, clean(text), available, bool(number))
 
 
 def _slots(item: Input, side: str, layer: int) -> tuple[str, ...]:
@@ -205,7 +209,7 @@ def _spread_column(text: str, index: int, name: str, unit_text: str | None) -> C
     """`± NAME` and `sd NAME`: the same names; a difference where a temperature stands, or a percentage elsewhere."""
     inner = read_input(name if name in INPUT_NAMES and _unitless(name) else f"{name} [{_base_unit(name)}]", index)
     if not isinstance(inner, Column):
-        return inner if inner is not None else _bad(text, "no input's name follows")
+        return _bad(text, inner.sentence.split(": ", 1)[-1] if inner is not None else "no input's name follows")
     kinds = tuple(Kind.TEMPERATURE_DIFFERENCE if k is Kind.TEMPERATURE else k for k in inner.item.kinds)
     if Kind.TEXT in kinds:
         return _bad(text, "a text has no spread")

@@ -24,7 +24,7 @@ class Where(Enum):
     SIDE = "the sides of a bar"  # `side` before the name
     FACE_AND_SIDE = "a face, or the sides of a bar"
     FACE_AND_LAYER = "a face, a layer, or anywhere in the body"  # limit
-    JOINT = "a joint between layers"  # the number is compulsory
+    JOINT = "a joint between layers"  # numbered as the layer before it
 
 
 @dataclass(frozen=True)
@@ -94,8 +94,8 @@ INPUTS: tuple[Input, ...] = (
     Input("section", (Kind.AREA,), "of a bar", highest=1e12),
     Input("perimeter", _L, "of a bar's section"),
     Input("conductivity", (Kind.CONDUCTIVITY,), "a number, or a text table in temperature", _LAYER, table=True, available=True),
-    Input("conductivity slope", _PER_K, "k = k₀[1 + slope (T − reference)]", _LAYER, -1e3, 1e3, above=False),
-    _temperature("conductivity reference", "of the slope; 20 °C if blank", _LAYER),
+    Input("conductivity slope", _PER_K, "k = k₀[1 + slope (T − reference)]", _LAYER, -1e3, 1e3, above=False, available=True),
+    _temperature("conductivity reference", "of the slope; 20 °C if blank", _LAYER, available=True),
     Input("material", _TEXT, "a row of the bundled materials table", _LAYER),
     Input("generation", (Kind.GENERATION,), "heat per volume; a number or a text table", _LAYER, -1e25, 1e25, above=False,
           table=True, available=True),
@@ -122,16 +122,16 @@ INPUTS: tuple[Input, ...] = (
     Input("absorption coefficient", (Kind.ATTENUATION,), "of a beam, or of a generation that decays", _LAYER, 0.0, 1e12, False),
     Input("beam enters", _TEXT, "left (if blank), right or both", texts=("left", "right", "both")),
     Input("joint", (Kind.AREA_RESISTANCE, Kind.FILM), "between two layers, per area where they meet", Where.JOINT, 0.0, 1e9,
-          False),
+          False, available=True),
     _temperature("held", "temperature the face is held at", _FACE, available=True),
     Input("flux in", (Kind.HEAT_FLUX,), "heat put into the body at that surface; may stand beside a film", _FACE, -1e20,
           1e20, above=False, available=True),
     Input("film", (Kind.FILM,), "convection coefficient, with its fluid", _BOTH, 0.0, 1e20, above=False, available=True),
     _temperature("fluid", "temperature of the fluid, with its film", _BOTH, available=True),
-    Input("emissivity", _N, "radiation to large surroundings", _BOTH, 0.0, 1.0, False),
-    _temperature("surroundings", "of the radiation; the fluid's temperature if blank", _BOTH),
+    Input("emissivity", _N, "radiation to large surroundings", _BOTH, 0.0, 1.0, False, available=True),
+    _temperature("surroundings", "of the radiation; the fluid's temperature if blank", _BOTH, available=True),
     Input("resistance", (Kind.AREA_RESISTANCE, Kind.FILM), "between the face and its outermost surface", _FACE, 0.0, 1e9,
-          False),
+          False, available=True),
     Input("film law", _TEXT, "film coefficient by a published law", _BOTH, texts=FILM_LAWS),
     Input("size", _L, "of a film law; the body's own diameter for round laws if blank", _BOTH),
     Input("speed", (Kind.SPEED,), "of a film law", _BOTH, 0.0, 1e4, False),
@@ -162,12 +162,12 @@ _SOURCE_KINDS = {
 ANSWERS: tuple[Answer, ...] = (
     Answer("peak", _T, "highest temperature; with a number, of that layer", _LAYER, "peak"),
     Answer("peak place", _L, "where it is: from the left face, or the radius", quantity="peak_place"),
-    Answer("peak layer", _N, "the layer it is in", quantity="peak layer"),
+    Answer("peak layer", _N, "the layer it is in", quantity="peak_layer"),
     Answer("face", _T, "temperature of the left (inner) or right (outer) face", _FACE, "face"),
     Answer("mean", _T, "mean over the volume; with a number, of that layer", _LAYER, "mean"),
     Answer("probe temperature", _T, "temperature at the probe", quantity="probe_temperature"),
-    Answer("joint left", _T, "temperature on the left of a joint: joint 1 left", Where.JOINT),
-    Answer("joint right", _T, "temperature on the right of a joint: joint 1 right", Where.JOINT),
+    Answer("joint left", _T, "temperature on the left of a joint: joint 1 left", Where.JOINT, "joint_left"),
+    Answer("joint right", _T, "temperature on the right of a joint: joint 1 right", Where.JOINT, "joint_right"),
     Answer("heat out", _HEATS, "net heat leaving through a face: W/m² of that face, W/m or W by the unit", _FACE, "heat out"),
     Answer("side heat out", _HEATS, "heat leaving through a bar's sides"),
     Answer("heat made", _HEATS, "heat generated: W/m² of a wall, W/m or W by the unit", quantity="heat made"),

@@ -2,6 +2,7 @@
 
 from __future__ import annotations
 
+import math
 from collections.abc import Callable, Sequence
 from itertools import pairwise
 
@@ -31,7 +32,11 @@ def _number(grid: Grid, what: str) -> float | Fault:
         return Fault(cell, f"{what} hold the error {cell}; correct that cell")
     if kind == columns.BLANK:
         return Fault(CellError.NA, f"{what} are blank; type a number")
-    return Fault(CellError.VALUE, f"{what} are {quoted(str(cell))}; a number belongs here")
+    return Fault(CellError.VALUE, f"{what} are {_shown(cell)}; a number belongs here")
+
+
+def _shown(cell: Cell) -> str:
+    return str(cell).upper() if isinstance(cell, bool) else quoted(str(cell))
 
 
 def profile(call: Sequence[Grid], failed: Failed) -> Outcome:
@@ -65,8 +70,8 @@ def points(call: Sequence[Grid], failed: Failed) -> Outcome:
     """A text table `20:16.2; 500:21.5` from two ranges; pairs with both cells blank are skipped."""
     temperatures, values = ([cell for row in grid for cell in row] for grid in call)
     if len(temperatures) != len(values):
-        counts = f"{len(temperatures)} temperatures but {len(values)} values"
-        return failed(Fault(CellError.VALUE, f"there are {counts}; pass two ranges of the same size"))
+        counts = f"the temperatures are {len(temperatures)} and the values {len(values)}"
+        return failed(Fault(CellError.VALUE, f"{counts}; pass two ranges of the same size"))
     pairs: list[tuple[float, float]] = []
     for place, (temperature, value) in enumerate(zip(temperatures, values, strict=True), 1):
         if columns.is_blank(temperature) and columns.is_blank(value):
@@ -93,10 +98,12 @@ def _plain(x: float) -> str:
 
 def _point_fault(cell: Cell, what: str) -> Fault | None:
     kind = columns.kind_of(cell)
-    if kind == columns.NUMBER:
+    if kind == columns.NUMBER and math.isfinite(cell):  # type: ignore[arg-type]
         return None
+    if kind == columns.NUMBER:
+        return Fault(CellError.NUM, f"{what} is beyond the range of numbers; correct it")
     if isinstance(cell, CellError):
         return Fault(cell, f"{what} holds the error {cell}; correct that cell")
     if kind == columns.BLANK:
         return Fault(CellError.NA, f"{what} is blank; fill it in or clear the cell beside it")
-    return Fault(CellError.VALUE, f"{what} is {quoted(str(cell))}; a number belongs here")
+    return Fault(CellError.VALUE, f"{what} is {_shown(cell)}; a number belongs here")

@@ -7,7 +7,7 @@ from typing import Any
 
 from ingle_addin.cells import Cell, CellError, Grid
 from ingle_addin.columns import Values, from_cells, is_blank
-from ingle_addin.faults import Fault
+from ingle_addin.faults import Fault, number_text
 from ingle_addin.heading_reader import ANSWER_NAMES, INPUT_NAMES, clean
 
 
@@ -25,7 +25,8 @@ def heading_texts(grid: Grid, names: str = "headings") -> tuple[tuple[str, ...],
             if isinstance(cell, CellError):
                 return Fault(cell, f"the {names} hold the error {cell}; correct that cell")
     if height == width == 1:
-        return _as_texts(_text(rows[0][0]).split(";")), False
+        pieces = _text(rows[0][0]).split(";")
+        return _as_texts(pieces if pieces[-1].strip() or len(pieces) == 1 else pieces[:-1]), False
     if height == 1:
         return _as_texts(rows[0]), False
     if width == 1:
@@ -52,7 +53,11 @@ def _as_texts(cells: Any) -> tuple[str, ...]:
 
 
 def _text(cell: Cell) -> str:
-    return "" if is_blank(cell) else str(cell)
+    if is_blank(cell):
+        return ""
+    if isinstance(cell, bool):
+        return str(cell).upper()
+    return number_text(cell) if isinstance(cell, (int, float)) else str(cell)
 
 
 def _with_unit(name: Cell, unit: Cell) -> str:
@@ -64,7 +69,7 @@ def _with_unit(name: Cell, unit: Cell) -> str:
 
 def join(blocks: Sequence[Grid], upright: bool) -> list[list[Cell]] | Fault:
     """Rows of cells, a case a row, from value arguments joined left to right; a block of one row serves all rows."""
-    parts = [list(zip(*block, strict=True)) if upright else block for block in blocks if len(block)]
+    parts = [list(zip(*block, strict=True)) if upright else block for block in blocks if len(block) and len(block[0])]
     if not parts:
         return Fault(CellError.VALUE, "the values are missing; pass one column a heading")
     n = max(len(part) for part in parts)

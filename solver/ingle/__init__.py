@@ -5,6 +5,7 @@ SI units; temperatures in °C. Arrays in, arrays out, one case an element; one c
 
 from ingle.cases import Cases, Face, FaceKind, Layer
 from ingle.shapes import Shape
-from ingle.steady import QUANTITIES, Answers, Status, profile, steady
+from ingle.solution import Status
+from ingle.steady import QUANTITIES, Answers, profile, steady
 
 __all__ = ["QUANTITIES", "Answers", "Cases", "Face", "FaceKind", "Layer", "Shape", "Status", "profile", "steady"]

@@ -1,120 +1,154 @@
-"""The generation at which a temperature limit is first reached.
+"""The source at which a temperature limit is first reached.
 
-With constant conductivity the temperature everywhere is linear in the source, T = A + qB with B ≥ 0, so a face's limit
-gives its q at once. The peak is the highest of many such lines: it rises with q and is convex, so Newton's method started
-at or above the root falls to it without overshooting. Its slope is B at the peak's place (the place itself does not count,
-because the temperature there is stationary). A start above the root: the line of the place where B is largest.
+Sources that scale together are λ times a pattern; everything else stays. How far each watched temperature (the peak, a
+layer's peak, a face) is above its limit rises with λ, so the largest of these excesses has one root, the first limit
+reached. Its slope comes from the tangent of the state to λ; a peak's place does not count, since the temperature there is
+stationary. Newton's method is kept inside a bracket. With constant conductivity and linear faces the excess is convex (the
+highest of many straight lines), and Newton falls to the root from above without overshooting.
 """
 
 from __future__ import annotations
 
-from dataclasses import dataclass
+from dataclasses import dataclass, replace
 
 import numpy as np
 
-from ingle.cases import Cases, Face, Structure
-from ingle.field import extremes, rise_at
-from ingle.march import State, Steps, solve
-from ingle.shapes import Array
+from ingle.cases import Cases
+from ingle.conductivities import Conductivity
+from ingle.field import Extremes, extremes
+from ingle.march import LayerSteps, Problem, State, Tangent, beyond, carried, finish, solve, start
+from ingle.shapes import Array, path, source_path
 
-_MOST_STEPS = 60
+_MOST_STEPS = 200
 
-# Which limit governs; 0 is none.
-PEAK_LIMIT, LEFT_LIMIT, RIGHT_LIMIT = 1, 2, 3
+# Which limit governs; 0 is none, layer n's own limit is LAYER_LIMIT + n.
+PEAK_LIMIT, LEFT_LIMIT, RIGHT_LIMIT, LAYER_LIMIT = 1, 2, 3, 3
 # Why there is no allowable source.
 NO_LIMIT, BROKEN_WITHOUT_SOURCE, NEVER_REACHED = 1, 2, 3
 
 
 @dataclass(frozen=True)
 class Allowable:
-    """``generation`` q [W/m³], NaN where there is none; ``governs`` which limit; ``lacking`` why there is none, else 0."""
+    """``multiple`` λ of the pattern, NaN where there is none; ``governs`` which limit; ``lacking`` why there is none, else 0."""
 
-    generation: Array
+    multiple: Array
     governs: np.ndarray
     lacking: np.ndarray
 
 
-def allowable(cases: Cases, structure: Structure, steps: Steps) -> Allowable:
-    """The least source from zero up at which a limit is reached, for one structure's cases."""
-    zero = np.zeros_like(steps.d)
-    best = np.full_like(steps.d, np.inf)
-    governs = np.zeros(len(steps.d), dtype=np.int8)
-    broken = np.zeros(len(steps.d), dtype=np.int8)  # by which limit
-    limited = np.zeros(len(steps.d), dtype=bool)
-    A = solve(cases, structure, steps, zero)
-    B = solve(_without_sinks(cases), structure, steps, zero + 1.0)
-
-    def first(q: Array, given: np.ndarray, over: np.ndarray, which: int) -> None:
-        nonlocal best, governs, broken, limited
-        limited = limited | given
-        broken = np.where((broken == 0) & given & over, which, broken).astype(np.int8)
-        sooner = given & (q < best)
-        best = np.where(sooner, q, best)
-        governs = np.where(sooner, which, governs).astype(np.int8)
-
-    for which, limit, rise, slope in (
-        (LEFT_LIMIT, cases.left_limit, A.rise_left, B.rise_left),
-        (RIGHT_LIMIT, cases.right_limit, A.rise_right, B.rise_right),
+def excesses(cases: Cases, state: State, top: Extremes) -> list[tuple[int, Array]]:
+    """Each limit's number, and how many kelvin its temperature is above it (NaN where a case has not that limit)."""
+    found = []
+    for number, limit, rise in (
+        (PEAK_LIMIT, cases.limit, top.peak),
+        (LEFT_LIMIT, cases.left_limit, state.rise_left),
+        (RIGHT_LIMIT, cases.right_limit, state.rise_right),
     ):
         if limit is not None:
-            room = limit - A.sink - rise
-            reaches = slope > 0.0
-            q = np.where(reaches, room / np.where(reaches, slope, 1.0), np.inf)
-            first(q, ~np.isnan(limit), room < 0.0, which)
-    if cases.limit is not None:
-        given = ~np.isnan(cases.limit)
-        room = cases.limit - A.sink
-        over = extremes(A).peak > room
-        q = _peak_root(cases, structure, steps, A, B, np.where(given & ~over, room, np.nan))
-        first(q, given, over, PEAK_LIMIT)
-
-    lacking = np.where(~limited, NO_LIMIT, np.where(broken > 0, BROKEN_WITHOUT_SOURCE, 0))
-    lacking = np.where((lacking == 0) & np.isinf(best), NEVER_REACHED, lacking).astype(np.int8)
-    return Allowable(np.where(lacking == 0, best, np.nan), np.where(broken > 0, broken, governs), lacking)
+            found.append((number, rise - (limit - state.sink)))
+    for layer, limit in enumerate(cases.layer_limits):
+        if limit is not None:
+            found.append((LAYER_LIMIT + layer + 1, top.by_layer[layer] - (limit - state.sink)))
+    return found
 
 
-def _without_sinks(cases: Cases) -> Cases:
-    """The same bodies with every sink at 0 °C and no flux in: their temperature is the response to the source alone."""
-
-    def bare(face: Face) -> Face:
-        def zero(x: Array | None) -> Array | None:
-            return None if x is None else x * 0.0
-
-        return Face(zero(face.held), face.film, zero(face.fluid), None)
-
-    return Cases(cases.shape, cases.layers, bare(cases.left), bare(cases.right), cases.inner)
+def worst(found: list[tuple[int, Array]], n: int) -> tuple[Array, np.ndarray]:
+    """The largest excess of each case and the limit it belongs to; NaN and 0 where there is no limit."""
+    excess, which = np.full(n, np.nan), np.zeros(n, np.int8)
+    for number, each in found:
+        more = (each > excess) | (np.isnan(excess) & ~np.isnan(each))
+        excess, which = np.where(more, each, excess), np.where(more, number, which).astype(np.int8)
+    return excess, which
 
 
-def _peak_root(cases: Cases, structure: Structure, steps: Steps, A: State, B: State, room: Array) -> Array:
-    """The q at which the peak's rise equals ``room``; NaN where that is NaN."""
-    hottest = extremes(B)
-    q = np.maximum((room - rise_at(A, hottest.place)) / hottest.peak, 0.0)
-    open_rows = np.flatnonzero(~np.isnan(q))
-    for _ in range(_MOST_STEPS):
-        if not len(open_rows):
+def allowable(cases: Cases, problem: Problem, q: tuple[Array, ...], pattern: tuple[Array, ...]) -> Allowable:
+    """The least λ from zero up at which a limit is reached; q are the sources now, of which the pattern's scale."""
+    n = len(cases)
+    fixed = tuple(np.where(p != 0.0, 0.0, each) for each, p in zip(q, pattern, strict=True))
+
+    def at(rows: np.ndarray, part: Problem, multiple: Array, guess: Array | None) -> State:
+        return solve(part, tuple(f[rows] + multiple * p[rows] for f, p in zip(fixed, pattern, strict=True)), guess)
+
+    every = np.arange(n)
+    nothing = at(every, problem, np.zeros(n), None)
+    cold, broken_by = worst(excesses(cases, nothing, extremes(nothing)), n)
+    limited, broken = ~np.isnan(cold), cold > 0.0
+    low, high = np.zeros(n), np.full(n, np.inf)
+    multiple = np.where(limited & ~broken, _first_guess(problem, pattern, -cold), np.nan)
+    governs = broken_by.copy()
+    never = np.zeros(n, bool)
+    rows = np.flatnonzero(np.isfinite(multiple) & (cold < 0.0))
+    multiple[limited & (cold == 0.0)] = 0.0
+    u = nothing.u.copy()
+    for step in range(_MOST_STEPS):
+        if not len(rows):
             break
-        part = cases.take(open_rows)
-        near = _take(steps, open_rows)
-        here = solve(part, structure, near, q[open_rows])
-        top = extremes(here)
-        slope = rise_at(_pick(B, near, open_rows), top.place)
-        step = (top.peak - room[open_rows]) / np.where(slope > 0.0, slope, np.inf)
-        better = np.maximum(q[open_rows] - step, 0.0)
-        moved = np.abs(better - q[open_rows]) > 4e-16 * q[open_rows]
-        # Falling towards the root from above, so a step upward is rounding and the row is done.
-        q[open_rows] = np.where(step > 0.0, better, q[open_rows])
-        open_rows = open_rows[moved & (step > 0.0)]
-    return q
+        part, some = problem.take(rows), cases.take(rows)
+        state = at(rows, part, multiple[rows], None if problem.linear else u[rows])
+        u[rows] = state.u
+        top = extremes(state)
+        excess, which = worst(excesses(some, state, top), len(rows))
+        slope = _slope(part, state, top, which, tuple(p[rows] for p in pattern))
+        here = multiple[rows]
+        low[rows] = np.where(excess <= 0.0, np.maximum(low[rows], here), low[rows])
+        high[rows] = np.where(excess > 0.0, np.minimum(high[rows], here), high[rows])
+        flat = ~(slope > 0.0)
+        new = here - excess / np.where(flat, 1.0, slope)
+        lo, hi = low[rows], high[rows]
+        middle = np.where(np.isfinite(hi), (lo + hi) / 2.0, 4.0 * np.maximum(here, lo))
+        inside = (new > lo) & (new < hi) & ~flat & np.isfinite(new)
+        small = ~flat & (np.abs(new - here) <= 4e-16 * here)
+        better = np.where(inside | small, new, middle)
+        # Bisection beside Newton where that has been slow for long.
+        better = np.where(small, here, better) if step < 60 else np.where(small, here, middle)
+        governs[rows] = which
+        done = small | (excess == 0.0) | (np.isfinite(hi) & ((hi - lo) <= 4e-16 * hi))
+        lost = ~np.isfinite(excess) | (better > 1e60) | ((step > 40) & flat & ~np.isfinite(hi))
+        never[rows] |= lost
+        multiple[rows] = better
+        rows = rows[~(done | lost)]
+    lacking = np.where(~limited, NO_LIMIT, np.where(broken, BROKEN_WITHOUT_SOURCE, np.where(never, NEVER_REACHED, 0)))
+    return Allowable(np.where(lacking == 0, multiple, np.nan), governs, lacking.astype(np.int8))
 
 
-def _take(steps: Steps, rows: np.ndarray) -> Steps:
-    W = None if steps.W is None else steps.W[rows]
-    return Steps(steps.a[rows], steps.d[rows], steps.b[rows], steps.k[rows], steps.V[rows], W, steps.D[rows])
+def _first_guess(problem: Problem, pattern: tuple[Array, ...], room: Array) -> Array:
+    """Roughly the multiple that warms the body by ``room``: heat through half its resistance and through its faces."""
+    warm = np.zeros_like(room)
+    for layer, p in zip(problem.layers, pattern, strict=True):
+        k = layer.k.at(problem.sink) if isinstance(layer.k, Conductivity) else layer.k
+        warm = warm + np.abs(p) * layer.D / k / 4.0
+    return np.where(warm > 0.0, room / np.where(warm > 0.0, warm, 1.0), 1.0)
 
 
-def _pick(state: State, steps: Steps, rows: np.ndarray) -> State:
-    return State(
-        state.structure, steps, state.q[rows], state.sink[rows], state.rise_left[rows], state.rise_right[rows],
-        state.Q_left[rows], state.Q_right[rows], state.imbalance[rows], state.F_left[rows], state.F_right[rows],
-        state.settled,
-    )  # fmt: skip
+def _slope(problem: Problem, state: State, top: Extremes, which: np.ndarray, pattern: tuple[Array, ...]) -> Array:
+    """How much the watched temperature rises with λ: the unknown moves so that the far face's law stays met."""
+    sink, shape = problem.sink, problem.structure.shape
+    _, _, dT, dQ = start(problem, state.u)
+    zero = np.zeros_like(state.u)
+    by_u: Tangent = (dT, dQ)
+    by_source: Tangent = (zero, zero)
+    for layer, ends, p in zip(problem.layers, state.ends, pattern, strict=True):
+        by_u = _past(layer, carried(layer, sink, ends, by_u))
+        by_source = _past(layer, carried(layer, sink, ends, by_source, p))
+    far = beyond(problem.layers[-1], state.rise_right, state.Q_right)
+    _, (r_u, r_source) = finish(problem, far, state.Q_right, [by_u, by_source])
+    du = -r_source / r_u
+    tangent: Tangent = (dT * du, dQ * du)
+    slope = np.where(which == LEFT_LIMIT, tangent[0], zero)
+    for number, (layer, ends, p) in enumerate(zip(problem.layers, state.ends, pattern, strict=True)):
+        s = np.clip(top.places[number] - layer.a, 0.0, layer.d)
+        W = None if layer.W is None else path(shape, layer.a, s)
+        D = s * s / (2.0 * (shape + 1.0)) if W is None else source_path(shape, layer.a, s)
+        to_peak = replace(layer, W=W, D=D)
+        at_peak = replace(ends, T1=top.by_layer[number])
+        watched = ((which == PEAK_LIMIT) & (top.layer == number + 1.0)) | (which == LAYER_LIMIT + number + 1)
+        slope = np.where(watched, carried(to_peak, sink, at_peak, tangent, p)[0], slope)
+        tangent = carried(layer, sink, ends, tangent, p)
+        if number == len(problem.layers) - 1:
+            slope = np.where(which == RIGHT_LIMIT, tangent[0], slope)
+        tangent = _past(layer, tangent)
+    return slope
+
+
+def _past(layer: LayerSteps, tangent: Tangent) -> Tangent:
+    return beyond(layer, *tangent), tangent[1]

@@ -2,56 +2,89 @@
 
 from __future__ import annotations
 
-from dataclasses import dataclass
+from dataclasses import dataclass, fields
 from enum import IntEnum
+from typing import TypeVar
 
 import numpy as np
 
+from ingle.conductivities import Conductivity
 from ingle.shapes import Array, Shape
+
+Rows = np.ndarray | slice
+Part = TypeVar("Part")
+
+
+def take(part: Part, rows: Rows) -> Part:
+    """Some of the cases of a dataclass of arrays; what is no array, or has its own `take`, is kept or taken."""
+    values = (getattr(part, f.name) for f in fields(part))  # type: ignore[arg-type]
+    return type(part)(*(taken(value, rows) for value in values))
+
+
+def taken(value: object, rows: Rows) -> object:
+    """An array's rows; anything else by its own `take`, or as it is."""
+    if isinstance(value, np.ndarray):
+        return value[rows]
+    if isinstance(value, tuple):
+        return tuple(taken(each, rows) for each in value)
+    own = getattr(value, "take", None)
+    return value if own is None else own(rows)
 
 
 class FaceKind(IntEnum):
     """What is prescribed at a face."""
 
     FLUX = 0  # the heat entering; none is an insulated face, or the centre of a solid round body
-    HELD = 1  # the temperature
-    FILM = 2  # convection to a fluid, with or without a flux put in at the same surface
+    HELD = 1  # the temperature, at the far side of the resistance if there is one
+    FILM = 2  # convection with a given coefficient, with or without a flux put in at the same surface
+    SURFACE = 3  # radiation, beside a film or a flux or alone
 
 
 @dataclass(frozen=True)
 class Face:
     """One face of the body. ``None``: no case has it; NaN in an element: that case has not.
 
-    ``held`` [°C]; ``film`` [W/(m²·K)] with ``fluid`` [°C]; ``flux`` [W/m²] put into the body. A film of exactly 0 takes no
-    heat, so that face is prescribed by its flux alone. A held face takes neither film nor flux (ValueError).
+    ``held`` [°C]; ``film`` [W/(m²·K)] with ``fluid`` [°C]; ``flux`` [W/m²] put in at the outermost surface;
+    ``emissivity`` [1] to large ``surroundings`` [°C]; ``resistance`` [m²·K/W] between the body's face and its outermost
+    surface or held temperature. A film of exactly 0 takes no heat.
     """
 
     held: Array | None = None
     film: Array | None = None
     fluid: Array | None = None
     flux: Array | None = None
+    emissivity: Array | None = None
+    surroundings: Array | None = None
+    resistance: Array | None = None
 
     def __post_init__(self) -> None:
         if (self.film is None) != (self.fluid is None):
             raise ValueError("a film needs its fluid temperature, and a fluid temperature its film")
+        if self.held is not None:
+            for other in (self.film, self.flux):
+                if other is not None and np.any(~np.isnan(self.held) & ~np.isnan(other)):
+                    raise ValueError("a held face takes neither film nor flux")
+        if self.emissivity is not None and self.surroundings is None:
+            raise ValueError("radiation needs its surroundings")
 
     def kinds(self) -> FaceKind | np.ndarray:
         """One FaceKind for all cases, or an integer array of them."""
-        if self.held is None and self.film is None:
-            return FaceKind.FLUX
         kind: FaceKind | np.ndarray = FaceKind.FLUX
         if self.film is not None:
-            filmed = self.film > 0.0
-            kind = FaceKind.FILM if filmed.all() else np.where(filmed, FaceKind.FILM, FaceKind.FLUX)
+            kind = _where(self.film > 0.0, FaceKind.FILM, kind)
+        if self.emissivity is not None:
+            kind = _where(self.emissivity > 0.0, FaceKind.SURFACE, kind)
         if self.held is not None:
-            held = ~np.isnan(self.held)
-            kind = FaceKind.HELD if held.all() else np.where(held, FaceKind.HELD, kind)
+            kind = _where(~np.isnan(self.held), FaceKind.HELD, kind)
         return kind
 
-    def take(self, rows: np.ndarray | slice) -> Face:
+    def take(self, rows: Rows) -> Face:
         """The same face for some of the cases."""
-        parts = (None if x is None else x[rows] for x in (self.held, self.film, self.fluid, self.flux))
-        return Face(*parts)
+        return take(self, rows)
+
+
+def _where(mask: np.ndarray, kind: FaceKind, other: FaceKind | np.ndarray) -> FaceKind | np.ndarray:
+    return kind if mask.all() else (other if not mask.any() else np.where(mask, kind, other))
 
 
 @dataclass(frozen=True)
@@ -59,20 +92,23 @@ class Layer:
     """One layer: ``thickness`` d [m] (the radius of a solid body), ``conductivity`` k [W/(m·K)], ``generation`` q [W/m³]."""
 
     thickness: Array
-    conductivity: Array
+    conductivity: Array | Conductivity
     generation: Array
 
-    def take(self, rows: np.ndarray | slice) -> Layer:
+    def take(self, rows: Rows) -> Layer:
         """The same layer for some of the cases."""
-        return Layer(self.thickness[rows], self.conductivity[rows], self.generation[rows])
+        return take(self, rows)
 
 
 @dataclass(frozen=True)
 class Cases:
     """n cases. ``shape`` is one Shape for all or an integer array; ``inner`` is the bore radius [m], 0 or None where solid.
 
-    The left face of a round body is its bore. Limits [°C] are optional (NaN or None: none): ``limit`` anywhere in the
-    body, ``left_limit`` and ``right_limit`` at the faces. ``probe`` [m] is a place: from the left face, or a radius.
+    ``layers`` go from the left face, or the inside, outward; ``joints`` [m²·K/W] lie between them, per area where they
+    meet (None: none). The left face of a round body is its bore. Limits [°C] are optional (NaN or None: none): ``limit``
+    anywhere in the body, ``layer_limits`` one a layer, ``left_limit`` and ``right_limit`` at the faces. ``probe`` [m] is
+    a place: from the left face, or a radius. ``pattern`` [W/m³ in each layer] are the sources that scale together for an
+    allowable multiple, the first layer's by 1 W/m³ if not given; a layer where it is 0 keeps its generation.
     """
 
     shape: Shape | np.ndarray
@@ -84,19 +120,22 @@ class Cases:
     left_limit: Array | None = None
     right_limit: Array | None = None
     probe: Array | None = None
+    joints: tuple[Array | None, ...] = ()
+    layer_limits: tuple[Array | None, ...] = ()
+    pattern: tuple[Array, ...] = ()
 
     def __post_init__(self) -> None:
-        if len(self.layers) != 1:
-            raise ValueError("a body of one layer is needed; bodies of several layers are not available yet")
+        if not self.layers:
+            raise ValueError("a body has at least one layer")
+        if len(self.joints) not in (0, len(self.layers) - 1) or len(self.layer_limits) not in (0, len(self.layers)):
+            raise ValueError("there is a joint between each two layers and a limit for each layer")
 
     def __len__(self) -> int:
         return len(self.layers[0].thickness)
 
-    def take(self, rows: np.ndarray | slice) -> Cases:
+    def take(self, rows: Rows) -> Cases:
         """Some of the cases."""
-        rest = (None if x is None else x[rows] for x in (self.inner, self.limit, self.left_limit, self.right_limit, self.probe))
-        shape = self.shape if isinstance(self.shape, Shape) else self.shape[rows]
-        return Cases(shape, tuple(layer.take(rows) for layer in self.layers), self.left.take(rows), self.right.take(rows), *rest)
+        return take(self, rows)
 
 
 @dataclass(frozen=True)
@@ -107,6 +146,11 @@ class Structure:
     solid: bool
     left: FaceKind
     right: FaceKind
+
+    @property
+    def settles(self) -> bool:
+        """Whether heat can leave at all."""
+        return not (self.left == FaceKind.FLUX and self.right == FaceKind.FLUX)
 
 
 def structure_codes(cases: Cases) -> Structure | np.ndarray:
@@ -125,13 +169,13 @@ def structure_codes(cases: Cases) -> Structure | np.ndarray:
     codes = np.zeros(len(cases), dtype=np.intp)
     solid_round = np.logical_and(solid, np.not_equal(shape, Shape.WALL))
     left = np.where(solid_round, FaceKind.FLUX, left)
-    codes += shape * 18 + solid_round * 9 + left * 3 + right
+    codes += shape * 32 + solid_round * 16 + left * 4 + right
     return codes
 
 
 def decode(code: int) -> Structure:
     """The structure a code stands for."""
-    shape, rest = divmod(code, 18)
-    solid, rest = divmod(rest, 9)
-    left, right = divmod(rest, 3)
+    shape, rest = divmod(code, 32)
+    solid, rest = divmod(rest, 16)
+    left, right = divmod(rest, 4)
     return Structure(Shape(shape), bool(solid), FaceKind(left), FaceKind(right))

@@ -1,4 +1,4 @@
-"""Quantities of a solved state: the peak and its place, faces, mean, heats, temperature anywhere, heat balance."""
+"""Quantities of a solved state: the peak and its place, faces, means, heats, temperature anywhere, heat balance."""
 
 from __future__ import annotations
 
@@ -6,124 +6,208 @@ from dataclasses import dataclass
 
 import numpy as np
 
-from ingle.march import State
+from ingle.conductivities import Conductivity
+from ingle.march import Ends, LayerSteps, State
 from ingle.shapes import (
     MEASURE,
     Array,
     Shape,
-    area,
     depth_of_volume,
     path,
     solid_source_square,
     source_path,
     source_square,
+    volume,
+)
+
+# Gauss-Legendre nodes for means where T is no polynomial of place; see mean_rise.
+_SMOOTH = np.polynomial.legendre.leggauss(32)
+# A text table has corners, which Gauss nodes do not see: 128 panels of 4, about 1e-7 of the rise.
+_PANELS, _FOUR = 128, np.polynomial.legendre.leggauss(4)
+_CORNERED = (
+    np.concatenate([(_FOUR[0] + 1.0 + 2.0 * panel) / _PANELS - 1.0 for panel in range(_PANELS)]),
+    np.tile(_FOUR[1] / _PANELS, _PANELS),
 )
 
 
 @dataclass(frozen=True)
 class Extremes:
-    """Highest and lowest rise over the sink, and the place of the highest as a distance d from the left face or centre."""
+    """Highest and lowest rise over the sink, the place of the highest (from the left face, or a radius) and its layer."""
 
     peak: Array
     place: Array
     lowest: Array
+    layer: Array
+    by_layer: tuple[Array, ...]
+    places: tuple[Array, ...]
+    lows: tuple[Array, ...]
 
 
 def extremes(state: State) -> Extremes:
-    """Peak and lowest rise. Where two places are equally hot the left one is named."""
-    steps, q, Q0 = state.steps, state.q, state.Q_left
-    hot_left = state.rise_left >= state.rise_right
-    peak = np.where(hot_left, state.rise_left, state.rise_right)
-    place = np.where(hot_left, 0.0, steps.d)
-    lowest = np.where(hot_left, state.rise_right, state.rise_left)
-    if steps.W is None:
-        return Extremes(peak, place, lowest)  # no heat crosses the centre, so the rise is monotone from there
-    # Heat turns where Q₀ + qV(r) = 0; marching back from there, T(r) = T₀ + q D(r → left)/k.
-    turning = Q0 * state.Q_right < 0.0
+    """Peaks and lowest rise. Where two places are equally hot the left one is named."""
+    found = [_layer_extremes(state, number) for number in range(len(state.ends))]
+    peak, place, lowest = found[0]
+    layer = np.ones_like(peak)
+    for number, (T, s, low) in enumerate(found[1:], 2):
+        hotter = peak < T
+        peak, place = np.where(hotter, T, peak), np.where(hotter, s, place)
+        layer = np.where(hotter, float(number), layer)
+        lowest = np.minimum(lowest, low)
+    by_layer, places, lows = (tuple(each) for each in zip(*found, strict=True))
+    return Extremes(peak, place, lowest, layer, by_layer, places, lows)
+
+
+def _layer_extremes(state: State, number: int) -> tuple[Array, Array, Array]:
+    layer, ends, q = state.problem.layers[number], state.ends[number], state.q[number]
+    hot_left = ends.T0 >= ends.T1
+    peak = np.where(hot_left, ends.T0, ends.T1)
+    place = np.where(hot_left, layer.a, layer.b)
+    lowest = np.where(hot_left, ends.T1, ends.T0)
+    if layer.W is None:
+        return peak, place, lowest  # no heat crosses the centre, so the rise is monotone from there
+    # Heat turns where Q₀ + qV(r) = 0; there ∫k dT from the left is −(Q₀W + qD) = q(VW − D).
+    turning = ends.Q0 * ends.Q1 < 0.0
     if not turning.any():
-        return Extremes(peak, place, lowest)
-    V = np.where(turning, -Q0 / np.where(turning, q, 1.0), 0.0)
-    s = np.minimum(depth_of_volume(state.structure.shape, steps.a, V), steps.d)
-    turn = state.rise_left + q * source_path(state.structure.shape, steps.a + s, -s) / steps.k
+        return peak, place, lowest
+    V = np.where(turning, -ends.Q0 / np.where(turning, q, 1.0), 0.0)
+    shape = state.problem.structure.shape
+    s = np.minimum(depth_of_volume(shape, layer.a, V), layer.d)
+    turn = _after(layer, state.sink, ends.T0, q * (V * path(shape, layer.a, s) - source_path(shape, layer.a, s)))
     higher = turning & (q > 0.0) & (turn >= peak)
-    return Extremes(
+    return (
         np.where(higher, turn, peak),
-        np.where(higher, s, place),
+        np.where(higher, layer.a + s, place),
         np.where(turning & (q < 0.0), np.minimum(turn, lowest), lowest),
     )
 
 
-def rise_at(state: State, s: Array) -> Array:
-    """Rise over the sink at a distance s from the left face, or from the centre of a solid body (0 ≤ s ≤ d)."""
-    steps, shape = state.steps, state.structure.shape
-    if steps.W is None:
-        return state.rise_left - state.q * (s * s) / (2.0 * (shape + 1.0)) / steps.k
-    fall = state.Q_left * path(shape, steps.a, s) + state.q * source_path(shape, steps.a, s)
-    return state.rise_left - fall / steps.k
+def _after(layer: LayerSteps, sink: Array, T: Array, integral: Array) -> Array:
+    """The rise after ∫k dT of that size from T."""
+    if isinstance(layer.k, Conductivity):
+        start = sink + T
+        return T + (layer.k.end(start, integral) - start)
+    return T + integral / layer.k
+
+
+def layer_rise(state: State, number: int, s: Array) -> Array:
+    """Rise over the sink in a layer at a distance s from its left face, or from the centre of a solid body (0 ≤ s ≤ d)."""
+    layer, ends, q = state.problem.layers[number], state.ends[number], state.q[number]
+    shape = state.problem.structure.shape
+    if layer.W is None:
+        return _after(layer, state.sink, ends.T0, -(q * (s * s) / (2.0 * (shape + 1.0))))
+    return _after(layer, state.sink, ends.T0, -(ends.Q0 * path(shape, layer.a, s) + q * source_path(shape, layer.a, s)))
+
+
+def rise_at(state: State, place: Array) -> Array:
+    """Rise over the sink at a place within the body; at a joint, its left side."""
+    rise = layer_rise(state, 0, np.minimum(place - state.problem.layers[0].a, state.problem.layers[0].d))
+    for number in range(1, len(state.ends)):
+        layer = state.problem.layers[number]
+        here = place > layer.a
+        s = np.clip(place - layer.a, 0.0, layer.d)
+        rise = np.where(here, layer_rise(state, number, s), rise)
+    return rise
+
+
+def layer_mean(state: State, number: int) -> Array:
+    """Mean rise over a layer's volume.
+
+    With constant k, T̄ = T₀ − [Q₀ ∫W dV + q (V₁D₁ − U)]/(k V₁), where ∫W dV = V₁W₁ − D₁. With k(T) the
+    rise is integrated over the volume at Gauss-Legendre nodes.
+    """
+    layer, ends, q = state.problem.layers[number], state.ends[number], state.q[number]
+    shape = state.problem.structure.shape
+    if isinstance(layer.k, Conductivity):
+        total = np.zeros_like(ends.T0)
+        nodes = _SMOOTH if layer.k.table is None else _CORNERED
+        for node, weight in zip(*nodes, strict=True):
+            V = layer.V * ((1.0 + node) / 2.0)
+            s = np.minimum(depth_of_volume(shape, layer.a, V), layer.d) if layer.W is not None else _solid_depth(shape, layer, V)
+            total = total + (weight / 2.0) * (layer_rise(state, number, s) - ends.T0)
+        return ends.T0 + total
+    if layer.W is None:
+        U = solid_source_square(shape, layer.d)
+        return ends.T0 - q * (layer.D - U / layer.V) / layer.k
+    U = source_square(shape, layer.a, layer.d)
+    conducted = ends.Q0 * (layer.V * layer.W - layer.D)
+    return ends.T0 - (conducted + q * (layer.V * layer.D - U)) / (layer.k * layer.V)
+
+
+def _solid_depth(shape: Shape, layer: LayerSteps, V: Array) -> Array:
+    share = V / layer.V
+    return layer.d * (np.sqrt(share) if shape == Shape.CYLINDER else np.cbrt(share))
 
 
 def mean_rise(state: State) -> Array:
-    """Mean over the volume: T̄ = T₀ − [Q₀ ∫W dV + q (V₁D₁ − U)]/(k V₁), where ∫W dV = D from the right face inward."""
-    steps, shape = state.steps, state.structure.shape
-    if steps.W is None:
-        U = solid_source_square(shape, steps.d)
-        return state.rise_left - state.q * (steps.D - U / steps.V) / steps.k
-    U = source_square(shape, steps.a, steps.d)
-    conducted = state.Q_left * source_path(shape, steps.b, -steps.d)
-    return state.rise_left - (conducted + state.q * (steps.V * steps.D - U)) / (steps.k * steps.V)
+    """Mean rise over the volume of the body."""
+    if len(state.ends) == 1:
+        return layer_mean(state, 0)
+    total, V = np.zeros_like(state.sink), np.zeros_like(state.sink)
+    for number, layer in enumerate(state.problem.layers):
+        total = total + layer_mean(state, number) * layer.V
+        V = V + layer.V
+    return total / V
 
 
 def left_flux(state: State) -> Array:
     """Net heat leaving through the left face, W/m² of that face; 0 at the centre of a solid body."""
-    if state.steps.W is None:
+    if state.problem.layers[0].W is None:
         return np.zeros_like(state.Q_left)
-    return (0.0 - state.Q_left) / area(state.structure.shape, state.steps.a)
+    return (0.0 - state.Q_left) / state.problem.area_left
 
 
 def right_flux(state: State) -> Array:
     """Net heat leaving through the right face, W/m² of that face."""
-    return state.Q_right / area(state.structure.shape, state.steps.b)
+    return state.Q_right / state.problem.area_right
 
 
 def left_heat(state: State) -> Array:
     """Net heat leaving on the left: W/m² of a wall, W/m of a cylinder, W of a sphere."""
-    return (0.0 - state.Q_left) * MEASURE[state.structure.shape]
+    return (0.0 - state.Q_left) * MEASURE[state.problem.structure.shape]
 
 
 def right_heat(state: State) -> Array:
     """Net heat leaving on the right, measured as ``left_heat``."""
-    return state.Q_right * MEASURE[state.structure.shape]
+    return state.Q_right * MEASURE[state.problem.structure.shape]
+
+
+def _made(state: State) -> Array:
+    made = state.q[0] * state.problem.layers[0].V
+    for q, layer in zip(state.q[1:], state.problem.layers[1:], strict=True):
+        made = made + q * layer.V
+    return made
 
 
 def heat_made(state: State) -> Array:
     """Heat generated in the body, measured as ``left_heat``."""
-    return state.q * state.steps.V * MEASURE[state.structure.shape]
+    return _made(state) * MEASURE[state.problem.structure.shape]
 
 
 def left_share(state: State) -> Array:
     """Share of all heat that leaves which leaves on the left, 0 to 1; NaN where none leaves beyond rounding."""
     left, right = np.maximum(-state.Q_left, 0.0), np.maximum(state.Q_right, 0.0)
     total = left + right
-    leaves = total > 1e-13 * _largest_heat(state)
+    leaves = total > 1e-13 * largest_heat(state)
     return np.where(leaves, left / np.where(leaves, total, 1.0), np.nan)
 
 
 def balance(state: State) -> Array:
     """What the heats are out of balance by, over the largest of heat made, taken in and passing through (a self-check)."""
-    made = state.q * state.steps.V
     # Q₁ − Q₀ = made by the march itself; what can be wrong is the far face's law, and the sum in floating point.
-    short = np.abs(state.imbalance) + np.abs(state.Q_right - state.Q_left - made)
-    scale = _largest_heat(state)
+    short = np.abs(state.imbalance) + np.abs(state.Q_right - state.Q_left - _made(state))
+    scale = largest_heat(state)
     return np.where(scale > 0.0, short / np.where(scale > 0.0, scale, 1.0), short)
 
 
-def _largest_heat(state: State) -> Array:
-    scale = np.abs(state.q * state.steps.V)
-    for heat in (state.Q_left, state.Q_right, state.F_left, state.F_right):
-        scale = np.maximum(scale, np.abs(heat))
+def largest_heat(state: State) -> Array:
+    """Largest of heat made, put in, and crossing a layer's face."""
+    scale = np.abs(_made(state))
+    for ends in state.ends:
+        scale = np.maximum(scale, np.maximum(np.abs(ends.Q0), np.abs(ends.Q1)))
+    for side, A in ((state.problem.left, state.problem.area_left), (state.problem.right, state.problem.area_right)):
+        if side.flux is not None:
+            scale = np.maximum(scale, np.abs(side.flux * A))
     return scale
 
 
-def origin(state: State) -> Array | float:
-    """The coordinate at s = 0: 0 for a wall and a solid body, the bore radius of a hollow one."""
-    return 0.0 if state.structure.shape == Shape.WALL else state.steps.a
+__all__ = ["Ends", "Extremes", "balance", "extremes", "rise_at", "volume"]

@@ -1,9 +1,10 @@
 """The march: outward from the left face or the centre, layer by layer, until the right face's law is met.
 
 Carried outward are the temperature, as a rise over one sink's temperature so that small rises keep their digits, and the
-heat Q = r^m q″, with the derivative of each to the one unknown. The unknown is the rise of the left surface (film, flux,
-centre) or the heat entering there (held). The residual of the right face's law is monotone in it, so its root is unique;
-with constant conductivity it is linear and one Newton step from zero is exact.
+heat Q = r^m q″, with their derivatives to the one unknown u. The unknown is the rise of the outermost left surface (film,
+radiation, flux, centre) or the heat entering there (held). The residual of the right face's law is monotone in u, so its
+root is unique and easily bracketed. With constant conductivity and linear faces it is linear, and one Newton step from
+zero is exact; otherwise Newton's method is kept inside the bracket, all cases at once, those that are done dropped.
 """
 
 from __future__ import annotations
@@ -12,133 +13,312 @@ from dataclasses import dataclass
 
 import numpy as np
 
-from ingle.cases import Cases, Face, FaceKind, Structure
-from ingle.shapes import (
-    Array,
-    area,
-    path,
-    solid_source_path,
-    solid_volume,
-    source_path,
-    volume,
-)
+from ingle.cases import Cases, FaceKind, Rows, Structure, take
+from ingle.conductivities import Conductivity
+from ingle.shapes import Array, Shape, area, path, solid_source_path, solid_volume, source_path, volume
+from ingle.surfaces import KELVIN, Surface, sink_of, surface
+
+MOST_STEPS = 120
 
 
 @dataclass(frozen=True)
-class Steps:
-    """The integrals of each layer of a group: V, W and D of ``ingle.shapes``, from its inner face; W is None where solid."""
+class LayerSteps:
+    """A layer from a to b: thickness d, V, W and D of ``ingle.shapes`` (W None where solid), k, and the joint beyond it.
+
+    ``a`` and ``b`` are places: from the left face of a wall, else radii. ``joint`` is R/r^m [m²·K/W over r^m] or None.
+    """
 
     a: Array
     d: Array
     b: Array
-    k: Array
     V: Array
     W: Array | None
     D: Array
+    k: Array | Conductivity
+    joint: Array | None
+
+    def take(self, rows: Rows) -> LayerSteps:
+        """The same layer for some of the cases."""
+        return take(self, rows)
+
+
+@dataclass(frozen=True)
+class Problem:
+    """Cases of one structure ready to be marched; ``area_left`` and ``area_right`` are r^m of the body's faces."""
+
+    structure: Structure
+    layers: tuple[LayerSteps, ...]
+    left: Surface
+    right: Surface
+    sink: Array
+    area_left: Array
+    area_right: Array
+
+    @property
+    def linear(self) -> bool:
+        """Whether the residual is linear in the unknown."""
+        kinds = (self.structure.left, self.structure.right)
+        return FaceKind.SURFACE not in kinds and all(isinstance(layer.k, np.ndarray) for layer in self.layers)
+
+    def take(self, rows: Rows) -> Problem:
+        """Some of the cases."""
+        return take(self, rows)
+
+
+@dataclass(frozen=True)
+class Ends:
+    """Rises and heats at both ends of a layer, with their derivatives to the unknown (u) where they were carried."""
+
+    T0: Array
+    Q0: Array
+    T1: Array
+    Q1: Array
+
+    def take(self, rows: Rows) -> Ends:
+        """The same layer for some of the cases."""
+        return take(self, rows)
 
 
 @dataclass(frozen=True)
 class State:
-    """The steady state of a group: temperatures are ``sink`` + rise [°C], heats are r^m q″ outward.
+    """The steady state of a group: temperatures are ``sink`` + rise [°C], heats are r^m q″ outward, a layer after another.
 
-    ``imbalance`` is what the right face's law is short of, as heat in the same measure; ``F_left`` and ``F_right`` are the
-    fluxes put in at the faces; ``settled`` is False where no heat can leave the body.
+    ``imbalance`` is what the right face's law is short of, as heat in the same measure.
     """
 
-    structure: Structure
-    steps: Steps
-    q: Array
-    sink: Array
-    rise_left: Array
-    rise_right: Array
-    Q_left: Array
-    Q_right: Array
+    problem: Problem
+    q: tuple[Array, ...]
+    u: Array
+    ends: tuple[Ends, ...]
+    slope: Array
     imbalance: Array
-    F_left: Array
-    F_right: Array
-    settled: bool
+
+    @property
+    def sink(self) -> Array:
+        """What rises are counted from, °C."""
+        return self.problem.sink
+
+    @property
+    def rise_left(self) -> Array:
+        """Rise of the body's left face, or centre."""
+        return self.ends[0].T0
+
+    @property
+    def rise_right(self) -> Array:
+        """Rise of the body's right face."""
+        return self.ends[-1].T1
+
+    @property
+    def Q_left(self) -> Array:
+        """Heat entering at the left face."""
+        return self.ends[0].Q0
+
+    @property
+    def Q_right(self) -> Array:
+        """Heat leaving at the right face."""
+        return self.ends[-1].Q1
 
 
-def layer_steps(cases: Cases, structure: Structure) -> Steps:
-    """Integrals over the layer, which depend on its geometry alone."""
-    layer = cases.layers[0]
-    shape, d = structure.shape, layer.thickness
-    if structure.solid:
-        zero = np.zeros_like(d)
-        return Steps(zero, d, d, layer.conductivity, solid_volume(shape, d), None, solid_source_path(shape, d))
-    a = np.zeros_like(d) if cases.inner is None else cases.inner
-    return Steps(a, d, a + d, layer.conductivity, volume(shape, a, d), path(shape, a, d), source_path(shape, a, d))
+def problem_of(cases: Cases, structure: Structure) -> Problem:
+    """Integrals and laws that do not depend on the sources."""
+    shape, zero = structure.shape, np.zeros(len(cases))
+    left_sink, right_sink = sink_of(cases.left, structure.left), sink_of(cases.right, structure.right)
+    sink = left_sink if left_sink is not None else (right_sink if right_sink is not None else zero)
+    layers: list[LayerSteps] = []
+    place = zero if shape == Shape.WALL or cases.inner is None or structure.solid else cases.inner
+    for number, layer in enumerate(cases.layers):
+        a, d = place, layer.thickness
+        place = a + d
+        R = cases.joints[number] if number < len(cases.joints) else None
+        joint = None if R is None else np.where(np.isnan(R), 0.0, R) / area(shape, place)
+        k = layer.conductivity
+        k = k.k0 if isinstance(k, Conductivity) and k.constant and k.k0 is not None else k
+        if structure.solid and number == 0:
+            layers.append(LayerSteps(a, d, place, solid_volume(shape, d), None, solid_source_path(shape, d), k, joint))
+        else:
+            layers.append(LayerSteps(a, d, place, volume(shape, a, d), path(shape, a, d), source_path(shape, a, d), k, joint))
+    ones = zero + 1.0
+    return Problem(
+        structure, tuple(layers), surface(cases.left, structure.left, sink), surface(cases.right, structure.right, sink), sink,
+        ones * area(shape, layers[0].a), ones * area(shape, place),
+    )  # fmt: skip
 
 
-def _through(steps: Steps, rise: Array, Q: Array, q: Array) -> tuple[Array, Array]:
-    """T₁ = T₀ − (Q₀W + qD)/k and Q₁ = Q₀ + qV across a layer."""
-    fall = q * steps.D if steps.W is None else Q * steps.W + q * steps.D
-    return rise - fall / steps.k, Q + q * steps.V
-
-
-def solve(cases: Cases, structure: Structure, steps: Steps, q: Array) -> State:
-    """The steady state of one structure's cases for sources q [W/m³]."""
-    left, right = structure.left, structure.right
-    zero = np.zeros_like(q)
-    F_left, G_left = _port(cases.left, left, structure, steps.a, zero)
-    F_right, G_right = _port(cases.right, right, structure, steps.b, zero)
-    sink_left, sink_right = _sink(cases.left, left), _sink(cases.right, right)
-    sink = sink_left if sink_left is not None else (sink_right if sink_right is not None else zero)
-    offset = sink_right - sink if sink_right is not None and sink_left is not None else zero
-
-    def residual(rise: Array, Q: Array) -> Array:
-        if right == FaceKind.HELD:
-            return rise - offset
-        if right == FaceKind.FLUX:
-            return Q + F_right
-        return Q + F_right - G_right * (rise - offset)
-
-    # At the unknown u = 0: the left surface at its sink (film, flux, centre) or no heat entering (held).
-    Q_start = zero if left == FaceKind.HELD else F_left
-    rise, Q = _through(steps, zero, Q_start, q)
-    r = residual(rise, Q)
-
-    # The tangent: (dT₀, dQ₀) = (1, −G) film, (1, 0) flux and centre, (0, 1) held; dT₁ = dT₀ − dQ₀ W/k, dQ₁ = dQ₀.
-    dQ = -G_left if left == FaceKind.FILM else (zero + 1.0 if left == FaceKind.HELD else zero)
-    dT = zero if left == FaceKind.HELD else zero + 1.0
-    if steps.W is not None:
-        dT = dT - dQ * steps.W / steps.k
-    if right == FaceKind.HELD:
-        slope = dT
-    elif right == FaceKind.FLUX:
-        slope = dQ
-    else:
-        slope = dQ - G_right * dT
-
-    # A residual that does not change as the body warms: no heat can leave.
-    settled = not (left == FaceKind.FLUX and right == FaceKind.FLUX)
-    u = -r / slope if settled else zero
-
-    rise_left = zero if left == FaceKind.HELD else u
-    Q_left = u if left == FaceKind.HELD else (F_left - G_left * u if left == FaceKind.FILM else F_left)
-    rise_right, Q_right = _through(steps, rise_left, Q_left, q)
-    short = residual(rise_right, Q_right)
-    if right != FaceKind.FLUX:
-        # A temperature the far face is short of, over the resistances on the way, is heat.
-        R = (steps.D / steps.V if steps.W is None else steps.W) / steps.k
-        if left == FaceKind.FILM:
-            R = R + 1.0 / G_left
-        short = short / R if right == FaceKind.HELD else short / (1.0 + G_right * R)
-    if right == FaceKind.HELD:
-        rise_right = offset
-    return State(structure, steps, q, sink, rise_left, rise_right, Q_left, Q_right, short, F_left, F_right, settled)
-
-
-def _port(face: Face, kind: FaceKind, structure: Structure, r: Array, zero: Array) -> tuple[Array, Array]:
-    """F = r^m f, the heat put in at the surface, and G = r^m h, the heat a kelvin takes out through the film."""
-    measure = area(structure.shape, r)
-    F = zero if face.flux is None or kind == FaceKind.HELD else np.where(np.isnan(face.flux), 0.0, face.flux) * measure
-    G = zero if face.film is None or kind != FaceKind.FILM else face.film * measure
-    return F, G
-
-
-def _sink(face: Face, kind: FaceKind) -> Array | None:
-    """The temperature heat goes to, if the face has one."""
+def start(problem: Problem, u: Array) -> tuple[Array, Array, Array, Array]:
+    """T₀, Q₀ and their derivatives to u at the body's left face."""
+    kind, A, R = problem.structure.left, problem.area_left, problem.left.resistance
+    zero = np.zeros_like(u)
     if kind == FaceKind.HELD:
-        return face.held
-    return face.fluid if kind == FaceKind.FILM else None
+        over = zero if R is None else R / A
+        return -over * u, u, -over, zero + 1.0
+    if kind == FaceKind.FLUX:
+        flux = problem.left.flux
+        return u, zero if flux is None or problem.structure.solid else A * flux, zero + 1.0, zero
+    phi, slope = problem.left.leaving(u)
+    if R is None:
+        return u, -A * phi, zero + 1.0, -A * slope
+    return u + R * phi, -A * phi, 1.0 + R * slope, -A * slope
+
+
+Tangent = tuple[Array, Array]
+
+
+def across(layer: LayerSteps, sink: Array, T: Array, Q: Array, q: Array) -> tuple[Array, Array]:
+    """T₁ and Q₁ beyond a layer: ∫k dT = −(Q₀W + qD), Q₁ = Q₀ + qV."""
+    fall = q * layer.D if layer.W is None else Q * layer.W + q * layer.D
+    if isinstance(layer.k, Conductivity):
+        T0 = sink + T
+        return T + (layer.k.end(T0, -fall) - T0), Q + q * layer.V
+    return T - fall / layer.k, Q + q * layer.V
+
+
+def carried(layer: LayerSteps, sink: Array, ends: Ends, tangent: Tangent, more: Array | float = 0.0) -> Tangent:
+    """A tangent (dT, dQ) beyond a layer: k₁dT₁ = k₀dT₀ − dQ₀W − dq D, dQ₁ = dQ₀ + dq V, with dq = ``more``."""
+    dT, dQ = tangent
+    dI = more * layer.D if layer.W is None else dQ * layer.W + more * layer.D
+    if isinstance(layer.k, Conductivity):
+        return (layer.k.at(sink + ends.T0) * dT - dI) / layer.k.at(sink + ends.T1), dQ + more * layer.V
+    return dT - dI / layer.k, dQ + more * layer.V
+
+
+def beyond(layer: LayerSteps, T: Array, Q: Array) -> Array:
+    """The temperature on the far side of the joint beyond a layer."""
+    return T if layer.joint is None else T - layer.joint * Q
+
+
+def finish(problem: Problem, T: Array, Q: Array, tangents: list[tuple[Array, Array]]) -> tuple[Array, list[Array]]:
+    """The residual of the right face's law and its derivatives along tangents (dT, dQ)."""
+    kind, A, R = problem.structure.right, problem.area_right, problem.right.resistance
+    if kind == FaceKind.FLUX:
+        flux = problem.right.flux
+        return (Q if flux is None else Q + A * flux), [dQ for _, dQ in tangents]
+    Ts = T if R is None else T - R * Q / A
+    dTs = [dT if R is None else dT - R * dQ / A for dT, dQ in tangents]
+    if kind == FaceKind.HELD:
+        assert problem.right.held is not None
+        return Ts - problem.right.held, dTs
+    phi, slope = problem.right.leaving(Ts)
+    return Q - A * phi, [dQ - A * slope * dT for (_, dQ), dT in zip(tangents, dTs, strict=True)]
+
+
+@dataclass(frozen=True)
+class _Trail:
+    ends: tuple[Ends, ...]
+    residual: Array
+    slope: Array
+    tangent: Tangent
+
+
+def _march(problem: Problem, q: tuple[Array, ...], u: Array) -> _Trail:
+    T, Q, dT, dQ = start(problem, u)
+    ends: list[Ends] = []
+    for layer, source in zip(problem.layers, q, strict=True):
+        T1, Q1 = across(layer, problem.sink, T, Q, source)
+        ends.append(Ends(T, Q, T1, Q1))
+        dT, dQ = carried(layer, problem.sink, ends[-1], (dT, dQ))
+        T, Q, dT = beyond(layer, T1, Q1), Q1, beyond(layer, dT, dQ)
+    residual, [slope] = finish(problem, T, Q, [(dT, dQ)])
+    return _Trail(tuple(ends), residual, slope, (dT, dQ))
+
+
+def solve(problem: Problem, q: tuple[Array, ...], guess: Array | None = None) -> State:
+    """The steady state for sources q [W/m³], one array a layer. ``guess`` is an unknown to begin from."""
+    zero = np.zeros_like(problem.sink)
+    if not problem.structure.settles:
+        trail = _march(problem, q, zero)
+        return State(problem, q, zero, trail.ends, zero, zero)
+    if problem.linear:
+        trail = _march(problem, q, zero)
+        u = -trail.residual / trail.slope
+    else:
+        u = _root(problem, q, zero if guess is None else guess)
+    trail = _march(problem, q, u)
+    ends = trail.ends
+    if problem.structure.right == FaceKind.HELD:  # the face is where it is held, not a rounding away
+        held, R = problem.right.held, problem.right.resistance
+        assert held is not None
+        last = ends[-1]
+        exact = held if R is None else held + R * last.Q1 / problem.area_right
+        ends = (*ends[:-1], Ends(last.T0, last.Q0, exact, last.Q1))
+    elif problem.structure.right == FaceKind.FILM:
+        ends = (*ends[:-1], _by_its_film(problem, ends[-1]))
+    return State(problem, q, u, ends, trail.slope, _as_heat(problem, trail))
+
+
+def _by_its_film(problem: Problem, last: Ends) -> Ends:
+    """The right end by its film's law where the body resists more than the film: the march's rise is then a small difference."""
+    side, A = problem.right, problem.area_right
+    assert side.film is not None
+    assert side.fluid is not None
+    flux = 0.0 if side.flux is None else A * side.flux
+    T = side.fluid + (last.Q1 + flux) / (A * side.film)
+    if side.resistance is not None:
+        T = T + side.resistance * last.Q1 / A
+    R = problem.layers[-1].D / (problem.layers[-1].V * _k_of(problem.layers[-1], problem.sink))
+    return Ends(last.T0, last.Q0, np.where(A * side.film * R > 1.0, T, last.T1), last.Q1)
+
+
+def _root(problem: Problem, q: tuple[Array, ...], u: Array) -> Array:
+    """Newton's method inside a bracket that closes; bisection (in kelvin, by the geometric mean) where it is slow."""
+    u = u.copy()
+    kind = problem.structure.left
+    rising = (kind == FaceKind.HELD) != (problem.structure.right == FaceKind.HELD)
+    sign = 1.0 if rising else -1.0
+    of_heat = kind == FaceKind.HELD
+    coldest = np.full_like(u, -np.inf) if of_heat else -(problem.sink + KELVIN)
+    low, high = coldest.copy(), np.full_like(u, np.inf)
+    before = np.full_like(u, np.inf)
+    rows, part, sources = np.arange(len(u)), problem, q
+    for _ in range(MOST_STEPS):
+        trail = _march(part, sources, u[rows])
+        g, slope, here = sign * trail.residual, np.abs(trail.slope), u[rows]
+        low[rows] = np.where(g < 0.0, np.maximum(low[rows], here), low[rows])
+        high[rows] = np.where(g > 0.0, np.minimum(high[rows], here), high[rows])
+        step = -g / slope
+        new = here + step
+        lo, hi = low[rows], high[rows]
+        middle = _middle(lo, hi, coldest[rows], of_heat)
+        slow = (np.abs(g) > 0.5 * np.abs(before[rows])) & np.isfinite(middle)
+        outside = ~((new > lo) & (new < hi)) & np.isfinite(middle)
+        settled = np.abs(step) <= 1e-8 * np.abs(here) + 2e-13 * (0.0 if of_heat else np.abs(part.sink) + KELVIN)
+        settled |= (g == 0.0) | ~np.isfinite(g)
+        new = np.where(settled, np.where(np.isfinite(step), here + step, here), np.where(slow | outside, middle, new))
+        before[rows] = np.abs(g)
+        u[rows] = new
+        if settled.all():
+            break
+        if settled.any():
+            keep = np.flatnonzero(~settled)
+            rows, part, sources = rows[keep], part.take(keep), tuple(s[keep] for s in sources)
+    return u
+
+
+def _middle(low: Array, high: Array, coldest: Array, of_heat: bool) -> Array:
+    """A point between the ends of a bracket; NaN or infinite while it is open."""
+    if of_heat:
+        return (low + high) / 2.0
+    # Rises span many decades: halve the logarithm of the height above the coldest possible.
+    floor = 1e-3
+    lo, hi = np.maximum(low - coldest, floor), np.maximum(high - coldest, floor)
+    return np.where(np.isfinite(high), coldest + np.sqrt(lo * hi), np.nan)
+
+
+def _as_heat(problem: Problem, trail: _Trail) -> Array:
+    """The residual as heat: a temperature the far face is short of, over the resistances on the way."""
+    kind = problem.structure.right
+    if kind == FaceKind.FLUX:
+        return trail.residual
+    dT, dQ = trail.tangent
+    R = np.where(dQ != 0.0, -dT / np.where(dQ != 0.0, dQ, 1.0), np.inf)
+    body = np.zeros_like(problem.sink)
+    for layer in problem.layers:
+        body = body + (layer.D / layer.V if layer.W is None else layer.W) / _k_of(layer, problem.sink)
+    R = np.where(np.isfinite(R), R, body)
+    if kind == FaceKind.HELD:
+        return trail.residual / R
+    G = np.abs((trail.slope - dQ) / np.where(dT != 0.0, dT, 1.0))
+    return trail.residual / (1.0 + G * R)
+
+
+def _k_of(layer: LayerSteps, T: Array) -> Array:
+    return layer.k.at(T) if isinstance(layer.k, Conductivity) else layer.k

@@ -2,7 +2,7 @@
 
 A place is a distance s from the left face of a wall (m = 0) or a radius r of a cylinder (m = 1) or sphere (m = 2), in
 metres. Heat is carried as Q = r^m q″: heat per unit of wall area, per 2π metres of cylinder, per 4π of sphere, so that one
-balance, dQ/dr = r^m q, serves all three. Every function is elementwise over arrays of cases and holds for either sign of d.
+balance, dQ/dr = r^m q, serves all three. Every function is elementwise over arrays of cases, d ≥ 0.
 """
 
 from __future__ import annotations

@@ -4,120 +4,21 @@ from __future__ import annotations
 
 from collections.abc import Callable, Iterable
 from dataclasses import dataclass
-from enum import IntEnum
-from functools import cached_property
 
 import numpy as np
 
 from ingle import field
-from ingle.allowable import Allowable, allowable
 from ingle.cases import Cases, Structure, decode, structure_codes
-from ingle.march import State, Steps, layer_steps, solve
 from ingle.shapes import Array
+from ingle.solution import Solution, Status
 
 # A block's arrays stay in the processor's cache; measured five times quicker than one pass over 200,000 cases.
 BLOCK = 8192
-ABSOLUTE_ZERO = -273.15
-
-
-class Status(IntEnum):
-    """Why a case has no answer."""
-
-    SOLVED = 0
-    NO_OUTLET = 1  # no face lets heat out, so there is no steady state
-    BELOW_ABSOLUTE_ZERO = 2
-    OVERFLOW = 3  # beyond the range of floating-point numbers
-
-
-class Solution:
-    """The solved cases of one structure; each quantity is worked out when first asked for. Arrays, one case an element."""
-
-    def __init__(self, cases: Cases, structure: Structure) -> None:
-        self.cases, self.structure = cases, structure
-
-    @cached_property
-    def steps(self) -> Steps:
-        """Integrals over the layers."""
-        return layer_steps(self.cases, self.structure)
-
-    @cached_property
-    def state(self) -> State:
-        """The march's result at the cases' own sources."""
-        return solve(self.cases, self.structure, self.steps, self.cases.layers[0].generation)
-
-    @cached_property
-    def extremes(self) -> field.Extremes:
-        """Peak, its place, and the lowest temperature."""
-        return field.extremes(self.state)
-
-    @cached_property
-    def status(self) -> np.ndarray:
-        """A ``Status`` for each case."""
-        if not self.state.settled:
-            return np.full(len(self.cases), Status.NO_OUTLET, dtype=np.int8)
-        ends = self.extremes
-        cold = self.state.sink + ends.lowest < ABSOLUTE_ZERO
-        finite = np.isfinite(ends.peak) & np.isfinite(ends.lowest) & np.isfinite(self.state.Q_left)
-        finite &= np.isfinite(self.state.Q_right)
-        return np.where(~finite, Status.OVERFLOW, np.where(cold, Status.BELOW_ABSOLUTE_ZERO, Status.SOLVED)).astype(np.int8)
-
-    @cached_property
-    def allowable(self) -> Allowable:
-        """The source at which the first limit is reached."""
-        if not self.state.settled:
-            none = np.zeros(len(self.cases), dtype=np.int8)
-            return Allowable(np.full(len(self.cases), np.nan), none, none)
-        return allowable(self.cases, self.structure, self.steps)
-
-    @cached_property
-    def rooms(self) -> Array:
-        """Kelvin left before each limit, by its number less 1: peak, left face, right face; infinite where there is none."""
-        state, cases = self.state, self.cases
-        rooms = np.full((3, len(cases)), np.inf)
-        for room, limit, rise in zip(
-            rooms,
-            (cases.limit, cases.left_limit, cases.right_limit),
-            (self.extremes.peak, state.rise_left, state.rise_right),
-            strict=True,
-        ):
-            if limit is not None:
-                room[:] = np.where(np.isnan(limit), np.inf, (limit - state.sink) - rise)
-        return rooms
-
-    @cached_property
-    def governs(self) -> np.ndarray:
-        """The limit that the source would reach first; where no source can be allowed, the one now nearest or most passed."""
-        nearest = np.argmin(self.rooms, axis=0) + 1
-        has_limit = np.isfinite(self.rooms).any(axis=0)
-        return np.where(self.allowable.lacking == 0, self.allowable.governs, np.where(has_limit, nearest, 0))
-
-    @cached_property
-    def headroom(self) -> Array:
-        """Kelvin left before the governing limit, negative where it is passed; NaN where there is no limit."""
-        room = np.choose(np.maximum(self.governs - 1, 0), self.rooms)
-        return np.where(self.governs > 0, room, np.nan)
-
-    @cached_property
-    def probe(self) -> Array:
-        """Temperature at ``cases.probe`` [°C]; NaN outside the body or where there is no probe."""
-        if self.cases.probe is None:
-            return np.full(len(self.cases), np.nan)
-        return self.at(self.cases.probe)
-
-    def at(self, place: Array) -> Array:
-        """Temperature [°C] at a place: from the left face of a wall, else a radius. NaN outside the body."""
-        s = place - field.origin(self.state)
-        d = self.steps.d
-        # A place typed as the body's own size may miss it by rounding in the unit.
-        slack = 1e-9 * (d + np.abs(place))
-        inside = (s >= -slack) & (s <= d + slack)
-        s = np.where(inside, np.clip(s, 0.0, d), 0.0)
-        return np.where(inside, self.state.sink + field.rise_at(self.state, s), np.nan)
-
 
 QUANTITIES: dict[str, Callable[[Solution], Array]] = {
     "peak": lambda s: s.state.sink + s.extremes.peak,
-    "peak_place": lambda s: field.origin(s.state) + s.extremes.place,
+    "peak_place": lambda s: s.extremes.place,
+    "peak_layer": lambda s: s.extremes.layer,
     "left_face": lambda s: s.state.sink + s.state.rise_left,
     "right_face": lambda s: s.state.sink + s.state.rise_right,
     "mean": lambda s: s.state.sink + field.mean_rise(s.state),
@@ -130,12 +31,33 @@ QUANTITIES: dict[str, Callable[[Solution], Array]] = {
     "left_share": lambda s: field.left_share(s.state),
     "balance": lambda s: field.balance(s.state),
     "headroom": lambda s: s.headroom,
-    "allowable_generation": lambda s: s.allowable.generation,
+    "allowable_multiple": lambda s: s.allowable.multiple,
+    "allowable_generation": lambda s: s.allowable.multiple * s.pattern[0],
     "governs": lambda s: s.governs.astype(np.float64),
     "least_room": lambda s: np.min(s.rooms, axis=0),
+    "worst_limit": lambda s: np.argmin(s.rooms, axis=0) + 1.0,
+    "cold_broken": lambda s: s.cold_broken.astype(np.float64),
     "first_broken": lambda s: np.where(s.allowable.lacking == 2, s.allowable.governs, 0).astype(np.float64),
     "lacking": lambda s: s.allowable.lacking.astype(np.float64),
 }
+
+# Of layer n, asked as "layer_peak 2"; "joint_left 1" and "joint_right 1" are the sides of the joint beyond layer n.
+LAYER_QUANTITIES: dict[str, Callable[[Solution, int], Array]] = {
+    "layer_peak": lambda s, n: s.state.sink + s.extremes.by_layer[n - 1],
+    "layer_low": lambda s, n: s.state.sink + s.extremes.lows[n - 1],
+    "layer_mean": lambda s, n: s.state.sink + field.layer_mean(s.state, n - 1),
+    "joint_left": lambda s, n: s.state.sink + s.state.ends[n - 1].T1,
+    "joint_right": lambda s, n: s.state.sink + s.state.ends[n].T0,
+}
+
+
+def quantity(name: str) -> Callable[[Solution], Array]:
+    """The quantity of that name; KeyError if there is none."""
+    base, _, number = name.partition(" ")
+    if not number:
+        return QUANTITIES[name]
+    of_layer, n = LAYER_QUANTITIES[base], int(number)
+    return lambda solution: of_layer(solution, n)
 
 
 @dataclass(frozen=True)
@@ -159,7 +81,7 @@ def steady(cases: Cases, wanted: Iterable[str]) -> Answers:
     """
     wanted = tuple(wanted)
     for name in wanted:
-        QUANTITIES[name]
+        quantity(name)
     n = len(cases)
     if n <= BLOCK:
         return _block(cases, wanted)
@@ -194,28 +116,47 @@ def _group(cases: Cases, structure: Structure, wanted: tuple[str, ...]) -> Answe
     solution = Solution(cases, structure)
     status = solution.status
     failed = status != Status.SOLVED
-    values = {name: QUANTITIES[name](solution) for name in wanted}
+    values = {name: quantity(name)(solution) for name in wanted}
     if failed.any():
         values = {name: np.where(failed, np.nan, value) for name, value in values.items()}
     return Answers(values, status)
 
 
 def profile(cases: Cases, points: int) -> tuple[Array, Array, np.ndarray]:
-    """Places [m] and temperatures [°C] at evenly spread ``points`` (2 or more) of each case: arrays of n × points.
+    """Places [m] and temperatures [°C] at ``points`` of each case: arrays of n × points.
 
-    The third array is each case's ``Status``; its row is NaN where that is not SOLVED.
+    Each layer has its two ends, so that a joint's place appears twice, and the rest are shared out by thickness (the first
+    case's), evenly spread within a layer. ``points`` is at least twice the layers (ValueError). The third array is each
+    case's ``Status``; its row is NaN where that is not SOLVED.
     """
-    n = len(cases)
-    share = np.arange(points) / (points - 1.0)
-    rows = np.repeat(np.arange(n), points)
-    each = cases.take(rows)
-    d = cases.layers[0].thickness
-    inner = np.zeros(n) if cases.inner is None else np.where(np.equal(cases.shape, 0), 0.0, cases.inner)
-    place = inner[:, None] + d[:, None] * share
-    place[:, -1] = inner + d
-    answer = steady(
-        Cases(each.shape, each.layers, each.left, each.right, each.inner, probe=place.reshape(-1)),
-        ("probe_temperature",),
-    )
-    T = answer.values["probe_temperature"].reshape(n, points)
-    return np.where(np.isnan(T), np.nan, place), T, answer.status[::points]
+    n, counts = len(cases), _points_by_layer(cases, points)
+    place, T, status = np.full((n, points), np.nan), np.full((n, points), np.nan), np.empty(n, np.int8)
+    codes = structure_codes(cases)
+    with np.errstate(all="ignore"):
+        groups = [(codes, np.arange(n))] if isinstance(codes, Structure) else [
+            (decode(int(code)), np.flatnonzero(codes == code)) for code in np.unique(codes)
+        ]  # fmt: skip
+        for structure, rows in groups:
+            solution = Solution(cases.take(rows), structure)
+            status[rows] = solution.status
+            solved, column = solution.status == Status.SOLVED, 0
+            for number, (layer, count) in enumerate(zip(solution.problem.layers, counts, strict=True)):
+                s = np.linspace(0.0, 1.0, count)[:, None] * layer.d
+                rise = field.layer_rise(solution.state, number, s)
+                rise[0], rise[-1] = solution.state.ends[number].T0, solution.state.ends[number].T1
+                here = slice(column, column + count)
+                place[rows, here] = np.where(solved[:, None], (layer.a + s).T, np.nan)
+                T[rows, here] = np.where(solved[:, None], (solution.state.sink + rise).T, np.nan)
+                column += count
+    return place, T, status
+
+
+def _points_by_layer(cases: Cases, points: int) -> list[int]:
+    thickness = np.array([layer.thickness[0] for layer in cases.layers])
+    if points < 2 * len(thickness):
+        raise ValueError(f"a profile through {len(thickness)} layers needs at least {2 * len(thickness)} points")
+    # Ends first; each further point goes to the layer whose points are then furthest apart.
+    counts = np.full(len(thickness), 2)
+    for _ in range(points - 2 * len(thickness)):
+        counts[np.argmax(thickness / (counts - 1))] += 1
+    return counts.tolist()

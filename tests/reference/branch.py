@@ -26,6 +26,11 @@ def _between(a: State, b: State, part: float) -> tuple[float, float, float]:
     return a.size + part * (b.size - a.size), a.rest + part * (b.rest - a.rest), a.drive + part * (b.drive - a.drive)
 
 
+def too_far(grid: Grid, moved: float, found: State) -> bool:
+    """Whether a step is so long that it may have passed over a turn that a text table makes."""
+    return moved > grid.stride and moved > 0.03 * float(np.max(np.abs(found.u)))
+
+
 def follow(grid: Grid, start: State, size: float, rest: float, drive: float) -> State:
     """The state at other factors, continued from `start` by steps small enough to stay on its branch."""
     end = replace(start, size=size, rest=rest, drive=drive)
@@ -46,16 +51,51 @@ def follow(grid: Grid, start: State, size: float, rest: float, drive: float) -> 
             found, _ = grid.newton(guess)
             moved = float(np.max(np.abs(found.u - state.u)))
             missed = float(np.max(np.abs(found.u - guess.u)))
-            if missed > 0.35 * moved + 1e-9 or not grid.stable(found):
+            if missed > 0.35 * moved + 1e-9 or too_far(grid, moved, found) or not grid.stable(found):
                 raise StuckError
         except StuckError:
             step = (aim - done) / 3.0
             if step < LEAST_STEP:
+                if rest == start.rest and drive == start.drive:
+                    return onward(grid, state, size)
                 raise
             continue
         before, state, last, done = state, found, done, aim
         step *= 1.0 if missed > 0.15 * moved else 2.5
     return state
+
+
+def onward(grid: Grid, state: State, size: float) -> State:
+    """The state at a greater size, reached by the temperature of the fastest node; no further than a turn."""
+    _, tangent = grid.newton(state)
+    pin = int(np.argmax(np.abs(tangent[:-1])))
+    sign = 1.0 if tangent[pin] > 0 else -1.0
+    step = 0.01 * max(float(np.max(np.abs(state.u))), 1e-6)
+    for _ in range(2000):
+        try:
+            found, slope = grid.newton(state, pin, float(state.u[pin]) + sign * min(step, grid.stride))
+            if sign * slope[-1] <= 0.0 and found.size < size:
+                # the turn may lie beyond the size asked for
+                if step < 1e-6 * max(float(np.max(np.abs(state.u))), 1e-6):
+                    raise StuckError
+                step /= 4.0
+                continue
+        except StuckError:
+            step /= 4.0
+            if step < 1e-7 * max(float(np.max(np.abs(state.u))), 1e-6):
+                raise
+            continue
+        if found.size >= size:
+            part = (size - state.size) / (found.size - state.size)
+            squares = state.squares + part * (found.squares - state.squares)
+            guess = replace(state, u=state.u + part * (found.u - state.u), squares=squares, size=size)
+            there, _ = grid.newton(guess)
+            if not grid.stable(there):
+                raise StuckError
+            return there
+        state = found
+        step *= 1.5
+    raise StuckError
 
 
 def onto(state: State, coarse: Grid, fine: Grid) -> State:
@@ -110,7 +150,7 @@ def place_of(grid: Grid, span: Span, tick: float) -> float:
         return start if part <= 0.0 else end
     low = min(int(tick), cells - 1)
     ratio = np.array([part])
-    trial = grid._places(start, end - start, cells)[low : low + 2]  # noqa: SLF001
+    trial = grid._places(start, end - start, cells)[low : low + 2]
     if model.shape == BAR:
         return float((end - start) * np.sin(0.5 * np.pi * ratio[0]) ** 2)
     if model.shape == 0 or model.inner + start == 0.0:
@@ -237,7 +277,7 @@ class Search:
                 found, tangent_new = grid.newton(guess)
                 moved = float(np.max(np.abs(found.u - state.u)))
                 missed = float(np.max(np.abs(found.u - guess.u)))
-                if missed > 0.35 * moved + 1e-9 or not grid.stable(found):
+                if missed > 0.35 * moved + 1e-9 or too_far(grid, moved, found) or not grid.stable(found):
                     raise StuckError
             except StuckError:
                 step /= 3.0
@@ -247,7 +287,13 @@ class Search:
             names = self.over(grid, found)
             if names:
                 rates = np.abs(tangent_new[:-1])
-                return self._crossing(grid, int(np.argmax(rates)), state, found, names)
+                try:
+                    return self._crossing(grid, int(np.argmax(rates)), state, found, names)
+                except StuckError:
+                    step /= 3.0
+                    if step < 1e-9 * found.size:
+                        raise
+                    continue
             if float(np.max(np.abs(found.u))) > FAR or found.size > 1e60:
                 return Reached("", found, 0)
             before, state, tangent, last_step = state, found, tangent_new, step
@@ -258,7 +304,7 @@ class Search:
         _, tangent = grid.newton(state)
         pin = int(np.argmax(np.abs(tangent[:-1])))
         sign = 1.0 if tangent[pin] > 0 else -1.0
-        step = 0.02 * max(float(np.max(np.abs(state.u))), 1e-3)
+        step = min(0.02 * max(float(np.max(np.abs(state.u))), 1e-3), grid.stride)
         while True:
             p = float(state.u[pin]) + sign * step
             try:
@@ -266,13 +312,19 @@ class Search:
             except StuckError:
                 step /= 4.0
                 if step < 1e-9 * max(float(np.max(np.abs(state.u))), 1e-6):
-                    return Reached("runaway", state, pin)
+                    raise
                 continue
             turned = sign * slope[-1] <= 0.0
             names = self.over(grid, found)
             if names:
-                got = self._crossing(grid, pin, state, found, names)
-                _, slope = grid.newton(got.state, pin, float(got.state.u[pin]))
+                try:
+                    got = self._crossing(grid, pin, state, found, names)
+                    _, slope = grid.newton(got.state, pin, float(got.state.u[pin]))
+                except StuckError:
+                    step /= 4.0
+                    if step < 1e-9 * max(float(np.max(np.abs(state.u))), 1e-6):
+                        raise
+                    continue
                 if sign * slope[-1] > 0.0:
                     return got
                 turned = True

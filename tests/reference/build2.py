@@ -152,7 +152,7 @@ def _layers(cells: Cells) -> int:
     return count
 
 
-def _sizes(cells: Cells, shape: int, count: int) -> tuple[float, list[float]]:
+def _sizes(cells: Cells, count: int) -> tuple[float, list[float]]:
     """Bore and the layers' thicknesses."""
     bores = [name for name in ("inner radius", "inner diameter") if cells.has(name)]
     round_names = [name for name in ("radius", "diameter") if cells.has(name)]
@@ -347,7 +347,7 @@ def build(cells: Cells) -> Model:
     if shape != BAR and any(name in SIDE for name in row):
         cells.errors.append(WRONG)
     section, perimeter = _bar(cells) if shape == BAR else (1.0, 0.0)
-    bore, sizes = (0.0, [cells.number("length", 1.0)]) if shape == BAR else _sizes(cells, shape, count)
+    bore, sizes = (0.0, [cells.number("length", 1.0)]) if shape == BAR else _sizes(cells, count)
     left, right = _skin(cells, "left"), _skin(cells, "right")
     side = _skin(cells, "side") if shape == BAR else Skin()
     if shape in (CYLINDER, SPHERE) and bore == 0.0 and any(name.startswith("left ") for name in row):

@@ -20,7 +20,7 @@ from .solution import NothingError, RunawayError, Solution
 Inputs = dict[str, Value]
 COLDEST, HOTTEST = 20.0, 4000.0
 LEAST_PART = 0.15  # conductivities and resistivities keep this part of their base up to the highest limit
-RUNAWAY_SHARE = 0.12
+RUNAWAY_SHARE = 0.13
 
 
 class DrawnBadlyError(Exception):
@@ -117,7 +117,7 @@ class Draw:
         way = rng.choice((0, 1, 2))
         out.update(ways[way])
         self.section = (across * other, across * other, math.pi * across**2 / 4)[way]
-        perimeter = (float(out.get("perimeter", 0.0)), 2 * (across + other), math.pi * across)[way]
+        perimeter = (float(str(out.get("perimeter", 0.0))), 2 * (across + other), math.pi * across)[way]
         if not self.chance(0.8):
             return
         film = self.conductivity * self.section / (perimeter * self.size**2) * spread(rng, 0.01, 300.0)
@@ -258,12 +258,17 @@ class Draw:
 
     def sized(self) -> None:
         rng, model = self.rng, self.model()
+        coldest = min(model.sinks)
+        if any(one.law.at(coldest) < 0.1 * one.law.base for _, one in model.sources if not one.has_table):
+            raise DrawnBadlyError  # a source that cools, or a resistivity that is none, in the cold
         solution = Solution(model, rough=True)
         limits = {} if self.runaway else {"limit": max(model.sinks) + self.rise}
         name, scale, _ = solution.end(solution.everything, limits)
         if name == "limit" and not self.runaway:
             part = 1.0
         elif name == "runaway":
+            if not self.reasonable(min(solution.end_peak, 1e5), min(model.sinks)):
+                raise DrawnBadlyError
             part = rng.uniform(1.03, 3.0) if self.runaway else rng.uniform(0.05, 0.95)
         else:
             raise DrawnBadlyError
@@ -307,8 +312,11 @@ class Draw:
         except RunawayError as error:
             if not self.runaway:
                 raise DrawnBadlyError from error
+            if not self.reasonable(max(model.sinks), min(model.sinks)):
+                raise DrawnBadlyError from error
             if self.chance(0.6):
-                self.inputs["limit"] = max(model.sinks) + self.rise * spread(rng, 0.05, 100.0)
+                far = rng.choice(((0.05, 1.0), (3.0, 300.0)))
+                self.inputs["limit"] = max(model.sinks) + self.rise * spread(rng, *far)
         if self.chance(0.4):
             self.inputs["probe"] = model.inner + model.thickness * rng.uniform(0.002, 0.998)
 
@@ -333,4 +341,3 @@ def legal(rng: random.Random, shapes: Sequence[str], kinds: Sequence[str]) -> In
             continue
         return draw.inputs
     raise RuntimeError
-

@@ -10,6 +10,7 @@ from __future__ import annotations
 
 import math
 from dataclasses import dataclass
+from itertools import pairwise
 
 import numpy as np
 from numpy.typing import NDArray
@@ -100,6 +101,9 @@ class Grid:
         self.n = count + 1
         self.edges = np.array(links)
         self.linear = [i for i, link in enumerate(links) if not math.isnan(link)]
+        tables = [one.source.law.table for one in self.spans if one.source is not None and one.source.law.table]
+        gaps = [b[0] - a[0] for table in tables for a, b in pairwise(table)]
+        self.stride = 0.5 * min(gaps) if gaps else math.inf  # longest step along the branch that misses no turn
         self.electric = [span for span in self.spans if span.electric >= 0]
         self.side = np.zeros(self.n)
         if model.shape == BAR and model.side.cools:
@@ -176,8 +180,8 @@ class Grid:
             return None
         f = span.heat.value(state.u[span.first : span.last + 1])
         if span.electric < 0:
-            return self._factor(span, state) * span.source.size * f
-        return state.squares[span.electric] * span.source.ac * span.source.fill * f
+            return f * (self._factor(span, state) * span.source.size)
+        return f * (float(state.squares[span.electric]) * span.source.ac * span.source.fill)
 
     def _contact_heat(self, skin: Skin, state: State) -> float:
         return skin.contact * self.model.section**2 * float(state.squares[0]) if skin.contact else 0.0
@@ -268,6 +272,7 @@ class Grid:
             by_size[j] = -1.0 if span.group and source.size else 0.0
         return residual, by_u, by_own, by_size
 
+    @np.errstate(all="ignore")  # what is not finite is refused below
     def step(self, state: State, pin: int | None, target: float) -> tuple[Array, Array, float, Array]:
         """Newton's step (du, dsquares, dsize) and the tangent du/dp or du/dsize."""
         residual, (lower, diagonal, upper), by_square, by_size, _, _ = self._system(state)
@@ -315,10 +320,10 @@ class Grid:
             matrix[count, count] = row @ per_size + pin_size
             known[count, 0] = -pin_residual - row @ base
             known[count, 1] = -row @ per_pin
-        found = np.zeros((wide, 2))
+        found: Array = np.zeros((wide, 2))
         if wide:
             try:
-                found = np.linalg.solve(matrix, known)
+                found[:] = np.linalg.solve(matrix, known)
             except np.linalg.LinAlgError as error:
                 raise StuckError from error
         size_step = float(found[count, 0]) if pinned else 0.0
@@ -329,6 +334,7 @@ class Grid:
             tangent = np.append(per_size + per_square @ found[:count, 1], 1.0)
         return du, found[:count, 0], size_step, tangent
 
+    @np.errstate(all="ignore")
     def stable(self, state: State) -> bool:
         """Whether the state is the one that heating from cold leads to: no turn has been passed."""
         _, (lower, diagonal, upper), by_square, _, _, _ = self._system(state)

@@ -2,6 +2,8 @@
 
 from __future__ import annotations
 
+from .choices2 import WIDER
+
 CHOICES: tuple[tuple[str, str], ...] = (
     (
         "Several things wrong in one row: an error cell first, then a bad heading, a heading out of scope, #VALUE!, "
@@ -110,12 +112,13 @@ CHOICES: tuple[tuple[str, str], ...] = (
     ),
     ("Where a body is at one temperature the peak's place is its left face.", "where (from the left face, or the radius)"),
     (
-        "In `conductivity` and `generation` a text with a `:` is a text table, out of scope (#N/A); any other text is #VALUE!.",
+        "In `conductivity`, `generation` and `resistivity` a text with a `:` is a text table; any other text is #VALUE!.",
         "a number or a text table; A number stored as text is `#VALUE!`",
     ),
     ("BTU is the international table one, 1055.05585262 J; lb is the avoirdupois pound.", "then pint reads it"),
     (
-        "A heading with a layer number beyond 1, filled in, is out of scope; unnumbered kinds take no number.",
+        "A heading with a layer number beyond 4, filled in, is out of scope; unnumbered kinds take no number.",
         "A number ending a name is a layer",
     ),
+    *WIDER,
 )

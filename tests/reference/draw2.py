@@ -34,7 +34,7 @@ SPELLINGS: dict[str, tuple[str, ...]] = {
 }
 KIND_SETS = (
     *(("generation",), ("generation",), ("specific generation",), ("power",), ("line power", "generation")),
-    *(("current",), ("current",), ("voltage", "generation"), ("current density",), ("current", "voltage")),
+    *(("current",), ("current",), ("voltage",), ("voltage", "generation"), ("current density",), ("current", "voltage")),
     *(("generation", "current"), ("generation", "power", "current", "voltage"), ("current", "current density", "power")),
 )
 

@@ -92,6 +92,10 @@ def tolerances(answers: str | Sequence[str], headings: Sequence[str], rows: Sequ
     temperature; the share of heats that cancel; which of
     two limits is reached first at the same source). Everything rests on 1e-6 of the row's temperature scale, of its
     largest heat, and of its thickness.
+
+    In the wider scope three grids tell what is left of their errors; ten times that is added to the same 1e-6. An
+    allowable's error is 1e-6 of it, and what 1e-6 of the temperature scale makes of it; near a turn of the branch that
+    is much. Infinite too: which layer is hottest, or which limit comes first, where two are equal but for rounding.
     """
     asks = wanted(answers)
     columns = [h.column(heading) for heading in headings]

@@ -47,9 +47,12 @@ class Solution:
     def __init__(self, model: Model, probe: float | None = None, rough: bool = False) -> None:
         self.model, self.probe, self.rough = model, probe, rough
         self.zero = model.sinks[0]
+        self.end_peak = self.zero  # highest temperature at the end last searched for
         self.everything = frozenset(i for i, _ in model.sources)
         tables = any(source.law.table for _, source in model.sources)
         self.cells = 64 if tables or model.shape == BAR else 32
+        if rough:
+            self.cells //= 2
 
     def grid(self, cells: int, group: frozenset[int]) -> Grid:
         return Grid(self.model, cells, self.zero, group)
@@ -58,18 +61,29 @@ class Solution:
 
     def _still(self, grid: Grid) -> State:
         try:
-            return follow(grid, cold(grid), 0.0, 0.0, 1.0)
+            state = follow(grid, cold(grid), 0.0, 0.0, 1.0)
         except StuckError as stuck:
             raise NothingError from stuck
+        if self._backward(grid, state):
+            raise NothingError
+        return state
+
+    @staticmethod
+    def _backward(grid: Grid, state: State) -> bool:
+        """Whether a resistivity is not positive somewhere."""
+        laws = [(span.heat, span) for span in grid.electric if span.heat is not None]
+        return any(bool(np.any(law.value(nodes(state.u, span)) <= 0.0)) for law, span in laws)
 
     @cached_property
     def _present(self) -> tuple[list[tuple[Grid, State]], dict[str, Found]]:
         first = self.grid(self.cells, self.everything)
         still = self._still(first)
         try:
-            state = follow(first, still, 1.0, 1.0, 1.0)
+            state = follow(first, still, 1.0, 0.0, 1.0)
         except StuckError as stuck:
             raise RunawayError from stuck
+        if self._backward(first, state):
+            raise NothingError
         pairs = [(first, state)]
         if self.rough:
             return pairs, {name: Found(value, 0.0) for name, value in self._measure(first, state).items()}
@@ -131,8 +145,8 @@ class Solution:
         model, u = self.model, state.u
         skin, node = (model.left, grid.body[0]) if left else (model.right, grid.body[1])
         if not skin.cools and skin.flux_in == 0.0:
-            return 0.0 - grid._contact_heat(skin, state)  # noqa: SLF001
-        contact = grid._contact_heat(skin, state)  # noqa: SLF001
+            return 0.0 - grid._contact_heat(skin, state)
+        contact = grid._contact_heat(skin, state)
         outer = 0 if left else grid.n - 1
         if outer != node:
             edge = 0 if left else grid.n - 2
@@ -233,6 +247,7 @@ class Solution:
         got = search.first(grid, base, scale)
         if not got.name:
             return "", Found(0.0, 0.0), 0.0
+        self.end_peak = float(np.max(got.state.u)) + self.zero
         if self.rough:
             return got.name, Found(got.state.size, 0.0), 0.0
         ends, grids = [got], [grid]

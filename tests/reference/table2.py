@@ -2,13 +2,15 @@
 
 from __future__ import annotations
 
+import math
 from collections.abc import Sequence
 from functools import lru_cache
 
 from . import headings2 as h
 from . import units
 from .build2 import Cells
-from .rows import NEEDED, WRONG, RefusedError
+from .chain import StuckError
+from .rows import IMPOSSIBLE, NEEDED, WRONG, RefusedError
 from .rows2 import Row2
 
 
@@ -53,6 +55,8 @@ def _one(row: Row2, ask: h.Asked) -> tuple[object, float]:
         value, error = row.answer(ask.name, ask.kind)
     except RefusedError as refused:
         return _no_answer(ask, refused), 0.0
+    except StuckError:  # no trustworthy number
+        return IMPOSSIBLE, math.inf
     if ask.name == "peak layer":
         value = int(value)
     if not isinstance(value, float):
@@ -74,9 +78,8 @@ def tolerances(asks: Sequence[h.Asked], columns: Sequence[h.Column], cells: Sequ
     out = []
     for ask in asks:
         value, error = _one(row, ask)
-        if isinstance(value, str) and value.startswith("#"):
-            error = 0.0
-        elif ask.name in ("peak layer", "limited by", "headroom"):
-            error = float("inf") if row.unsure(ask.name) else error
+        refused = isinstance(value, str) and value.startswith("#")
+        if not refused and ask.name in ("peak layer", "limited by", "headroom") and row.unsure(ask.name):
+            error = math.inf
         out.append(error)
     return out

@@ -4,6 +4,7 @@ from __future__ import annotations
 
 import math
 import re
+from itertools import pairwise
 
 from . import units
 
@@ -35,6 +36,6 @@ def points(text: str, unit: units.Unit) -> tuple[tuple[float, float], ...]:
         if not all(math.isfinite(one) for one in pair):
             raise TableError(piece)
         out.append(pair)
-    if len(spoken) > 1 or any(b[0] <= a[0] for a, b in zip(out, out[1:], strict=False)):
+    if len(spoken) > 1 or any(b[0] <= a[0] for a, b in pairwise(out)):
         raise TableError(text)
     return tuple(out)

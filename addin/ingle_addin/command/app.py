@@ -24,7 +24,7 @@ def run(arguments: list[str] | None = None) -> int:
     from ingle_addin.command.failure import Failure
 
     try:
-        result = app(arguments, standalone_mode=False)
+        result = app(arguments, standalone_mode=False, prog_name="ingle")
     except Failure as failure:
         print(f"ingle: {failure}", file=sys.stderr)
         return 2

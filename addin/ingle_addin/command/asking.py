@@ -2,10 +2,14 @@
 
 from __future__ import annotations
 
+import re
+
 from ingle_addin.batch import solve_calls
 from ingle_addin.cells import Cell, CellError
 from ingle_addin.command.failure import Failure
 from ingle_addin.heading_reader import read_answer
+
+_NUMBER = re.compile(r"[+-]?(\d+\.?\d*|\.\d+)([eE][+-]?\d+)?")
 
 
 def ask_case(answers: str, case: str) -> int:
@@ -13,7 +17,7 @@ def ask_case(answers: str, case: str) -> int:
     headings, values = read_case(case)
     (found,) = solve_calls("INGLE.ASK", [(((answers,),), ((*headings,),), ((*values,),))])
     (why,) = solve_calls("INGLE.WHY", [(((*headings,),), ((*values,),))])
-    asked = [text.strip() for text in answers.split(";")]
+    asked = [text.strip() for text in answers.removesuffix(";").split(";")]
     row = found.grid[0]
     width = max((len(text) for text in asked), default=0)
     for text, cell in zip(asked, row, strict=False):
@@ -32,6 +36,8 @@ def read_case(case: str) -> tuple[list[str], list[Cell]]:
     for piece in case.split(";"):
         if "=" in piece:
             heading, _, text = piece.partition("=")
+            if not heading.strip():
+                raise Failure(f"'{piece.strip()}' has no heading before '='; write 'HEADING = VALUE'")
             headings.append(heading.strip())
             texts.append(text)
         elif texts:
@@ -46,10 +52,7 @@ def read_case(case: str) -> tuple[list[str], list[Cell]]:
 def _value(text: str) -> Cell:
     if not text:
         return None
-    try:
-        return float(text)
-    except ValueError:
-        return text
+    return float(text) if _NUMBER.fullmatch(text) else text
 
 
 def shown(cell: Cell) -> str:

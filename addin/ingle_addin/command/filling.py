@@ -20,6 +20,8 @@ def fill_book(book: Path, out: Path | None, in_place: bool, strict: bool) -> int
     from ingle_addin.book import BookError, fill, summary
     from ingle_addin.functions import NAMES
 
+    if not book.name or book.is_dir():
+        raise Failure(f"{book} is a folder; name the workbook in it")
     try:
         with _progress() as progress:
             report = fill(book, out, functions=NAMES, solve=solve_calls, in_place=in_place, progress=progress)

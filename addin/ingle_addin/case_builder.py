@@ -1,0 +1,215 @@
+"""A recipe's rows as the solver's cases: sizes, conductivities, sources and faces in SI, and what does not fit together."""
+
+from __future__ import annotations
+
+from collections.abc import Callable, Mapping
+from dataclasses import dataclass
+
+import numpy as np
+from ingle import Cases, Face, Layer, Shape
+from ingle.conductivities import Conductivity, Table
+from ingle.shapes import MEASURE, Array, solid_volume, volume
+
+from ingle_addin.cells import CellError
+from ingle_addin.faults import HERE, ROW, THERE, Fault
+from ingle_addin.recipe import LayerRecipe, Recipe, base_name
+from ingle_addin.units import Kind
+
+Get = Callable[[str], Array]
+GetTable = Callable[[str], tuple[Table, Array]]
+Flag = Callable[[np.ndarray, Fault], None]
+
+_SLOPE_REFERENCE = 20.0  # °C, where the reference of a slope is blank
+
+
+@dataclass(frozen=True)
+class Built:
+    """Cases, and what turns the solver's numbers into the row's own: the layers' volumes and the row's sizes.
+
+    ``scales`` are the generation [W/m³] that one base unit of each layer's source heading makes (None: 1); ``single`` is
+    True where one layer's source scales, so that a multiple is the source itself. ``table_ends`` [°C] are the last
+    temperatures of the layers' text tables.
+    """
+
+    cases: Cases
+    volumes: tuple[Array, ...]
+    area: Array | None
+    length: Array | None
+    scales: tuple[Array | None, ...]
+    single: bool
+    scaled_layer: int
+    table_ends: Mapping[int, Array]
+
+
+class _Builder:
+    def __init__(self, recipe: Recipe, get: Get, tables: GetTable, flag: Flag) -> None:
+        self.recipe, self.get, self.tables, self.flag = recipe, get, tables, flag
+        self.table_ends: dict[int, Array] = {}
+
+    def maybe(self, slot: str) -> Array | None:
+        return self.get(slot) if slot in self.recipe.filled else None
+
+    def fault(self, mask: np.ndarray, error: CellError, sentence: str, *slots: str) -> None:
+        self.flag(mask, Fault(error, sentence, tuple(self.recipe.filled[slot].index for slot in slots)))
+
+    def length(self, slot: str) -> Array:
+        value = self.get(slot)
+        return value * 0.5 if base_name(slot).endswith("diameter") else value
+
+    def sizes(self) -> tuple[Array | None, list[Array]]:
+        """The bore and each layer's thickness."""
+        recipe = self.recipe
+        inner = self.length(recipe.inner) if recipe.inner else None
+        place = inner
+        thicknesses: list[Array] = []
+        for layer in recipe.layers:
+            d = self.length(layer.outside)
+            if base_name(layer.outside) != "thickness":
+                outside = d
+                if place is not None:
+                    d = outside - place
+                    self._check_outside(layer, d)
+                place = outside
+            else:
+                place = d if place is None else place + d
+            thicknesses.append(d)
+        return inner, thicknesses
+
+    def _check_outside(self, layer: LayerRecipe, d: Array) -> None:
+        recipe = self.recipe
+        label = recipe.label(layer.outside)
+        if layer.number == 1:
+            inner = recipe.label(recipe.inner)
+            if layer.outside in ("radius", "diameter"):
+                sentence = f"{label} in {ROW} is for a solid body, and {inner} is {HERE}; use outer {layer.outside} instead"
+                self.fault(self.get(recipe.inner) > 0.0, CellError.VALUE, sentence, recipe.inner)
+            sentence = f"{inner} in {ROW} is {HERE}, not below {label} of {THERE}; make the bore smaller than the outside"
+            self.fault(d <= 0.0, CellError.NUM, sentence, recipe.inner, layer.outside)
+        else:
+            sentence = f"{label} in {ROW} is {HERE}, not beyond layer {layer.number - 1}; layers go from the inside out"
+            self.fault(d <= 0.0, CellError.NUM, sentence, layer.outside)
+
+    def conductivity(self, layer: LayerRecipe) -> Array | Conductivity:
+        """A number, a slope or a table."""
+        slot, slope = layer.slot("conductivity"), self.maybe(layer.slot("conductivity slope"))
+        if slot in self.recipe.tabled:
+            table, self.table_ends[layer.number] = self.tables(slot)
+            return Conductivity(None, None, None, table)
+        k = self.get(slot)
+        if slope is None:
+            return k
+        reference = self.maybe(layer.slot("conductivity reference"))
+        return Conductivity(k, slope, np.full_like(k, _SLOPE_REFERENCE) if reference is None else reference, None)
+
+    def scale(self, slot: str, layer: LayerRecipe, V: Array) -> Array | None:
+        """Generation made by one base unit of a source heading; None is 1."""
+        name, shape = base_name(slot), self.recipe.shape
+        if name == "generation":
+            return None
+        if name == "specific generation":
+            return self.get(layer.slot("density"))
+        if name == "line power":
+            return 1.0 / V
+        along = {Shape.WALL: self.maybe("area"), Shape.CYLINDER: self.maybe("length"), Shape.SPHERE: None}[shape]
+        return 1.0 / (V if along is None else V * along)
+
+    def resistance(self, slot: str) -> Array | None:
+        """An area resistance, given as one or as a conductance by its unit."""
+        value = self.maybe(slot)
+        if value is None or self.recipe.filled[slot].unit.kind is not Kind.FILM:
+            return value
+        self.fault(value <= 0.0, CellError.NUM, f"{self.recipe.label(slot)} in {ROW} is {HERE}; a conductance is above 0", slot)
+        return 1.0 / value
+
+    def face(self, side: str) -> Face:
+        held, film, fluid, flux = (self.maybe(f"{side} {name}") for name in ("held", "film", "fluid", "flux in"))
+        emissivity, surroundings = self.maybe(f"{side} emissivity"), self.maybe(f"{side} surroundings")
+        resistance = self.resistance(f"{side} resistance")
+        if fluid is not None and film is None and emissivity is None and resistance is not None:
+            held, fluid = fluid, None  # with a fluid and nothing else the resistance alone is the path
+        if emissivity is not None and surroundings is None:
+            surroundings = fluid
+        return Face(held, film, None if film is None else fluid, flux, emissivity, surroundings, resistance)
+
+
+def build_cases(recipe: Recipe, get: Get, tables: GetTable, flag: Flag) -> Built:
+    """Cases of a recipe's rows.
+
+    ``get`` gives a slot's values in base units and ``tables`` its text tables; ``flag`` takes a mask of rows and their fault.
+    """
+    make = _Builder(recipe, get, tables, flag)
+    shape = recipe.shape
+    inner, thicknesses = make.sizes()
+    if inner is not None:
+        _flag_solid_left(recipe, inner, flag)
+    place = inner
+    volumes, scales, layers, patterns = [], [], [], []
+    scaled_layers = [layer.number for layer in recipe.layers if layer.source in recipe.scaled_slots]
+    single = len(scaled_layers) <= 1
+    for layer, d in zip(recipe.layers, thicknesses, strict=True):
+        if shape == Shape.WALL:
+            V = d
+        elif place is None:
+            V = solid_volume(shape, d)
+        else:
+            V = volume(shape, place, d)
+        place = d if place is None else place + d
+        V = V * MEASURE[shape]
+        blank_scaled = not scaled_layers and recipe.scaled and layer.number == 1
+        slot = layer.source or (layer.slot(recipe.scaled) if blank_scaled else "")
+        scale = make.scale(slot, layer, V) if slot else None
+        q = get(layer.source) if layer.source else np.zeros_like(d)
+        if layer.source and scale is not None:
+            q = q * scale
+        scales.append(scale)
+        volumes.append(V)
+        layers.append(Layer(d, make.conductivity(layer), q))
+        if not single:
+            patterns.append(q if layer.number in scaled_layers else np.zeros_like(d))
+        else:
+            here = layer.number == (scaled_layers[0] if scaled_layers else 1)
+            patterns.append((np.ones_like(d) if scale is None else scale) if here else np.zeros_like(d))
+    _check_probe(recipe, get, flag, inner, thicknesses)
+    left_limit = make.maybe("left limit")
+    if left_limit is not None and inner is not None:
+        left_limit = np.where(inner > 0.0, left_limit, np.nan)  # `both limit` on a body that turns out solid
+    joints = tuple(make.resistance(f"joint {number}") for number in range(1, len(layers)))
+    cases = Cases(
+        shape,
+        tuple(layers),
+        make.face("left"),
+        make.face("right"),
+        inner,
+        make.maybe("limit"),
+        left_limit,
+        make.maybe("right limit"),
+        make.maybe("probe"),
+        joints,
+        tuple(make.maybe(f"limit {layer.number}") for layer in recipe.layers),
+        tuple(patterns),
+    )
+    number = scaled_layers[0] if scaled_layers else 1
+    return Built(cases, tuple(volumes), make.maybe("area"), make.maybe("length"), tuple(scales), single, number, make.table_ends)
+
+
+def _check_probe(recipe: Recipe, get: Get, flag: Flag, inner: Array | None, thicknesses: list[Array]) -> None:
+    if "probe" not in recipe.filled:
+        return
+    total = thicknesses[0]
+    for d in thicknesses[1:]:
+        total = total + d
+    probe = get("probe")
+    from_left = probe - (inner if inner is not None else 0.0)
+    slack = 1e-9 * (total + probe)
+    where = "from the left face" if recipe.shape == Shape.WALL else "a radius"
+    sentence = f"{recipe.label('probe')} in {ROW} is {HERE}, outside the body; give a place in it, {where}"
+    outside = (from_left < -slack) | (from_left > total + slack)
+    flag(outside, Fault(CellError.NUM, sentence, (recipe.filled["probe"].index,)))
+
+
+def _flag_solid_left(recipe: Recipe, a: Array, flag: Flag) -> None:
+    """A bore of 0 is solid: then only `both` may speak of its left face."""
+    for slot, column in recipe.filled.items():
+        if slot.startswith("left ") and len(column.slots) == 1:
+            sentence = f"{column.label} in {ROW} lies on an inner face, and the bore is 0; give an inner radius or leave it blank"
+            flag(a == 0.0, Fault(CellError.VALUE, sentence))
