@@ -254,8 +254,15 @@ def _by_its_film(problem: Problem, last: Ends) -> Ends:
     T = side.fluid + (last.Q1 + flux) / (A * side.film)
     if side.resistance is not None:
         T = T + side.resistance * last.Q1 / A
-    R = problem.layers[-1].D / (problem.layers[-1].V * _k_of(problem.layers[-1], problem.sink))
-    return Ends(last.T0, last.Q0, np.where(A * side.film * R > 1.0, T, last.T1), last.Q1)
+    return Ends(last.T0, last.Q0, np.where(A * side.film * _body_resistance(problem) > 1.0, T, last.T1), last.Q1)
+
+
+def _body_resistance(problem: Problem) -> Array:
+    """Roughly what the body resists, in the measure of Q: W/k, or D/(kV) from a solid centre."""
+    R = np.zeros_like(problem.sink)
+    for layer in problem.layers:
+        R = R + (layer.D / layer.V if layer.W is None else layer.W) / _k_of(layer, problem.sink)
+    return R
 
 
 def _root(problem: Problem, q: tuple[Array, ...], u: Array) -> Array:
@@ -310,10 +317,7 @@ def _as_heat(problem: Problem, trail: _Trail) -> Array:
         return trail.residual
     dT, dQ = trail.tangent
     R = np.where(dQ != 0.0, -dT / np.where(dQ != 0.0, dQ, 1.0), np.inf)
-    body = np.zeros_like(problem.sink)
-    for layer in problem.layers:
-        body = body + (layer.D / layer.V if layer.W is None else layer.W) / _k_of(layer, problem.sink)
-    R = np.where(np.isfinite(R), R, body)
+    R = np.where(np.isfinite(R), R, _body_resistance(problem))
     if kind == FaceKind.HELD:
         return trail.residual / R
     G = np.abs((trail.slope - dQ) / np.where(dT != 0.0, dT, 1.0))
