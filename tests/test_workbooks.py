@@ -42,8 +42,9 @@ def built(tmp_path_factory: pytest.TempPathFactory) -> Path:
 
 
 @pytest.fixture(scope="module")
-def refilled(tmp_path_factory: pytest.TempPathFactory) -> tuple[Path, Report]:
-    copy = Path(shutil.copy(COMMITTED, tmp_path_factory.mktemp("refilled") / "busbars.xlsx"))
+def refilled(built: Path, tmp_path_factory: pytest.TempPathFactory) -> tuple[Path, Report]:
+    # A book just built here: the committed one's last digits may be another computer's.
+    copy = Path(shutil.copy(built, tmp_path_factory.mktemp("refilled") / "busbars.xlsx"))
     return copy, fill(copy, functions=NAMES, solve=solve_calls)
 
 
@@ -135,7 +136,7 @@ def test_filling_again_keeps_every_byte(refilled: tuple[Path, Report]) -> None:
     copy, report = refilled
     assert report.out is not None
     assert report.out.name == "busbars.filled.xlsx"
-    assert report.out.read_bytes() == copy.read_bytes() == COMMITTED.read_bytes()
+    assert report.out.read_bytes() == copy.read_bytes()
 
 
 def test_every_ingle_cell_has_a_value(values: Any, formulas: Any) -> None:
