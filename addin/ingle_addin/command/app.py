@@ -82,7 +82,7 @@ def fill(
     book: Annotated[Path, typer.Argument(help="The workbook, .xlsx or .xlsm.", show_default=False)],
     out: Annotated[Path | None, typer.Option("-o", "--out", help="Where to write; STEM.filled.xlsx if not given.")] = None,
     in_place: Annotated[bool, typer.Option("--in-place", help="Write into BOOK itself, which is kept as BOOK.bak.")] = False,
-    strict: Annotated[bool, typer.Option("--strict", help="Leave with 1 if a row has no answer.")] = False,
+    strict: Annotated[bool, typer.Option("--strict", help="Leave with 1 if an answer is missing.")] = False,
 ) -> int:
     """Compute a workbook and write every computed value into its cell; all else in the file stays as it is."""
     from ingle_addin.command.filling import fill_book

@@ -15,7 +15,7 @@ if TYPE_CHECKING:
 
 
 def fill_book(book: Path, out: Path | None, in_place: bool, strict: bool) -> int:
-    """Fill a workbook and print its summary; 1 if ``strict`` and a row has no answer."""
+    """Fill a workbook and print its summary; 1 if ``strict`` and an answer is missing."""
     from ingle_addin.batch import solve_calls
     from ingle_addin.book import BookError, fill, summary
     from ingle_addin.functions import NAMES
@@ -29,7 +29,7 @@ def fill_book(book: Path, out: Path | None, in_place: bool, strict: bool) -> int
         raise Failure(str(error)) from None
     for line in summary(report):
         print(line)
-    return 1 if strict and report.no_answers else 0
+    return 1 if strict and not report.complete else 0
 
 
 @contextmanager
