@@ -9,7 +9,7 @@ import numpy as np
 
 from ingle_addin.cells import CellError
 from ingle_addin.columns import Values, from_array, from_cells
-from ingle_addin.evaluate import Evaluation, evaluate
+from ingle_addin.evaluate import evaluate
 from ingle_addin.faults import Fault
 from ingle_addin.heading_reader import Asked, Plan, read_answer, read_headings
 from ingle_addin.tables import heading_texts
@@ -81,4 +81,4 @@ def _columns(value: Any) -> list[Values]:
     return [from_cells([value])]
 
 
-__all__ = ["Evaluation", "ask", "mismatch_of"]
+__all__ = ["ask", "mismatch_of"]

@@ -16,7 +16,8 @@ from ingle_addin.about import about
 from ingle_addin.asking import mismatch_of
 from ingle_addin.calls import Outcome
 from ingle_addin.cells import Cell, CellError, Grid
-from ingle_addin.evaluate import Evaluation, evaluate, reason
+from ingle_addin.evaluate import evaluate
+from ingle_addin.evaluation import Evaluation, reason
 from ingle_addin.faults import Fault, finished, quoted
 from ingle_addin.functions import FUNCTIONS
 from ingle_addin.heading_reader import Asked, Plan, allowable_source, read_answer, read_headings

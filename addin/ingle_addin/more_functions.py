@@ -12,7 +12,8 @@ from ingle_addin import columns
 from ingle_addin.asking import mismatch_of
 from ingle_addin.calls import Outcome
 from ingle_addin.cells import Cell, CellError, Grid
-from ingle_addin.evaluate import evaluate, reason
+from ingle_addin.evaluate import evaluate
+from ingle_addin.evaluation import reason
 from ingle_addin.faults import Fault, number_text, quoted
 from ingle_addin.heading_reader import Asked, read_answer, read_headings
 from ingle_addin.tables import heading_texts, join, to_columns
