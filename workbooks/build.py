@@ -1,6 +1,6 @@
 """Builds the workbooks people open: written anew, then filled as `ingle fill` does, so that every value is in its cell.
 
-    python workbooks/build.py [--out DIR]
+python workbooks/build.py [--out DIR]
 """
 
 from __future__ import annotations

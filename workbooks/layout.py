@@ -14,9 +14,7 @@ CAUTIONS = (
     "Estimates of steady one-dimensional conduction with even heat generation. They do not replace local codes, type tests or "
     "licensed practice."
 )
-NOT_INSTALLED = (
-    "#NAME? means that this program has no Ingle functions yet: install them, or let `ingle fill` compute the file."
-)
+NOT_INSTALLED = "#NAME? means that this program has no Ingle functions: `ingle fill` computes the file."
 INK, PALE, LINE = "#1F2A37", "#F3F5F8", "#C9D1DB"
 TYPED, ANSWER = "#FFF7DC", "#EAF2FB"
 DARK, DARK_ANSWER = "#33475B", "#1F5A8C"
@@ -112,7 +110,9 @@ ANSWERS: tuple[Column, ...] = (
     Column("left share [%]", 8, "0.0", _ASK),
     Column("# allowable source, in its own unit", 12, "#,##0.00", _if_limited("INGLE.ALLOW({headings},{values})")),
     Column("# allowable current [A]", 10.5, "#,##0",
-           '=IF(OR({# current}="",{limit}=""),"",{# current}*SQRT({# allowable source, in its own unit}/{generation}))'),
+           # The limit is reached at this current, so the resistivity there is the limit's, the highest anywhere in the body.
+           '=IF(OR({# current}="",{limit}=""),"",{# section}*SQRT({# allowable source, in its own unit}/('
+           + _RHO.replace("{# resistivity at}", "{limit}") + ")))"),
     Column("headroom [K]", 11.5, "0.0", _if_limited(_ASK)),
     Column("utilisation [%]", 10.5, "0.0", _if_limited(_ASK)),
     Column("verdict", 11, "General", _ASK),

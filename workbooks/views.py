@@ -120,7 +120,7 @@ def _facts() -> tuple[tuple[str, str, str, str], ...]:
     verdicts, peaks, rooms = case_column("verdict"), _drawn("B"), _drawn("F")
     name = f"INDEX({case_column('# candidate')}," + "{match})"
     hottest, nearest = f"MATCH(MAX({peaks}),{peaks},0)", f"MATCH(MIN({rooms}),{rooms},0)"
-    b01, half = (f"INDEX({case_column('peak')},MATCH(\"{no}\",{case_column('# no.')},0))" for no in ("B01", "B02"))
+    b01, half = (f'INDEX({case_column("peak")},MATCH("{no}",{case_column("# no.")},0))' for no in ("B01", "B02"))
     row = FIRST_ROW + 1
     q, t, k, h, fluid = (
         f"Cases!{letter(column)}{row}" for column in ("generation", "thickness", "conductivity", "both film", "both fluid")
@@ -162,7 +162,7 @@ def _drawn_table(sheet: Any, formats: Formats) -> None:
         row = _DRAWN + 1 + at
         case, here = FIRST_ROW + 1 + at, row + 1
         peak, limit, room = (f"Cases!{letter(name)}{case}" for name in ("peak", "limit", "headroom"))
-        sheet.write_formula(row, 0, f"=Cases!A{case}&\"  \"&Cases!B{case}", formats.cell("plain"))
+        sheet.write_formula(row, 0, f'=Cases!A{case}&"  "&Cases!B{case}', formats.cell("plain"))
         sheet.write_formula(row, 1, f'=IFERROR({peak},"")', number)
         sheet.write_formula(row, 2, f'=IF({limit}="",NA(),{limit})', number)
         sheet.write_formula(row, 3, f'=IF(N(E{here})>0,"",B{here})', number)

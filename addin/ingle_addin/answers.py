@@ -71,7 +71,7 @@ def ready(asked: Asked, plan: Plan, recipe: Recipe) -> Ready | Fault:
     if quantity == "why":
         return _why(recipe)
     if quantity == "verdict":
-        return Ready(("peak", "least_room", *_table_quantities(recipe)), _verdict)
+        return Ready(("peak", "least_room", *_caution_quantities(recipe)), _verdict)
     if quantity == "utilisation":
         return _utilisation(asked, plan, recipe)
     if quantity == "face":
@@ -83,6 +83,10 @@ def ready(asked: Asked, plan: Plan, recipe: Recipe) -> Ready | Fault:
         return _plain(f"layer_{quantity} {asked.layer}")
     if quantity in ("joint_left", "joint_right"):
         return _plain(f"{quantity} {asked.layer}")
+    if quantity == "film used":
+        if f"{asked.side} film law" not in recipe.filled:
+            return Fault(CellError.NA, f"{asked.label}: no law gives the film there in {ROW}; fill in '{asked.side} film law'")
+        return _plain(f"{asked.side}_film")
     if quantity == "headroom" and not recipe.limits:
         return _no_limit(plan)
     if quantity == "probe_temperature":
@@ -94,7 +98,7 @@ def ready(asked: Asked, plan: Plan, recipe: Recipe) -> Ready | Fault:
 
 def _why(recipe: Recipe) -> Ready:
     """A row's own fault; also a limit passed without any source, which leaves no allowable."""
-    tables = _table_quantities(recipe)
+    tables = _caution_quantities(recipe)
     if not recipe.limits:
         return Ready(("peak", *tables), lambda solved: (np.full(len(solved.values["peak"]), "ok", object), []))
 
@@ -105,10 +109,11 @@ def _why(recipe: Recipe) -> Ready:
     return Ready(("peak", "cold_broken", "worst_limit", "least_room", *tables), work)
 
 
-def _table_quantities(recipe: Recipe) -> list[str]:
-    """The temperatures that tell whether a layer's text table reaches far enough."""
+def _caution_quantities(recipe: Recipe) -> list[str]:
+    """What cautions need: doubts of film laws, and the temperatures that a layer's text table has to reach."""
     numbers = [layer.number for layer in recipe.layers if layer.slot("conductivity") in recipe.tabled]
-    return [f"layer_{end} {number}" for number in numbers for end in ("low", "peak")]
+    doubts = [f"{side}_doubt" for side in ("left", "right") if f"{side} film law" in recipe.filled]
+    return [*doubts, *(f"layer_{end} {number}" for number in numbers for end in ("low", "peak"))]
 
 
 def passed_limits(recipe: Recipe, values: Mapping[str, Array]) -> list[tuple[np.ndarray, Fault]]:
@@ -222,8 +227,10 @@ def _limit_slot(code: int) -> str:
 
 def _limit_faults(solved: Solved, recipe: Recipe) -> list[tuple[np.ndarray, Fault]]:
     faults = _broken_faults(solved.values["first_broken"], recipe)
-    sentence = f"no source reaches the limit in {ROW}, since that face is held below it; give a limit for the peak"
+    sentence = f"no source reaches the limit in {ROW}: that face is held, or the sources cool the body; give a limit for the peak"
     faults.append((solved.values["lacking"] == 3, Fault(CellError.NUM, sentence)))
+    sentence = f"the conductivity in {ROW} falls to zero before a limit is reached; check the slope or give a table"
+    faults.append((solved.values["lacking"] == 4, Fault(CellError.NUM, sentence)))
     return faults
 
 
@@ -248,19 +255,27 @@ def _allowable(asked: Asked, plan: Plan, recipe: Recipe) -> Ready | Fault:
         multiple, faults = solved.values["allowable_multiple"], _limit_faults(solved, recipe)
         source = multiple
         if not solved.built.single:
-            source = multiple * solved.get(slots[0])
-            nothing = Fault(CellError.NUM, f"the sources in {ROW} are all 0, so they do not say how they scale together; give them")
-            faults = [(_all_zero(solved, slots), nothing), *faults]
+            source = multiple * _first_not_zero(solved, slots)
+            faults = [_all_zero(solved, slots), *faults]
         return (own.from_base(source) if wanted == "source" else source), faults
 
     return Ready(_ALLOWED, work)
 
 
-def _all_zero(solved: Solved, slots: tuple[str, ...]) -> np.ndarray:
+def _first_not_zero(solved: Solved, slots: tuple[str, ...]) -> np.ndarray:
+    """The source by which the scaling of several is told: the first that is not 0."""
+    told = solved.get(slots[-1])
+    for slot in reversed(slots[:-1]):
+        told = np.where(solved.get(slot) != 0.0, solved.get(slot), told)
+    return told
+
+
+def _all_zero(solved: Solved, slots: tuple[str, ...]) -> tuple[np.ndarray, Fault]:
+    """Rows whose several sources are all 0, so that no ratio between them is known."""
     zero: np.ndarray = solved.get(slots[0]) == 0.0
     for slot in slots[1:]:
         zero = zero & (solved.get(slot) == 0.0)
-    return zero
+    return zero, Fault(CellError.NUM, f"the sources in {ROW} are all 0, so they do not say how they scale together; give them")
 
 
 def _governing(solved: Solved, recipe: Recipe) -> np.ndarray:
@@ -283,6 +298,7 @@ def _utilisation(asked: Asked, plan: Plan, recipe: Recipe) -> Ready | Fault:
         nothing = multiple == 0.0
         share = 100.0 * (used / np.where(nothing, np.nan, multiple))
         fault = Fault(CellError.NUM, f"the allowable source in {ROW} is 0, so none of it can be used; raise the limit")
-        return share, [*_limit_faults(solved, recipe), (nothing, fault)]
+        zeros = [] if solved.built.single else [_all_zero(solved, recipe.scaled_slots)]
+        return share, [*zeros, *_limit_faults(solved, recipe), (nothing, fault)]
 
     return Ready(_ALLOWED, work)

@@ -51,11 +51,17 @@ def _asked(given: Headings) -> list[Asked | Fault]:
 
 
 def _table(values: Sequence[Any], plan: Plan) -> tuple[list[Values], Fault | None]:
-    table = [column for value in values for column in _columns(value)]
+    try:
+        table = [column for value in values for column in _columns(value)]
+    except (TypeError, ValueError) as error:  # ragged rows, more than two dimensions
+        fault = Fault(CellError.VALUE, f"a value is no column and no block of rows ({error}); give columns of the same rows")
+        return [Values(np.zeros(1))], fault
     sizes = sorted({len(column) for column in table} - {1})
     if len(sizes) > 1:
         fault = Fault(CellError.VALUE, f"one value has {sizes[0]} rows and another {sizes[1]}; give columns of the same rows")
         return [column.rows(0, 1) for column in table], fault
+    if any(len(column) == 0 for column in table):
+        return [column.rows(0, 0) for column in table if len(column) == 0], None
     return table, mismatch_of(len(table), plan)
 
 
@@ -69,6 +75,8 @@ def mismatch_of(width: int, plan: Plan) -> Fault | None:
 
 
 def _columns(value: Any) -> list[Values]:
+    if isinstance(value, np.ma.MaskedArray):
+        value = np.ma.filled(value.astype(object), None)  # what is masked is blank
     if isinstance(value, np.ndarray) or hasattr(value, "__array__"):
         array = np.asarray(value)
         if array.ndim == 2:

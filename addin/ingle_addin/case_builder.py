@@ -8,6 +8,7 @@ from dataclasses import dataclass
 import numpy as np
 from ingle import Cases, Face, Layer, Shape
 from ingle.conductivities import Conductivity, Table
+from ingle.film_laws import FilmLaw, FluidKind
 from ingle.shapes import MEASURE, Array, solid_volume, volume
 
 from ingle_addin.cells import CellError
@@ -45,6 +46,8 @@ class _Builder:
     def __init__(self, recipe: Recipe, get: Get, tables: GetTable, flag: Flag) -> None:
         self.recipe, self.get, self.tables, self.flag = recipe, get, tables, flag
         self.table_ends: dict[int, Array] = {}
+        self.inner: Array | None = None  # places, for the sizes of film laws
+        self.outside: Array = np.zeros(0)
 
     def maybe(self, slot: str) -> Array | None:
         return self.get(slot) if slot in self.recipe.filled else None
@@ -83,7 +86,7 @@ class _Builder:
             if layer.outside in ("radius", "diameter"):
                 sentence = f"{label} in {ROW} is for a solid body, and {inner} is {HERE}; use outer {layer.outside} instead"
                 self.fault(self.get(recipe.inner) > 0.0, CellError.VALUE, sentence, recipe.inner)
-            sentence = f"{inner} in {ROW} is {HERE}, not below {label} of {THERE}; make the bore smaller than the outside"
+            sentence = f"{inner} in {ROW} is {HERE} and {label} is {THERE}; make the bore smaller than the outside"
             self.fault(d <= 0.0, CellError.NUM, sentence, recipe.inner, layer.outside)
         else:
             sentence = f"{label} in {ROW} is {HERE}, not beyond layer {layer.number - 1}; layers go from the inside out"
@@ -129,7 +132,15 @@ class _Builder:
             held, fluid = fluid, None  # with a fluid and nothing else the resistance alone is the path
         if emissivity is not None and surroundings is None:
             surroundings = fluid
-        return Face(held, film, None if film is None else fluid, flux, emissivity, surroundings, resistance)
+        law = self.recipe.words.get(f"{side} film law")
+        if law is None:
+            return Face(held, film, None if film is None else fluid, flux, emissivity, surroundings, resistance)
+        size, speed = self.maybe(f"{side} size"), self.maybe(f"{side} speed")
+        if size is None:  # a round law's own diameter
+            size = 2.0 * (self.outside if side == "right" or self.inner is None else self.inner)
+        of = FluidKind[self.recipe.words.get(f"{side} fluid kind", "air").upper()]
+        which = FilmLaw[law.upper().replace(" ", "_")]
+        return Face(held, None, fluid, flux, emissivity, surroundings, resistance, which, of, size, speed)
 
 
 def build_cases(recipe: Recipe, get: Get, tables: GetTable, flag: Flag) -> Built:
@@ -155,7 +166,7 @@ def build_cases(recipe: Recipe, get: Get, tables: GetTable, flag: Flag) -> Built
             V = volume(shape, place, d)
         place = d if place is None else place + d
         V = V * MEASURE[shape]
-        blank_scaled = not scaled_layers and recipe.scaled and layer.number == 1
+        blank_scaled = not scaled_layers and recipe.scaled and layer.number == recipe.scaled_layer
         slot = layer.source or (layer.slot(recipe.scaled) if blank_scaled else "")
         scale = make.scale(slot, layer, V) if slot else None
         q = get(layer.source) if layer.source else np.zeros_like(d)
@@ -167,8 +178,10 @@ def build_cases(recipe: Recipe, get: Get, tables: GetTable, flag: Flag) -> Built
         if not single:
             patterns.append(q if layer.number in scaled_layers else np.zeros_like(d))
         else:
-            here = layer.number == (scaled_layers[0] if scaled_layers else 1)
+            here = layer.number == recipe.scaled_layer
             patterns.append((np.ones_like(d) if scale is None else scale) if here else np.zeros_like(d))
+    assert place is not None
+    make.inner, make.outside = inner, place
     _check_probe(recipe, get, flag, inner, thicknesses)
     left_limit = make.maybe("left limit")
     if left_limit is not None and inner is not None:
@@ -188,8 +201,8 @@ def build_cases(recipe: Recipe, get: Get, tables: GetTable, flag: Flag) -> Built
         tuple(make.maybe(f"limit {layer.number}") for layer in recipe.layers),
         tuple(patterns),
     )
-    number = scaled_layers[0] if scaled_layers else 1
-    return Built(cases, tuple(volumes), make.maybe("area"), make.maybe("length"), tuple(scales), single, number, make.table_ends)
+    area, length = make.maybe("area"), make.maybe("length")
+    return Built(cases, tuple(volumes), area, length, tuple(scales), single, recipe.scaled_layer, make.table_ends)
 
 
 def _check_probe(recipe: Recipe, get: Get, flag: Flag, inner: Array | None, thicknesses: list[Array]) -> None:

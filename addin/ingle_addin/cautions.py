@@ -6,6 +6,7 @@ from collections.abc import Iterator, Mapping
 
 import numpy as np
 from ingle.conductivities import Conductivity
+from ingle.film_laws import Doubt
 
 from ingle_addin.case_builder import Built
 from ingle_addin.cells import CellError
@@ -19,6 +20,7 @@ IMPLAUSIBLE_SIZE = 100.0  # m; a mass concrete pour is a few metres
 
 def caution_masks(recipe: Recipe, built: Built, values: Mapping[str, np.ndarray]) -> Iterator[tuple[np.ndarray, Fault]]:
     """Masks of a recipe's rows and the caution each has; the first that holds is the one shown."""
+    yield from law_cautions(recipe, values)
     for layer, case in zip(recipe.layers, built.cases.layers, strict=True):
         if layer.source:
             label, q = recipe.label(layer.source), case.generation
@@ -35,6 +37,30 @@ def caution_masks(recipe: Recipe, built: Built, values: Mapping[str, np.ndarray]
             yield _where((low < T[:, 0]) | (high > built.table_ends[layer.number]), held)
         sentence = f"{recipe.label(layer.outside)} in {ROW} makes the body over 100 m thick; check its unit"
         yield _where(case.thickness > IMPLAUSIBLE_SIZE, sentence)
+
+
+_DOUBTS = (
+    (Doubt.PHASE, "water freezes or boils there at one atmosphere; choose another fluid or law"),
+    (Doubt.PROPERTIES, "the fluid's temperatures are outside those its properties are known for; take the film as a guess"),
+    (Doubt.RAYLEIGH, "its Rayleigh number is outside the law's range; take the film as a guess"),
+    (Doubt.REYNOLDS, "its Reynolds number is outside the law's range; take the film as a guess"),
+    (Doubt.FALLING, "a hotter face would lose less heat there, so other temperatures are possible too; test it"),
+    (Doubt.DENSEST, "water is densest between face and fluid, where its currents turn; take the film as a guess"),
+    (Doubt.TRANSITION, "the flow is neither laminar nor turbulent; take the film as a guess"),
+    (Doubt.BUOYANCY, "natural convection would be as strong as the flow; compare with a law of still fluid"),
+    (Doubt.FAST, "air that fast heats itself; the fluid's temperature is not what the face feels"),
+)
+
+
+def law_cautions(recipe: Recipe, values: Mapping[str, np.ndarray]) -> Iterator[tuple[np.ndarray, Fault]]:
+    """The doubts of the film laws at the faces."""
+    for side in ("left", "right"):
+        doubts = values.get(f"{side}_doubt")
+        if doubts is None or np.isnan(doubts).all():
+            continue
+        bits = np.where(np.isnan(doubts), 0.0, doubts).astype(np.intp)
+        for doubt, words in _DOUBTS:
+            yield _where((bits & doubt) != 0, f"{recipe.label(f'{side} film law')} in {ROW}: {words}")
 
 
 def _where(mask: np.ndarray, sentence: str) -> tuple[np.ndarray, Fault]:

@@ -9,7 +9,6 @@ import numpy as np
 
 from ingle_addin import columns
 from ingle_addin.cells import CellError
-from ingle_addin.columns import Values
 from ingle_addin.faults import HERE, ROW, Fault, number_text, quoted
 from ingle_addin.heading_reader import Column, clean
 from ingle_addin.headings import ABSOLUTE_ZERO
@@ -99,8 +98,3 @@ def outside(column: Column, base: np.ndarray) -> np.ndarray | None:
     below = base <= item.lowest if item.above else base < item.lowest
     bad: np.ndarray = below | (base > item.highest)
     return bad
-
-
-def cells_of(values: Values) -> np.ndarray:
-    """The cells that are texts, booleans, dates or errors, by kind."""
-    return values.kinds if values.kinds is not None else np.zeros(len(values), np.int8)

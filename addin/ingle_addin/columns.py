@@ -100,11 +100,12 @@ def _mixed(array: np.ndarray) -> Values:
     kinds = np.fromiter(map(kind_of, array), np.int8, len(array))
     numbers = np.full(len(array), np.nan)
     for row in np.flatnonzero(kinds == NUMBER):
-        numbers[row] = _float(array[row])
+        numbers[row] = to_float(array[row])
     return Values(numbers, kinds, array)
 
 
-def _float(cell: Any) -> float:
+def to_float(cell: Any) -> float:
+    """A number as a float, infinite where none holds it."""
     try:
         return float(cell)
     except OverflowError:

@@ -8,6 +8,7 @@ from dataclasses import dataclass, field
 import numpy as np
 from ingle import Cases
 
+from ingle_addin.cells import CellError
 from ingle_addin.columns import Values
 from ingle_addin.faults import Fault, finished, number_text
 from ingle_addin.heading_reader import Asked
@@ -59,6 +60,10 @@ def judge(result: Evaluation, table: Sequence[Values], numbers: np.ndarray | Non
         found = np.full(result.n, -1, np.intp)
         for other in others if name == "why" and others else [j]:
             found = np.where(found < 0, result.fault[other], found)
+        if name == "why":
+            # Its own: a limit passed with no source. That a source is blank is no fault of the other answers.
+            own = np.array([fault.error is CellError.NUM for fault in result.faults] + [False])[result.fault[j]]
+            found = np.where((found < 0) & own, result.fault[j], found)
         texts = np.where(result.blank, "", result.values[j])
         if name == "verdict":
             doubtful = (result.caution >= 0) & (found < 0) & (texts != "over limit")

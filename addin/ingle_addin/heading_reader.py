@@ -184,8 +184,8 @@ def read_input(text: str, index: int) -> Column | Fault | None:
     layered = layered or (item.where is Where.FACE_AND_LAYER and not known.side)
     if number and not layered:
         return _bad(text, f"'{base}' takes no number; write '{base}'")
-    if name[-1:].isdigit() and not number:
-        return _bad(text, f"layers are counted from 1; write '{base} 1'")
+    if name not in INPUT_NAMES and base != name and not number:
+        return _bad(text, f"layers are counted from 1; write '{base} 1'" if layered else f"'{base}' takes no number; write '{base}'")
     try:
         unit = read_unit(unit_text, *item.kinds)
     except UnitError as error:
@@ -254,7 +254,7 @@ def read_answer(text: str) -> Asked | Fault:
     if joint:
         side = SIDES[joint["side"]]
         known: tuple[Answer, str] | None = (next(a for a in ANSWERS if a.name == f"joint {side}"), side)
-        number = int(joint["number"])
+        base, number = name, int(joint["number"])
     else:
         base, number = _numbered(name)
         known = ANSWER_NAMES.get(name) or ANSWER_NAMES.get(base)
@@ -263,8 +263,12 @@ def read_answer(text: str) -> Asked | Fault:
             return _bad(text, "this is an input; it cannot be asked as an answer")
         return _unknown(text, name, tuple(ANSWER_NAMES), "answer")
     item, side = known
-    if number and item.where is not Where.LAYER and not joint:
-        return _bad(text, f"'{base}' takes no number")
+    counted = item.where is Where.LAYER or joint is not None
+    if number and not counted:
+        return _bad(text, f"'{base}' takes no number; write '{base}'")
+    if not number and (joint is not None or (name not in ANSWER_NAMES and base != name)):
+        first = f"joint 1 {joint['side']}" if joint else f"{base} 1"
+        return _bad(text, f"layers are counted from 1; write '{first}'" if counted else f"'{base}' takes no number; write '{base}'")
     try:
         unit = read_unit(unit_text, *item.kinds)
     except UnitError as error:

@@ -21,7 +21,6 @@ class Where(Enum):
     BODY = "the body"
     LAYER = "a layer"  # a number ending the name says which
     FACE = "a face"  # left or inner, right or outer, or both, before the name
-    SIDE = "the sides of a bar"  # `side` before the name
     FACE_AND_SIDE = "a face, or the sides of a bar"
     FACE_AND_LAYER = "a face, a layer, or anywhere in the body"  # limit
     JOINT = "a joint between layers"  # numbered as the layer before it
@@ -132,10 +131,16 @@ INPUTS: tuple[Input, ...] = (
     _temperature("surroundings", "of the radiation; the fluid's temperature if blank", _BOTH, available=True),
     Input("resistance", (Kind.AREA_RESISTANCE, Kind.FILM), "between the face and its outermost surface", _FACE, 0.0, 1e9,
           False, available=True),
-    Input("film law", _TEXT, "film coefficient by a published law", _BOTH, texts=FILM_LAWS),
-    Input("size", _L, "of a film law; the body's own diameter for round laws if blank", _BOTH),
-    Input("speed", (Kind.SPEED,), "of a film law", _BOTH, 0.0, 1e4, False),
-    Input("fluid kind", _TEXT, "air (1 atm) if blank, or water", _BOTH, texts=("air", "water")),
+    Input("film law", _TEXT, "film coefficient by a published law", _BOTH, texts=FILM_LAWS, available=True),
+    Input(
+        "size",
+        _L,
+        "of a film law: height, diameter, length along the flow; area over perimeter of a hot face; own diameter if blank",
+        _BOTH,
+        available=True,
+    ),
+    Input("speed", (Kind.SPEED,), "of a film law", _BOTH, 0.0, 1e4, False, available=True),
+    Input("fluid kind", _TEXT, "air (1 atm) if blank, or water", _BOTH, texts=("air", "water"), available=True),
     _temperature("limit", "highest allowed anywhere, in a numbered layer, or at a face", Where.FACE_AND_LAYER, True),
     Input("probe", _L, "place where a temperature is asked: from the left face, or the radius", above=False, available=True),
     Input("density", (Kind.DENSITY,), "of the layer, for times and W/kg", _LAYER, available=True),
@@ -173,7 +178,7 @@ ANSWERS: tuple[Answer, ...] = (
     Answer("heat made", _HEATS, "heat generated: W/m² of a wall, W/m or W by the unit", quantity="heat made"),
     Answer("left share", _PERCENT, "of all heat leaving, what leaves on the left", quantity="left_share"),
     Answer("balance", _PERCENT, "imbalance over the largest of heat made, taken in and passing through", quantity="balance"),
-    Answer("film used", (Kind.FILM,), "film coefficient that a law gave", _FACE),
+    Answer("film used", (Kind.FILM,), "film coefficient that a law gave", _FACE, "film used"),
     Answer("voltage", (Kind.VOLTAGE,), "along the length, of the row's current"),
     Answer("resistance", (Kind.RESISTANCE,), "along the length"),
     *(
@@ -206,5 +211,3 @@ ANSWERS: tuple[Answer, ...] = (
     Answer("verdict", _TEXT, "ok, caution, over limit, no limit, runaway or no answer", quantity="verdict"),
     Answer("why", _TEXT, "ok, or one sentence: missing, wrong, doubtful, or why there is no answer", quantity="why"),
 )
-
-VERDICTS = ("ok", "caution", "over limit", "no limit", "runaway", "no answer")

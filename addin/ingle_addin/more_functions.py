@@ -28,12 +28,17 @@ def _number(grid: Grid, what: str) -> float | Fault:
     cell = grid[0][0] if len(grid) and len(grid[0]) else None
     kind = columns.kind_of(cell)
     if kind == columns.NUMBER:
-        return float(cell)  # type: ignore[arg-type]
+        return columns.to_float(cell)
     if isinstance(cell, CellError):
         return Fault(cell, f"{what} hold the error {cell}; correct that cell")
     if kind == columns.BLANK:
         return Fault(CellError.NA, f"{what} are blank; type a number")
     return Fault(CellError.VALUE, f"{what} are {_shown(cell)}; a number belongs here")
+
+
+def _typed(grid: Grid) -> str:
+    cell = grid[0][0]
+    return number_text(cell) if isinstance(cell, (int, float)) else str(cell)
 
 
 def _shown(cell: Cell) -> str:
@@ -45,8 +50,8 @@ def profile(call: Sequence[Grid], failed: Failed) -> Outcome:
     count = _number(call[0], "the points")
     if isinstance(count, Fault):
         return failed(count)
-    if count != int(count) or not 2 <= count <= MOST_POINTS:
-        return failed(Fault(CellError.NUM, f"the points are {number_text(count)}; give a whole number from 2 to {MOST_POINTS}"))
+    if not math.isfinite(count) or count != int(count) or not 2 <= count <= MOST_POINTS:
+        return failed(Fault(CellError.NUM, f"the points are {_typed(call[0])}; give a whole number from 2 to {MOST_POINTS}"))
     texts = heading_texts(call[1])
     rows = join(call[2:], texts[1]) if not isinstance(texts, Fault) else texts
     if isinstance(texts, Fault) or isinstance(rows, Fault):
@@ -62,6 +67,10 @@ def profile(call: Sequence[Grid], failed: Failed) -> Outcome:
     sentence = reason(result, table, 0, 0, 0)
     if sentence is not None:
         return failed(Fault(result.faults[result.fault[0][0]].error, sentence))
+    layers = len(result.cases[0].layers)
+    if count < 2 * layers:
+        sentence = f"the points are {number_text(count)}; a body of {layers} layers needs at least {2 * layers}"
+        return failed(Fault(CellError.NUM, sentence))
     place, T, _ = ingle.profile(result.cases[0], int(count))
     grid = [[1e3 * r, t] for r, t in zip(place[0].tolist(), T[0].tolist(), strict=True)]
     return Outcome(grid, (None,) * len(grid))
@@ -99,7 +108,7 @@ def _plain(x: float) -> str:
 
 def _point_fault(cell: Cell, what: str) -> Fault | None:
     kind = columns.kind_of(cell)
-    if kind == columns.NUMBER and math.isfinite(cell):  # type: ignore[arg-type]
+    if kind == columns.NUMBER and math.isfinite(columns.to_float(cell)):
         return None
     if kind == columns.NUMBER:
         return Fault(CellError.NUM, f"{what} is beyond the range of numbers; correct it")

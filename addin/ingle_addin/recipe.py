@@ -13,6 +13,7 @@ from ingle import Shape
 
 from ingle_addin.cells import CellError
 from ingle_addin.faults import ROW, Fault
+from ingle_addin.film_headings import law_fault
 from ingle_addin.heading_reader import INPUT_NAMES, Column, Plan
 from ingle_addin.headings import SOURCES, Where
 
@@ -57,6 +58,7 @@ class Recipe:
     inner: str
     layers: tuple[LayerRecipe, ...]
     scaled: str  # the kind of source an allowable is told in, empty where more than one could be meant
+    scaled_layer: int  # the first layer of that kind, also where its cell is blank
     no_source: Fault | None
     limits: tuple[str, ...]
     answers: dict[Any, Any] = field(default_factory=dict, compare=False, repr=False)  # what each answer needs, kept
@@ -111,6 +113,7 @@ def _build(plan: Plan, columns: tuple[Column, ...], words: Mapping[str, str], ta
     bored = any(slot in ("inner radius", "inner diameter") for column in columns for slot in column.slots)
     solid = shape != Shape.WALL and not bored
     filled = _by_slot(columns, solid, shape_text)
+    words = {slot: word for slot, word in words.items() if slot in filled}
     for slot, column in filled.items():
         shapes = _BELONGS.get(base_name(slot), (shape_text,))
         if shape_text not in shapes:
@@ -121,15 +124,18 @@ def _build(plan: Plan, columns: tuple[Column, ...], words: Mapping[str, str], ta
     _check_numbers(columns, count)
     outsides = [_outside(plan, filled, shape_text, number, count) for number in range(1, count + 1)]
     for number in range(1, count + 1):
-        if slot_of("conductivity", number) not in filled:
-            raise missing(plan, slot_of("conductivity", number), "type a value")
+        _check_conductivity(plan, filled, tabled, number)
     sources = [_layer_source(filled, number) for number in range(1, count + 1)]
-    scaled, no_source = _scaled(plan, filled, shape_text, sources)
+    scaled, scaled_layer, no_source = _scaled(plan, filled, shape_text, sources)
     for side in ("left", "right"):
         _check_face(plan, filled, side)
+        fault = law_fault(filled, words, side, shape_text)
+        if fault is not None:
+            raise Stop(fault.error, fault.sentence)
     limits = ("limit", "left limit", "right limit", *(f"limit {n}" for n in range(1, count + 1)))
     layers = tuple(LayerRecipe(n, outside, source) for n, (outside, source) in enumerate(zip(outsides, sources, strict=True), 1))
-    return Recipe(shape, filled, words, tabled, inner, layers, scaled, no_source, tuple(slot for slot in limits if slot in filled))
+    given = tuple(slot for slot in limits if slot in filled)
+    return Recipe(shape, filled, words, tabled, inner, layers, scaled, scaled_layer, no_source, given)
 
 
 def missing(plan: Plan, slot: str, remedy: str) -> Stop:
@@ -207,6 +213,20 @@ def _outside(plan: Plan, filled: Mapping[str, Column], shape_text: str, number: 
     return outside
 
 
+def _check_conductivity(plan: Plan, filled: Mapping[str, Column], tabled: frozenset[str], number: int) -> None:
+    slot = slot_of("conductivity", number)
+    slope, reference = (filled.get(slot_of(f"conductivity {name}", number)) for name in ("slope", "reference"))
+    if slot not in filled:
+        raise missing(plan, slot, "type a value")
+    for other in (slope, reference):
+        if slot in tabled and other:
+            sentence = f"{filled[slot].label} in {ROW} is a text table, beside which {other.label} has no meaning"
+            raise Stop(CellError.VALUE, f"{sentence}; leave one blank")
+    if reference and not slope:
+        sentence = f"{reference.label} in {ROW} needs a slope"
+        raise Stop(CellError.NA, f"{sentence}; fill in '{slot_of('conductivity slope', number)} [1/K]' or leave it blank")
+
+
 def _layer_source(filled: Mapping[str, Column], number: int) -> str:
     given = [slot for slot in (slot_of(name, number) for name in SOURCES) if slot in filled]
     if len(given) > 1:
@@ -215,8 +235,8 @@ def _layer_source(filled: Mapping[str, Column], number: int) -> str:
     return given[0] if given else ""
 
 
-def _scaled(plan: Plan, filled: Mapping[str, Column], shape_text: str, sources: list[str]) -> tuple[str, Fault | None]:
-    """The kind of source that an allowable scales, and the fault of a row without any source."""
+def _scaled(plan: Plan, filled: Mapping[str, Column], shape_text: str, sources: list[str]) -> tuple[str, int, Fault | None]:
+    """The kind of source that an allowable scales, its first layer, and the fault of a row without any source."""
     headed = [slot for column in plan.columns for slot in column.slots if base_name(slot) in SOURCES]
     given = [slot for slot in sources if slot]
     for slot in given:
@@ -224,22 +244,21 @@ def _scaled(plan: Plan, filled: Mapping[str, Column], shape_text: str, sources: 
         if need is not None:
             raise need
     if given:
-        return base_name(given[0]), None
-    if len(headed) == 1:
-        number = _number_of(headed[0])
-        need = _source_needs(headed[0], filled, shape_text)
-        if need is not None or number > len(sources):
-            fault = need.fault if need is not None else Fault(CellError.NA, f"{plan.label(headed[0])} in {ROW} is blank")
-            if fault.error is CellError.VALUE and need is not None:
-                raise need
-            return "", fault
-    scaled = base_name(headed[0]) if len(headed) == 1 else ""
+        return base_name(given[0]), _number_of(given[0]), None
+    if not headed:
+        sentence = f"{ROW} has no source, and no heading for one; add a column 'generation [W/m³]', 0 for none"
+        return "", 1, Fault(CellError.NA, sentence)
     words = " and ".join(plan.label(slot) for slot in headed)
-    if headed:
-        verb = "is" if len(headed) == 1 else "are"
-        return scaled, Fault(CellError.NA, f"{words} in {ROW} {verb} blank; write 0 for no source")
-    sentence = f"{ROW} has no source, and no heading for one; add a column 'generation [W/m³]', 0 for none"
-    return "", Fault(CellError.NA, sentence)
+    blank = Fault(CellError.NA, f"{words} in {ROW} {'is' if len(headed) == 1 else 'are'} blank; write 0 for no source")
+    if len(headed) > 1:
+        return "", 1, blank
+    need = _source_needs(headed[0], filled, shape_text)
+    if need is not None and need.fault.error is CellError.VALUE:
+        raise need
+    number = _number_of(headed[0])
+    if need is not None or number > len(sources):
+        return "", 1, blank if need is None else need.fault
+    return base_name(headed[0]), number, blank
 
 
 def _number_of(slot: str) -> int:
@@ -265,18 +284,23 @@ def _source_needs(slot: str, filled: Mapping[str, Column], shape_text: str) -> S
 
 
 def _check_face(plan: Plan, filled: Mapping[str, Column], side: str) -> None:
-    held, film, fluid, emissivity, surroundings, resistance, flux = (
-        filled.get(f"{side} {name}") for name in ("held", "film", "fluid", "emissivity", "surroundings", "resistance", "flux in")
+    held, film, law, fluid, emissivity, surroundings, resistance, flux = (
+        filled.get(f"{side} {name}")
+        for name in ("held", "film", "film law", "fluid", "emissivity", "surroundings", "resistance", "flux in")
     )
     if held:
-        for other in (film, fluid, emissivity, surroundings, flux):
+        for other in (film, law, fluid, emissivity, surroundings, flux):
             if other:
                 sentence = f"{held.label} and {other.label} in {ROW} contradict each other"
                 raise Stop(CellError.VALUE, f"{sentence}: a held face takes no film, fluid, radiation or flux; leave one blank")
-    if film and not fluid:
-        raise _face_missing(plan, filled, film, "fluid", "the temperature of its fluid")
+    if film and law:
+        sentence = f"{film.label} and {law.label} in {ROW} both give the film coefficient"
+        raise Stop(CellError.VALUE, f"{sentence}; leave one blank")
+    for given in (film, law):
+        if given and not fluid:
+            raise _face_missing(plan, filled, given, "fluid", "the temperature of its fluid")
     alone = resistance and not (emissivity or flux)  # with a fluid and nothing else the resistance is the path
-    if fluid and not (film or alone):
+    if fluid and not (film or law or alone):
         raise _face_missing(plan, filled, fluid, "film", "a film")
     if surroundings and not emissivity:
         raise _face_missing(plan, filled, surroundings, "emissivity", "an emissivity")
@@ -290,11 +314,8 @@ def _face_missing(plan: Plan, filled: Mapping[str, Column], given: Column, name:
     """What a face's heading lacks: the heading named covers just the faces that lack it."""
     sides = [slot.split(" ", 1)[0] for slot in given.slots if filled.get(slot) is given]
     lacking = [f"{side} {name}" for side in sides if f"{side} {name}" not in filled]
-    blank = [
-        column.label
-        for column in plan.columns
-        if column.item.name == name and [slot for slot in column.slots if slot.split(" ", 1)[0] in sides] == lacking
-    ]
     both = len(given.slots) == 2 and len(lacking) == len(sides)
+    wanted = [f"left {name}", f"right {name}"] if both else lacking  # on a solid body `both` is the outer face
+    blank = [column.label for column in plan.columns if column.item.name == name and list(column.slots) == wanted]
     known = blank[0] if blank else suggested(f"both {name}" if both else lacking[0])
     return Stop(CellError.NA, f"{given.label} in {ROW} needs {what}; fill in '{known}'")

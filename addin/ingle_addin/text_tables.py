@@ -17,9 +17,11 @@ from ingle.conductivities import Table
 from ingle_addin.cells import CellError
 from ingle_addin.faults import ROW, Fault, quoted
 from ingle_addin.heading_reader import Column
+from ingle_addin.headings import ABSOLUTE_ZERO
 from ingle_addin.units import Kind, UnitError, read_unit
 
 MOST_POINTS = 200
+HOTTEST = 1e5  # °C, as for every temperature heading
 _NUMBER = r"[+\-−]?(?:\d+\.?\d*|\.\d+)(?:[eE][+\-]?\d+)?"
 _POINT = re.compile(rf"\s*(?P<T>{_NUMBER})\s*(?P<unit>[^:\d]*?)\s*:\s*(?P<y>{_NUMBER})\s*")
 
@@ -36,6 +38,7 @@ def _read(column: Column, text: str) -> Points | Fault:
     where = f"{column.label} in {ROW}"
     temperatures: list[float] = []
     values: list[float] = []
+    units: set[str] = set()
     for piece in text.split(";"):
         if not piece.strip():
             continue
@@ -46,8 +49,15 @@ def _read(column: Column, text: str) -> Points | Fault:
             unit = read_unit(match["unit"] or "°C", Kind.TEMPERATURE)
         except UnitError as error:
             return Fault(CellError.VALUE, f"{where} has {quoted(piece)} in its table: {error}")
+        units.add(match["unit"])
         temperatures.append(unit.to_base(float(match["T"])))
         values.append(column.unit.to_base(float(match["y"])))
+    if len(units) > 1:
+        return Fault(CellError.VALUE, f"{where} has a table of mixed temperature units; give every point the same unit, or none")
+    if temperatures and max(temperatures) > HOTTEST:
+        return Fault(CellError.NUM, f"{where} has a table that goes beyond 1e5 °C; check its temperatures and their unit")
+    if temperatures and temperatures[0] < ABSOLUTE_ZERO:
+        return Fault(CellError.NUM, f"{where} has a table that begins below absolute zero; check its temperatures and their unit")
     if len(values) > MOST_POINTS:
         return Fault(CellError.VALUE, f"{where} has a table of {len(values)} points; at most {MOST_POINTS} are read")
     for low, high in pairwise(temperatures):

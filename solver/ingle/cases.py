@@ -9,6 +9,7 @@ from typing import TypeVar
 import numpy as np
 
 from ingle.conductivities import Conductivity
+from ingle.film_laws import FilmLaw, FluidKind
 from ingle.shapes import Array, Shape
 
 Rows = np.ndarray | slice
@@ -37,7 +38,7 @@ class FaceKind(IntEnum):
     FLUX = 0  # the heat entering; none is an insulated face, or the centre of a solid round body
     HELD = 1  # the temperature, at the far side of the resistance if there is one
     FILM = 2  # convection with a given coefficient, with or without a flux put in at the same surface
-    SURFACE = 3  # radiation, beside a film or a flux or alone
+    SURFACE = 3  # radiation, a film law, or both, beside any of those
 
 
 @dataclass(frozen=True)
@@ -46,7 +47,8 @@ class Face:
 
     ``held`` [°C]; ``film`` [W/(m²·K)] with ``fluid`` [°C]; ``flux`` [W/m²] put in at the outermost surface;
     ``emissivity`` [1] to large ``surroundings`` [°C]; ``resistance`` [m²·K/W] between the body's face and its outermost
-    surface or held temperature. A film of exactly 0 takes no heat.
+    surface or held temperature. ``law`` with ``law_fluid``, ``size`` [m] and ``speed`` [m/s] gives the film coefficient
+    instead of ``film``, one law for all cases. A film of exactly 0 takes no heat.
     """
 
     held: Array | None = None
@@ -56,9 +58,13 @@ class Face:
     emissivity: Array | None = None
     surroundings: Array | None = None
     resistance: Array | None = None
+    law: FilmLaw | None = None
+    law_fluid: FluidKind = FluidKind.AIR
+    size: Array | None = None
+    speed: Array | None = None
 
     def __post_init__(self) -> None:
-        if (self.film is None) != (self.fluid is None):
+        if (self.film is None and self.law is None) != (self.fluid is None):
             raise ValueError("a film needs its fluid temperature, and a fluid temperature its film")
         if self.held is not None:
             for other in (self.film, self.flux):
@@ -69,7 +75,7 @@ class Face:
 
     def kinds(self) -> FaceKind | np.ndarray:
         """One FaceKind for all cases, or an integer array of them."""
-        kind: FaceKind | np.ndarray = FaceKind.FLUX
+        kind: FaceKind | np.ndarray = FaceKind.SURFACE if self.law is not None else FaceKind.FLUX
         if self.film is not None:
             kind = _where(self.film > 0.0, FaceKind.FILM, kind)
         if self.emissivity is not None:

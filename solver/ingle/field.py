@@ -7,7 +7,7 @@ from dataclasses import dataclass
 import numpy as np
 
 from ingle.conductivities import Conductivity
-from ingle.march import Ends, LayerSteps, State
+from ingle.march import LayerSteps, State
 from ingle.shapes import (
     MEASURE,
     Array,
@@ -17,7 +17,6 @@ from ingle.shapes import (
     solid_source_square,
     source_path,
     source_square,
-    volume,
 )
 
 # Gauss-Legendre nodes for means where T is no polynomial of place; see mean_rise.
@@ -208,6 +207,3 @@ def largest_heat(state: State) -> Array:
         if side.flux is not None:
             scale = np.maximum(scale, np.abs(side.flux * A))
     return scale
-
-
-__all__ = ["Ends", "Extremes", "balance", "extremes", "rise_at", "volume"]

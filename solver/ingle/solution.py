@@ -8,11 +8,13 @@ from functools import cached_property
 import numpy as np
 
 from ingle import field
-from ingle.allowable import Allowable, allowable, excesses, worst
+from ingle.allowable import NO_STATE, Allowable, allowable, excesses, worst
 from ingle.cases import Cases, Structure
 from ingle.conductivities import Conductivity
+from ingle.film_laws import Film, film
 from ingle.march import Problem, State, problem_of, solve
 from ingle.shapes import Array
+from ingle.surfaces import Surface
 
 ABSOLUTE_ZERO = -273.15
 # A state whose heats are out of balance by more than this is not answered.
@@ -61,20 +63,7 @@ class Solution:
         """A ``Status`` for each case."""
         if not self.structure.settles:
             return np.full(len(self.cases), Status.NO_OUTLET, dtype=np.int8)
-        state, ends = self.state, self.extremes
-        cold = state.sink + ends.lowest < ABSOLUTE_ZERO
-        finite = np.isfinite(ends.peak) & np.isfinite(ends.lowest) & np.isfinite(state.Q_left) & np.isfinite(state.Q_right)
-        status = np.where(cold, Status.BELOW_ABSOLUTE_ZERO, Status.SOLVED)
-        if not self.problem.linear:
-            status = np.where(field.balance(state) > _UNBALANCED, Status.NOT_BALANCED, status)
-            for number, layer in enumerate(self.problem.layers):
-                if isinstance(layer.k, Conductivity):
-                    low, high = state.sink + ends.lowest, state.sink + ends.by_layer[number]
-                    low = np.maximum(low, ABSOLUTE_ZERO)
-                    here = np.minimum(state.sink + state.ends[number].T0, state.sink + state.ends[number].T1)
-                    usable = layer.k.usable(np.minimum(here, high), high)
-                    status = np.where(usable, status, Status.NO_CONDUCTIVITY)
-        return np.where(finite, status, Status.OVERFLOW).astype(np.int8)
+        return status_of(self.problem, self.state, self.extremes)
 
     @cached_property
     def pattern(self) -> tuple[Array, ...]:
@@ -87,7 +76,16 @@ class Solution:
         if not self.structure.settles:
             none = np.zeros(len(self.cases), dtype=np.int8)
             return Allowable(np.full(len(self.cases), np.nan), none, none)
-        return allowable(self.cases, self.problem, self.sources, self.pattern)
+        found = allowable(self.cases, self.problem, self.sources, self.pattern)
+        if self.problem.linear:
+            return found
+        # The state there must itself be one that is answered: a conductivity may fall to zero before the limit.
+        rest = (np.where(p != 0.0, 0.0, q) for q, p in zip(self.sources, self.pattern, strict=True))
+        multiple = np.where(found.lacking == 0, found.multiple, 0.0)
+        state = solve(self.problem, tuple(f + multiple * p for f, p in zip(rest, self.pattern, strict=True)))
+        bad = (status_of(self.problem, state, field.extremes(state)) != Status.SOLVED) & (found.lacking == 0)
+        lacking = np.where(bad, NO_STATE, found.lacking).astype(np.int8)
+        return Allowable(np.where(bad, np.nan, found.multiple), found.governs, lacking)
 
     @cached_property
     def cold_broken(self) -> np.ndarray:
@@ -135,3 +133,36 @@ class Solution:
         inside = (place >= first - slack) & (place <= last + slack)
         within = np.where(inside, np.clip(place, first, last), first)
         return np.where(inside, self.state.sink + field.rise_at(self.state, within), np.nan)
+
+    def _surface_film(self, side: Surface, rise: Array) -> Film | None:
+        if side.law is None:
+            return None
+        assert side.size is not None
+        assert side.fluid_celsius is not None
+        return film(side.law, side.law_fluid, side.size, side.speed, side.sink + rise, side.fluid_celsius)
+
+    @cached_property
+    def left_film(self) -> Film | None:
+        """What the law at the left face gives, None without one."""
+        return self._surface_film(self.problem.left, self.state.u)
+
+    @cached_property
+    def right_film(self) -> Film | None:
+        """What the law at the right face gives, None without one."""
+        R, state = self.problem.right.resistance, self.state
+        fall = 0.0 if R is None else R * state.Q_right / self.problem.area_right
+        return self._surface_film(self.problem.right, state.rise_right - fall)
+
+
+def status_of(problem: Problem, state: State, ends: field.Extremes) -> np.ndarray:
+    """A ``Status`` for each case of a state that has a way out for its heat."""
+    cold = state.sink + ends.lowest < ABSOLUTE_ZERO
+    finite = np.isfinite(ends.peak) & np.isfinite(ends.lowest) & np.isfinite(state.Q_left) & np.isfinite(state.Q_right)
+    status = np.where(cold, Status.BELOW_ABSOLUTE_ZERO, Status.SOLVED)
+    if not problem.linear:
+        status = np.where(field.balance(state) > _UNBALANCED, Status.NOT_BALANCED, status)
+        for number, layer in enumerate(problem.layers):
+            if isinstance(layer.k, Conductivity):
+                low, high = state.sink + ends.lows[number], state.sink + ends.by_layer[number]
+                status = np.where(layer.k.usable(np.minimum(low, high), high), status, Status.NO_CONDUCTIVITY)
+    return np.where(finite, status, Status.OVERFLOW).astype(np.int8)

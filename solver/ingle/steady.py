@@ -9,11 +9,19 @@ import numpy as np
 
 from ingle import field
 from ingle.cases import Cases, Structure, decode, structure_codes
+from ingle.film_laws import Film
 from ingle.shapes import Array
 from ingle.solution import Solution, Status
 
 # A block's arrays stay in the processor's cache; measured five times quicker than one pass over 200,000 cases.
 BLOCK = 8192
+
+
+def _of_law(solution: Solution, found: Film | None, part: str) -> Array:
+    """A part of what a film law gave, NaN where the face has none."""
+    n = len(solution.cases)
+    return np.full(n, np.nan) if found is None else np.zeros(n) + getattr(found, part)
+
 
 QUANTITIES: dict[str, Callable[[Solution], Array]] = {
     "peak": lambda s: s.state.sink + s.extremes.peak,
@@ -30,6 +38,10 @@ QUANTITIES: dict[str, Callable[[Solution], Array]] = {
     "heat_made": lambda s: field.heat_made(s.state),
     "left_share": lambda s: field.left_share(s.state),
     "balance": lambda s: field.balance(s.state),
+    "left_film": lambda s: _of_law(s, s.left_film, "h"),
+    "right_film": lambda s: _of_law(s, s.right_film, "h"),
+    "left_doubt": lambda s: _of_law(s, s.left_film, "doubt"),
+    "right_doubt": lambda s: _of_law(s, s.right_film, "doubt"),
     "headroom": lambda s: s.headroom,
     "allowable_multiple": lambda s: s.allowable.multiple,
     "allowable_generation": lambda s: s.allowable.multiple * s.pattern[0],
@@ -71,13 +83,16 @@ class Answers:
 def steady(cases: Cases, wanted: Iterable[str]) -> Answers:
     """Steady temperatures and heats of bodies with uniform generation, one case an element.
 
-    ``wanted`` names of ``QUANTITIES``: temperatures in °C (``peak``, ``left_face``, ``right_face``, ``mean``,
-    ``probe_temperature``), ``peak_place`` [m] from the left face or as a radius, ``left_flux`` and ``right_flux`` [W/m² of
-    that face], ``left_heat``, ``right_heat`` and ``heat_made`` [W/m² of wall, W/m of cylinder, W of sphere],
-    ``left_share`` and ``balance`` [1], ``headroom`` [K] before the limit that ``governs`` (1 ``limit``, 2 ``left_limit``,
-    3 ``right_limit``, 0 none), ``allowable_generation`` [W/m³] and ``lacking`` (1 no limit, 2 a limit broken with no source, which
-    ``first_broken`` names, 3 never reached), and ``least_room`` [K] before any limit, infinite where there is none.
-    Raises KeyError for another name. Source: Fourier's law and conservation of heat, integrated in closed form.
+    ``wanted`` names of ``QUANTITIES``, or of ``LAYER_QUANTITIES`` with a layer's number: temperatures in °C (``peak``,
+    ``left_face``, ``right_face``, ``mean``, ``probe_temperature``, ``layer_peak 2``, ``joint_left 1`` …), ``peak_place`` [m]
+    from the left face or as a radius, ``peak_layer`` from 1, ``left_flux`` and ``right_flux`` [W/m² of that face],
+    ``left_heat``, ``right_heat`` and ``heat_made`` [W/m² of wall, W/m of cylinder, W of sphere], ``left_share`` and ``balance``
+    [1], ``left_film`` and ``right_film`` [W/(m²·K)] with the doubts of their laws, ``headroom`` [K] before the limit that
+    ``governs`` (1 ``limit``, 2 ``left_limit``, 3 ``right_limit``, 3 + n that of layer n, 0 none), ``least_room`` [K] before any
+    limit, that of ``worst_limit`` (infinite where there is none), ``cold_broken`` the limit passed without the scaled sources,
+    ``allowable_multiple`` of the pattern and ``allowable_generation`` [W/m³] of the first layer, NaN where ``lacking`` (1 no
+    limit, 2 ``first_broken`` passed with no source, 3 never reached, 4 no state there). Raises KeyError for another name.
+    Source: Fourier's law and conservation of heat, integrated by layers with the Kirchhoff integral of k(T).
     """
     wanted = tuple(wanted)
     for name in wanted:

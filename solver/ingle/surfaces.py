@@ -12,6 +12,7 @@ from dataclasses import dataclass
 import numpy as np
 
 from ingle.cases import Face, FaceKind, Rows, take
+from ingle.film_laws import FilmLaw, FluidKind, coefficient
 from ingle.shapes import Array
 
 KELVIN = 273.15
@@ -33,6 +34,11 @@ class Surface:
     surroundings: Array | None  # as a rise
     hot: Array | None  # surroundings in kelvin
     resistance: Array | None
+    law: FilmLaw | None
+    law_fluid: FluidKind
+    size: Array | None
+    speed: Array | None
+    fluid_celsius: Array | None
 
     def take(self, rows: Rows) -> Surface:
         """The same face for some of the cases."""
@@ -41,7 +47,13 @@ class Surface:
     def leaving(self, rise: Array) -> tuple[Array, Array]:
         """φ and dφ/dT at the outermost surface."""
         phi, slope = np.zeros_like(rise), np.zeros_like(rise)
-        if self.film is not None:
+        if self.law is not None:
+            assert self.fluid is not None
+            assert self.size is not None
+            assert self.fluid_celsius is not None
+            h, h_slope = coefficient(self.law, self.law_fluid, self.size, self.speed, self.sink + rise, self.fluid_celsius)
+            phi, slope = h * (rise - self.fluid), h + h_slope * (rise - self.fluid)
+        elif self.film is not None:
             assert self.fluid is not None
             phi, slope = self.film * (rise - self.fluid), self.film
         if self.emissivity is not None:
@@ -86,6 +98,11 @@ def surface(face: Face, kind: FaceKind, sink: Array) -> Surface:
         emissivity, rise(surroundings) if radiates else None,
         surroundings + KELVIN if radiates and surroundings is not None else None,
         none(face.resistance),
+        face.law if kind == FaceKind.SURFACE else None,
+        face.law_fluid,
+        face.size,
+        face.speed,
+        face.fluid,
     )  # fmt: skip
 
 
@@ -95,7 +112,7 @@ def sink_of(face: Face, kind: FaceKind) -> Array | None:
         return face.held
     if kind == FaceKind.FLUX:
         return None
-    if kind == FaceKind.FILM or face.surroundings is None:
+    if kind == FaceKind.FILM or face.law is not None or face.surroundings is None:
         return face.fluid
     if face.fluid is None:
         return face.surroundings

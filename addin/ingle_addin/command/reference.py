@@ -30,6 +30,9 @@ def print_reference() -> int:
 
 
 _NOTES = (
+    "n is a layer, counted from the left or from the inside; a name without it is layer 1. left is also called inner, right\n"
+    "outer; both is the two of them. Arguments are parted by ; or , as the spreadsheet program does.\n"
+    "An allowable of several sources of one kind is told by the first that is not 0; they scale together.\n\n"
     "Results are estimates of steady one-dimensional conduction. They do not replace local codes, type tests or the\n"
     "judgement of a licensed engineer; a part that can burn, overheat a cable or run away needs its own test."
 )
@@ -46,21 +49,27 @@ def tables() -> list[tuple[str, tuple[str, ...], list[tuple[str, ...]]]]:
 
 def _input(item: Input) -> tuple[str, str, str]:
     meaning = item.meaning if item.available else f"{item.meaning} ({_NOT_YET})"
+    if item.available and item.where is Where.FACE_AND_SIDE:
+        meaning += f" (`side {item.name}`, of a bar: {_NOT_YET})"
+    if item.available and item.table and item.name != "conductivity":
+        meaning += f" (the table: {_NOT_YET})"
     return spelled(item.name, item.where), units(item), meaning
 
 
 def _answer(item: Answer) -> tuple[str, str, str]:
     meaning = item.meaning if item.available else f"{item.meaning} ({_NOT_YET})"
-    return spelled(item.name, item.where), units(item), meaning
+    if item.where is Where.JOINT:
+        return f"joint n {item.name.split()[-1]}", units(item), meaning
+    name = f"left|right {item.name}" if item.where is Where.FACE else spelled(item.name, item.where)
+    return name, units(item), meaning
 
 
 def spelled(name: str, where: Where) -> str:
     """A heading with the words and numbers that may stand with it."""
     return {
         Where.FACE: f"left|right|both {name}",
-        Where.SIDE: f"side {name}",
-        Where.FACE_AND_SIDE: f"left|right|both|side {name}",
-        Where.FACE_AND_LAYER: f"{name}, {name} n, left|right {name}",
+        Where.FACE_AND_SIDE: f"left|right|both {name}",
+        Where.FACE_AND_LAYER: f"{name}, {name} n, left|right|both {name}",
         Where.LAYER: f"{name}, {name} n",
         Where.JOINT: f"{name} n",
     }.get(where, name)
