@@ -20,7 +20,7 @@ NO_COOLING = (
 TOO_COLD = "The answer in {row} would lie below absolute zero; check the signs of the generation and the fluxes"
 LATER = "is not available yet; leave it blank or wait for a later version"
 HEADING_UNIT = "correct the value or the heading's unit"
-TOO_WIDE = "not below outer radius [mm] of 12; make the bore smaller than the outside"
+TOO_WIDE = "and outer radius [mm] is 12; make the bore smaller than the outside"
 COMMA = "a text with a decimal comma; type it as a number of your spreadsheet"
 BLANK_ROW = ("", "")
 
@@ -148,9 +148,9 @@ ROUND = Table(
     {"shape": "cylinder", R_IN: 4.0, D_IN: None, R_OUT: 12.0, D_OUT: None, "radius [mm]": None, K: 15.0, Q: 3e5, P: None, LINE: None,
      FILM: 400.0, FLUID: 20.0, "inner film [W/(m²·K)]": None, "inner fluid [°C]": None, "width [mm]": None, "probe [mm]": None},
     [
-        ({R_IN: 12.0}, NUM, f"Inner radius [mm] in {{row}} is 12, {TOO_WIDE}"),
-        ({R_IN: 15.0}, NUM, f"Inner radius [mm] in {{row}} is 15, {TOO_WIDE}"),
-        ({R_IN: None, D_IN: 30.0}, NUM, f"Inner diameter [mm] in {{row}} is 30, {TOO_WIDE}"),
+        ({R_IN: 12.0}, NUM, f"Inner radius [mm] in {{row}} is 12 {TOO_WIDE}"),
+        ({R_IN: 15.0}, NUM, f"Inner radius [mm] in {{row}} is 15 {TOO_WIDE}"),
+        ({R_IN: None, D_IN: 30.0}, NUM, f"Inner diameter [mm] in {{row}} is 30 {TOO_WIDE}"),
         ({R_IN: -1.0}, NUM, f"Inner radius [mm] in {{row}} is -1; it must be at least 0 and at most 1e9; {HEADING_UNIT}"),
         ({D_IN: 8.0}, VALUE, "Inner radius [mm] and inner diameter [mm] in {row} both give the bore; leave one blank"),
         ({D_OUT: 24.0}, VALUE, "Outer radius [mm] and outer diameter [mm] in {row} both give the outside; leave one blank"),
@@ -225,7 +225,7 @@ SHELLS = Table(
         ({OUT2: 10.0}, NUM, "Outer radius 2 [mm] in {row} is 10, not beyond layer 1; layers go from the inside out"),
         ({OUT2: None, OUT2_D: 15.0}, NUM,
          "Outer diameter 2 [mm] in {row} is 15, not beyond layer 1; layers go from the inside out"),
-        ({R_IN: 12.0}, NUM, "Inner radius [mm] in {row} is 12, not below outer radius 1 [mm] of 12; make the bore smaller than the "
+        ({R_IN: 12.0}, NUM, "Inner radius [mm] in {row} is 12 and outer radius 1 [mm] is 12; make the bore smaller than the "
          "outside"),
         ({D2: 3.0}, VALUE, "Outer radius 2 [mm] and thickness 2 [mm] in {row} both give the outside of layer 2; leave one blank"),
         ({OUT2_D: 30.0}, VALUE,
@@ -241,7 +241,7 @@ SHELLS = Table(
 )  # fmt: skip
 
 TEXT_TABLES = Table(
-    {"shape": "wall", D: 10.0, K: "0:14; 100 °C:16; 500 K:18", Q: 3e5, FILM: 400.0, FLUID: 20.0, "both limit [°C]": None},
+    {"shape": "wall", D: 10.0, K: "0 °C:14; 100 °C:16; 227 °C:18", Q: 3e5, FILM: 400.0, FLUID: 20.0, "both limit [°C]": None},
     [
         ({K: "20:16.2; 500"}, VALUE, f"Conductivity [W/(m·K)] in {{row}} has '500' in its table; {UNREAD}"),
         ({K: "20:16.2; 500:hot"}, VALUE, f"Conductivity [W/(m·K)] in {{row}} has '500:hot' in its table; {UNREAD}"),

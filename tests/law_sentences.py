@@ -45,11 +45,15 @@ CASES: list[tuple[dict[str, object], str]] = [
      "blank"),
     ({K: "300 K:398; 400:393"}, "Conductivity [W/(m·K)] in this row has a table of mixed temperature units; give every point the "
      "same unit, or none"),
+    ({K: "20:5; 2e5:6"}, "Conductivity [W/(m·K)] in this row has a table that goes beyond 1e5 °C; check its temperatures and "
+     "their unit"),
     ({K: "-300:5; 500:6"}, "Conductivity [W/(m·K)] in this row has a table that begins below absolute zero; check its "
      "temperatures and their unit"),
 ]  # fmt: skip
 
 # Answers that a film law gives.
 ASKED: list[tuple[str, dict[str, object], str]] = [
+    ("allowable generation [W/m³]", {SLOPE: -0.005, "left held [°C]": 20.0, "limit [°C]": 300.0}, "The conductivity in this row "
+     "falls to zero before a limit is reached; check the slope or give a table"),
     ("left film used [W/(m²·K)]", {}, "Left film used [W/(m²·K)]: no law gives the film there in this row; fill in 'left film law'"),
-]
+]  # fmt: skip

@@ -14,6 +14,7 @@ from ingle_addin import ask
 from ingle_addin.batch import solve_calls
 from ingle_addin.cells import CellError
 from ingle_addin.heading_reader import ANSWER_NAMES, INPUT_NAMES
+from ingle_addin.headings import FILM_LAWS
 from sheets import DATE
 
 Call = tuple[str, tuple[object, ...]]
@@ -138,7 +139,7 @@ MESSAGES: list[tuple[Call, str]] = [
     (rod({R_OUT: GONE}), "This row has no outer radius, and no heading for it; add a column 'outer radius [mm]'"),
     (rod({R_OUT: GONE, R: 5.0, R_IN: 1.0}), "Radius [mm] in this row is for a solid body, and inner radius [mm] is 1; use outer "
      "radius instead"),
-    (rod({R_IN: 12.0}), "Inner radius [mm] in this row is 12, not below outer radius [mm] of 12; make the bore smaller than the "
+    (rod({R_IN: 12.0}), "Inner radius [mm] in this row is 12 and outer radius [mm] is 12; make the bore smaller than the "
      "outside"),
     (wall({PROBE: 11.0}), "Probe [mm] in this row is 11, outside the body; give a place in it, from the left face"),
     (rod({PROBE: 13.0}), "Probe [mm] in this row is 13, outside the body; give a place in it, a radius"),
@@ -202,8 +203,8 @@ MESSAGES: list[tuple[Call, str]] = [
     (of_wall("right heat out [kW]"), "Right heat out [kW]: the wall in this row needs its area; fill in 'area [m²]'"),
     (row_call("INGLE.ALLOW", WALL, {LIMIT: 15.0}), "Limit [°C] in this row is 15, passed even with no source; raise it or cool the "
      "body more"),
-    (row_call("INGLE.ALLOW", WALL, {"left limit [°C]": 50.0}), "No source reaches the limit in this row, since that face is held "
-     "below it; give a limit for the peak"),
+    (row_call("INGLE.ALLOW", WALL, {"left limit [°C]": 50.0}), "No source reaches the limit in this row: that face is held, or the "
+     "sources cool the body; give a limit for the peak"),
     (of_wall("allowable power [W]", {LIMIT: 50.0}), "Allowable power [W]: the source in this row is its generation; ask for "
      "'allowable generation'"),
     (of_wall("utilisation [%]", {LIMIT: 20.0}), "The allowable source in this row is 0, so none of it can be used; raise the limit"),
@@ -284,6 +285,15 @@ MESSAGES: list[tuple[Call, str]] = [
     (points(((20.0,), (20.0,)), ((1.0,), (2.0,))), "Temperature 20 follows 20; they must rise"),
     (points(*[tuple((float(i),) for i in range(4000))] * 2), "The table has 4000 points, more than a cell can hold; pass fewer"),
 ]  # fmt: skip
+LAYERED = {**WALL, **TWO}
+MESSAGES += [
+    (("INGLE.PROFILE", (((3.0,),), (tuple(LAYERED),), (tuple(LAYERED.values()),))),
+     "The points are 3; a body of 2 layers needs at least 4"),
+    (from_python("shape;conductivity [W/(m·K)]", [["wall", 1.0], ["wall"]]), "A value is neither a column nor a "
+     "block of even rows; give columns of the same rows"),
+]  # fmt: skip
+MESSAGES += [(row_call("INGLE.WHY", law_sentences.BASE, changes), text) for changes, text in law_sentences.CASES]
+MESSAGES += [(row_call("INGLE.ASK", law_sentences.BASE, changes, asked), text) for asked, changes, text in law_sentences.ASKED]
 
 
 @pytest.mark.parametrize(("call", "sentence"), MESSAGES, ids=[sentence[:50] for _, sentence in MESSAGES])
@@ -292,13 +302,21 @@ def test_sentence(call: Call, sentence: str) -> None:
 
 
 # The evaluator's modules; what is wrong with a unit is worded in `units`, whose own tests hold those sentences.
-MESSAGES += [(row_call("INGLE.WHY", law_sentences.BASE, changes), text) for changes, text in law_sentences.CASES]
-MESSAGES += [(row_call("INGLE.ASK", law_sentences.BASE, changes, asked), text) for asked, changes, text in law_sentences.ASKED]
-
-MODULES = ("checks", "recipe", "answers", "evaluate", "tables", "batch", "more_functions", "heading_reader", "asking", "film_headings", "evaluation", "cautions",
-           "case_builder", "text_tables")  # fmt: skip
+MODULES = ("checks", "recipe", "answers", "evaluate", "tables", "batch", "more_functions", "heading_reader", "asking", "cautions",
+           "case_builder", "film_headings", "text_tables")  # fmt: skip
 # Two words in a row that no sentence is made of: names of headings and answers, and patterns.
-NAMES = {*INPUT_NAMES, *ANSWER_NAMES, "peak [°C]", "inner share", "allowable source", "the allowable source", "heat out", "flux in"}
+NAMES = {
+    *INPUT_NAMES,
+    *ANSWER_NAMES,
+    *FILM_LAWS,
+    "fluid kind",
+    "peak [°C]",
+    "inner share",
+    "allowable source",
+    "the allowable source",
+    "heat out",
+    "flux in",
+}
 VERDICTS = {"over limit", "no limit", "no answer"}
 WORDS = re.compile(r"[a-z][,;:']? [a-z(`'\[]")
 

@@ -53,8 +53,8 @@ def _asked(given: Headings) -> list[Asked | Fault]:
 def _table(values: Sequence[Any], plan: Plan) -> tuple[list[Values], Fault | None]:
     try:
         table = [column for value in values for column in _columns(value)]
-    except (TypeError, ValueError) as error:  # ragged rows, more than two dimensions
-        fault = Fault(CellError.VALUE, f"a value is no column and no block of rows ({error}); give columns of the same rows")
+    except (TypeError, ValueError):  # ragged rows, more than two dimensions
+        fault = Fault(CellError.VALUE, "a value is neither a column nor a block of even rows; give columns of the same rows")
         return [Values(np.zeros(1))], fault
     sizes = sorted({len(column) for column in table} - {1})
     if len(sizes) > 1:
