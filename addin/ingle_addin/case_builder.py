@@ -128,11 +128,11 @@ class _Builder:
         held, film, fluid, flux = (self.maybe(f"{side} {name}") for name in ("held", "film", "fluid", "flux in"))
         emissivity, surroundings = self.maybe(f"{side} emissivity"), self.maybe(f"{side} surroundings")
         resistance = self.resistance(f"{side} resistance")
-        if fluid is not None and film is None and emissivity is None and resistance is not None:
+        law = self.recipe.words.get(f"{side} film law")
+        if fluid is not None and film is None and law is None and emissivity is None and resistance is not None:
             held, fluid = fluid, None  # with a fluid and nothing else the resistance alone is the path
         if emissivity is not None and surroundings is None:
             surroundings = fluid
-        law = self.recipe.words.get(f"{side} film law")
         if law is None:
             return Face(held, film, None if film is None else fluid, flux, emissivity, surroundings, resistance)
         size, speed = self.maybe(f"{side} size"), self.maybe(f"{side} speed")

@@ -287,7 +287,7 @@ def _root(problem: Problem, q: tuple[Array, ...], u: Array) -> Array:
         middle = _middle(lo, hi, coldest[rows], of_heat)
         slow = (np.abs(g) > 0.5 * np.abs(before[rows])) & np.isfinite(middle)
         outside = ~((new > lo) & (new < hi)) & np.isfinite(middle)
-        settled = np.abs(step) <= 1e-8 * np.abs(here) + 2e-13 * (0.0 if of_heat else np.abs(part.sink) + KELVIN)
+        settled = np.abs(step) <= 1e-11 * np.abs(here) + 1e-15 * (0.0 if of_heat else np.abs(part.sink) + KELVIN)
         settled |= (g == 0.0) | ~np.isfinite(g)
         new = np.where(settled, np.where(np.isfinite(step), here + step, here), np.where(slow | outside, middle, new))
         before[rows] = np.abs(g)
