@@ -4,6 +4,7 @@ from __future__ import annotations
 
 import contextlib
 import io
+import math
 import os
 import subprocess
 import sys
@@ -15,7 +16,7 @@ from pathlib import Path
 import pytest
 import sheets
 from ingle_addin.command import app as command
-from ingle_addin.command.reference import signature, spelled
+from ingle_addin.command.reference import asked, signature, spelled
 from ingle_addin.functions import FUNCTIONS
 from ingle_addin.headings import ANSWERS, INPUTS
 
@@ -123,13 +124,30 @@ def test_help_waits_for_no_heavy_library(arguments: list[str]) -> None:
 # ask
 
 TABLE = TYPED.replace("= 15.0", "= 20:16.2; 500:21.5")
+# ∫ k dT from the faces, at 23.75, to the peak is q L²/8. By the table k = K + C (T − 20), and rise x has Kx + Cx²/2 of it.
+C, K = 5.3 / 480.0, 16.2 + 3.75 * 5.3 / 480.0
+TABLE_PEAK = 23.75 + (math.sqrt(K * K + 2.0 * C * 3.75) - K) / C
+TABLE_HELD_PEAK = 23.75 + 3.75 / 21.5  # above the table's last point k is held
 ASKED = {
     ("peak [°C]", TYPED): ["peak [°C]  24"],
     ("peak [K]; verdict; why", TYPED): ["peak [K]  297.15", "verdict   no limit", "why       ok"],
     # A piece without = belongs to the value before it.
-    ("peak [°C]", TABLE): ["peak [°C]  #N/A", "Conductivity [W/(m·K)] in this row is a text table, which is not available yet; "
-                           "give one number"],
-    ("why", TABLE): ["why  Conductivity [W/(m·K)] in this row is a text table, which is not available yet; give one number"],
+    ("peak [°C]", TABLE): [f"peak [°C]  {TABLE_PEAK:.7g}"],
+    ("why", TABLE): ["why  ok"],
+    ("peak [°C]", TABLE.replace("20:16.2", "20:16,2")): [
+        "peak [°C]  #VALUE!",
+        "Conductivity [W/(m·K)] in this row has '20:16,2' in its table; write points as temperature:value, 20:16.2",
+    ],
+    ("peak [°C]; verdict; why", TABLE.replace("500:", "22:")): [
+        f"peak [°C]  {TABLE_HELD_PEAK:.7g}",
+        "verdict    caution",
+        "why        Conductivity [W/(m·K)] in this row has a table that does not reach the body's temperatures; its end value is "
+        "held there, so extend it",
+    ],
+    ("peak [°C];", TYPED): ["peak [°C]  24"],  # a ; left at the end asks nothing more
+    ("why", TYPED + "; limit [°C] = 23"): [
+        "why  Limit [°C] in this row is 23, and the peak is above it; lower the source or cool the body more"
+    ],
     ("peak [°C]", "shape = ; thickness [mm] = 3"): ["peak [°C]  #N/A", "Shape in this row is blank; write wall, cylinder or sphere"],
     ("peak [°C]", TYPED.replace("= 3", "= -3")): ["peak [°C]  16.25", "Generation [W/m³] in this row is negative, so the body takes "
                                                  "heat up; make it positive if it heats itself"],
@@ -151,18 +169,21 @@ def test_reference_lists_every_heading_and_function() -> None:
     ran = run("reference", width=400)
     assert (ran.code, ran.err) == (0, [])
     names = {line.split("  ")[0].rstrip() for line in ran.out}
-    expected = {spelled(item.name, item.where) for item in (*INPUTS, *ANSWERS)} | {signature(function) for function in FUNCTIONS}
+    expected = {spelled(item.name, item.where) for item in INPUTS} | {asked(item) for item in ANSWERS}
+    expected |= {signature(function) for function in FUNCTIONS}
     assert expected - names == set()
     heads = {"INPUT HEADINGS", "ANSWER HEADINGS", "FUNCTIONS", "heading", "function", ""}
-    assert names - expected - heads == set(ran.out[-2:])
+    assert names - expected - heads == set(ran.out[-6:-3]) | set(ran.out[-2:])
     assert ran.out[-2:] == [
         "Results are estimates of steady one-dimensional conduction. They do not replace local codes, type tests or the",
         "judgement of a licensed engineer; a part that can burn, overheat a cable or run away needs its own test.",
     ]
     soon = {item.name for item in (*INPUTS, *ANSWERS, *FUNCTIONS) if not item.available}
-    assert sum(line.rstrip().endswith("(not available yet)") for line in ran.out) == sum(
-        not item.available for item in (*INPUTS, *ANSWERS, *FUNCTIONS)
-    )
+    lines = [line.rstrip() for line in ran.out]
+    late = [line for line in lines if line.endswith("(not available yet)")]
+    assert len(late) == sum(not item.available for item in (*INPUTS, *ANSWERS, *FUNCTIONS))
+    # `side` headings of bars and the text tables of sources come later than their headings.
+    assert sum("of a bar: not available yet" in line for line in lines) == sum(item.where.name == "FACE_AND_SIDE" for item in INPUTS)
     assert soon
 
 
@@ -175,7 +196,7 @@ def test_fill_writes_beside_and_tells(tmp_path: Path) -> None:
     assert run("fill", "parts.xlsx", folder=tmp_path) == Ran(0, [
         "4 cells with Ingle formulas and 1 other formula computed; 5 values changed.",
         "1 row without an answer:",
-        "  Data!H3 #NUM!: Thickness [mm] in this row is -10; it must be above 0 and at most 1000000000; correct the value or the "
+        "  Data!H3 #NUM!: Thickness [mm] in this row is -10; it must be above 0 and at most 1e9; correct the value or the "
         "heading's unit",
         "Written to parts.filled.xlsx.",
     ], [])  # fmt: skip

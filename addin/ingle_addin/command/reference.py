@@ -58,10 +58,14 @@ def _input(item: Input) -> tuple[str, str, str]:
 
 def _answer(item: Answer) -> tuple[str, str, str]:
     meaning = item.meaning if item.available else f"{item.meaning} ({_NOT_YET})"
+    return asked(item), units(item), meaning
+
+
+def asked(item: Answer) -> str:
+    """An answer heading with the words and numbers that may stand with it."""
     if item.where is Where.JOINT:
-        return f"joint n {item.name.split()[-1]}", units(item), meaning
-    name = f"left|right {item.name}" if item.where is Where.FACE else spelled(item.name, item.where)
-    return name, units(item), meaning
+        return f"joint n {item.name.split()[-1]}"
+    return f"left|right {item.name}" if item.where is Where.FACE else spelled(item.name, item.where)
 
 
 def spelled(name: str, where: Where) -> str:
