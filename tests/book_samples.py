@@ -92,9 +92,7 @@ def rewritten(source: Path, target: Path, change: Callable[[str, bytes], bytes |
     return target
 
 
-def with_sheet_xml(
-    path: Path, data: str, *, names: str = "", prefix: str = "", encoding: str = "UTF-8", head: str = ""
-) -> Path:
+def with_sheet_xml(path: Path, data: str, *, names: str = "", prefix: str = "", encoding: str = "UTF-8", head: str = "") -> Path:
     """The smallest workbook around a hand-written ``<sheetData>`` content."""
     colon = f"{prefix}:" if prefix else ""
     space = f'xmlns:{prefix}="{MAIN}"' if prefix else f'xmlns="{MAIN}"'

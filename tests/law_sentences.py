@@ -27,7 +27,8 @@ CASES: list[tuple[dict[str, object], str]] = [
      "atmosphere; choose another fluid or law"),
     ({**PLATE, FLUID: 1800.0, HELD: 1900.0}, "Left film law in this row: the fluid's temperatures are outside those its "
      f"properties are known for; {GUESS}"),
-    ({LAW: "hot face down", SIZE: 0.1, FLUID: 20.0}, f"Left film law in this row: its Rayleigh number is outside the law's range; {GUESS}"),
+    ({LAW: "hot face down", SIZE: 0.1, FLUID: 20.0}, "Left film law in this row: its Rayleigh number is outside the law's range; "
+     f"{GUESS}"),
     ({**FLOW, SPEED: 0.001}, f"Left film law in this row: its Reynolds number is outside the law's range; {GUESS}"),
     ({**FLOW, **THIN, SPEED: 50.0, SIZE: 1000.0, HELD: 1000.0}, "Left film law in this row: a hotter face would lose less heat "
      "there, so other temperatures are possible too; test it"),

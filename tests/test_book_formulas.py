@@ -64,9 +64,7 @@ def test_ordinary_formula(tmp_path: Path, formula: str, value: object) -> None:
 
 
 @pytest.mark.parametrize(("cell", "value"), [("E3", 60), ("E9", "#VALUE!")])
-def test_a_range_where_one_value_belongs_means_the_cell_in_the_own_row(
-    tmp_path: Path, cell: str, value: object
-) -> None:
+def test_a_range_where_one_value_belongs_means_the_cell_in_the_own_row(tmp_path: Path, cell: str, value: object) -> None:
     cells, _, _ = filled(with_cells(tmp_path / "book.xlsx", {**DATA, cell: "=B1:B5*2", "G1": "untouched"}))
     assert cells[cell] == value
     assert cells["G1"] == "untouched"
@@ -107,9 +105,7 @@ def test_tables(tmp_path: Path) -> None:
         page.write_row("B2", ["thickness [mm]", "q]x", "out", "sum"])
         page.write_row("B3", [1, 2])
         page.write_row("B4", [3, None])
-        page.add_table(
-            "B2:E4", {"name": "Cases", "columns": [{"header": h} for h in ("thickness [mm]", "q]x", "out", "sum")]}
-        )
+        page.add_table("B2:E4", {"name": "Cases", "columns": [{"header": h} for h in ("thickness [mm]", "q]x", "out", "sum")]})
         for row in (3, 4):
             page.write_formula(
                 f"D{row}",
@@ -159,9 +155,7 @@ def test_spellings(tmp_path: Path, spelling: str, around: str) -> None:
 def test_a_misspelt_function_is_listed(tmp_path: Path) -> None:
     cells, report, _ = filled(with_cells(tmp_path / "book.xlsx", {"A1": "=IFERROR(INGLE.PEEK(1),5)"}))
     assert cells["A1"] == 0
-    assert [(each.cell, each.reason) for each in report.not_computed] == [
-        ("A1", "INGLE.PEEK is not a function of Ingle")
-    ]
+    assert [(each.cell, each.reason) for each in report.not_computed] == [("A1", "INGLE.PEEK is not a function of Ingle")]
 
 
 def test_nested_calls(tmp_path: Path) -> None:

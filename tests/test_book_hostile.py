@@ -85,10 +85,7 @@ def test_other_zip_files(tmp_path: Path, parts: tuple[str, ...], message: str) -
 
 def test_binary_workbook(tmp_path: Path) -> None:
     book = part_changed(tmp_path, "_rels/.rels", lambda content: content.replace(b"workbook.xml", b"workbook.bin"))
-    assert (
-        refusal(book)
-        == "DIR/book.xlsx is a binary .xlsb workbook; open it in the spreadsheet program and save it as .xlsx"
-    )
+    assert refusal(book) == "DIR/book.xlsx is a binary .xlsb workbook; open it in the spreadsheet program and save it as .xlsx"
 
 
 @pytest.mark.parametrize("length", [0.3, 0.7, 0.98])
@@ -127,14 +124,10 @@ def test_missing_part(tmp_path: Path, part: str) -> None:
         "xl/worksheets/sheet1.xml",
     ],
 )
-@pytest.mark.parametrize(
-    "doctype", [b'<!DOCTYPE x [<!ENTITY e SYSTEM "file:///etc/passwd">]>', b'<!DOCTYPE x [<!ENTITY a "aaaa">]>']
-)
+@pytest.mark.parametrize("doctype", [b'<!DOCTYPE x [<!ENTITY e SYSTEM "file:///etc/passwd">]>', b'<!DOCTYPE x [<!ENTITY a "aaaa">]>'])
 def test_document_type(tmp_path: Path, part: str, doctype: bytes) -> None:
     book = part_changed(tmp_path, part, lambda content: content.replace(b"?>", b"?>" + doctype, 1))
-    assert (
-        refusal(book) == f"DIR/book.xlsx: the part {part} declares a document type, which no workbook needs; not opened"
-    )
+    assert refusal(book) == f"DIR/book.xlsx: the part {part} declares a document type, which no workbook needs; not opened"
 
 
 @pytest.mark.parametrize(
@@ -280,10 +273,7 @@ def test_in_place_keeps_a_backup_and_the_mode(book: Path) -> None:
 
 
 def test_itself_as_output(book: Path) -> None:
-    assert (
-        refusal(book, book)
-        == "DIR/book.xlsx is the workbook itself; name another file, or say --in-place to replace it"
-    )
+    assert refusal(book, book) == "DIR/book.xlsx is the workbook itself; name another file, or say --in-place to replace it"
 
 
 def test_output_and_in_place(book: Path) -> None:
@@ -338,9 +328,7 @@ def test_read_only_folder(book: Path, monkeypatch: pytest.MonkeyPatch) -> None:
 
 @pytest.mark.parametrize("in_place", [False, True])
 @pytest.mark.parametrize("failure", [KeyboardInterrupt(), OSError(28, "No space left on device")])
-def test_a_stopped_write_leaves_nothing(
-    book: Path, monkeypatch: pytest.MonkeyPatch, in_place: bool, failure: BaseException
-) -> None:
+def test_a_stopped_write_leaves_nothing(book: Path, monkeypatch: pytest.MonkeyPatch, in_place: bool, failure: BaseException) -> None:
     def stop(_book: object, _changes: object, file: io.BufferedWriter) -> None:
         file.write(b"half")
         raise failure

@@ -254,16 +254,12 @@ def test_a_byte_order_mark_does_not_shift_anything(tmp_path: Path) -> None:
 
 
 texts = st.text(st.characters(exclude_categories=["Cs"]), max_size=12)
-values = st.one_of(
-    st.floats(allow_nan=False, allow_infinity=False), st.booleans(), st.sampled_from(list(CellError)), texts
-)
+values = st.one_of(st.floats(allow_nan=False, allow_infinity=False), st.booleans(), st.sampled_from(list(CellError)), texts)
 
 
 @settings(max_examples=150, deadline=None, suppress_health_check=[HealthCheck.function_scoped_fixture])
 @given(
-    cells=st.dictionaries(
-        st.tuples(st.integers(1, 30), st.integers(1, 40)), st.tuples(values, values, st.booleans()), min_size=1
-    ),
+    cells=st.dictionaries(st.tuples(st.integers(1, 30), st.integers(1, 40)), st.tuples(values, values, st.booleans()), min_size=1),
     prefix=st.sampled_from(["", "x:"]),
     quote=st.sampled_from("\"'"),
     space=st.sampled_from(["", " ", "\n  "]),

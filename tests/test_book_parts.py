@@ -233,8 +233,7 @@ def test_the_engine_works_element_by_element_where_it_is_said_to(tmp_path: Path)
         for place, name in enumerate(sorted(VECTORISED), 1):
             column = (
                 "C"
-                if name
-                in ("DATE", "ACOT", "ACOTH", "SEC", "SECH", "ISOWEEKNUM", "DAY", "MONTH", "YEAR", "WEEKDAY", "ODD")
+                if name in ("DATE", "ACOT", "ACOTH", "SEC", "SECH", "ISOWEEKNUM", "DAY", "MONTH", "YEAR", "WEEKDAY", "ODD")
                 else "A"
             )
             column = (

@@ -14,6 +14,8 @@ from network_drawn import Law, draw_problem
 from scipy.optimize import brentq
 from scipy.special import j0, j1
 
+pytestmark = pytest.mark.long  # half a minute; the engine's own tests beside it run always
+
 L = SourceLaw
 # First zeros of the insulated-middle problem with the face held: π/2, first zero of J₀ (Abramowitz & Stegun table 9.5), π.
 FIRST_ZERO = (np.pi / 2.0, 2.404825557695773, np.pi)

@@ -95,7 +95,7 @@ def test_allowable_is_linear_in_the_room_and_blind_to_a_blank_source() -> None:
     assert full[2:3] + full[4:] == ["limit", "#N/A"]
     blank = ask(names, text, "sphere", SIZE, K, 20.0, 120.0, None)
     assert blank[0] == pytest.approx(exact, rel=1e-9)
-    assert blank[1:] == ["#N/A"] * 4
+    assert blank[1:] == ["#N/A", "limit", "#N/A", "#N/A"]
     assert one("allowable generation [W/m³]", text, "sphere", SIZE, K, 20.0, 15.0, 0.1) == "#NUM!"
 
 

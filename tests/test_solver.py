@@ -289,8 +289,15 @@ def test_misuse_is_refused_with_its_reason() -> None:
     layer = Layer(one, one, one)
     with pytest.raises(ValueError, match=r"^a film needs its fluid temperature, and a fluid temperature its film$"):
         Face(film=one)
-    with pytest.raises(ValueError, match=r"^a body of one layer is needed; bodies of several layers are not available yet$"):
-        Cases(Shape.WALL, (layer, layer), Face(), Face(held=one))
+    several = r"^there is a joint between each two layers and a limit for each layer$"
+    for layers, joints, limits in ((2, 2, 0), (3, 1, 0), (1, 1, 0), (2, 1, 1), (2, 0, 3)):
+        with pytest.raises(ValueError, match=several):
+            Cases(Shape.WALL, (layer,) * layers, Face(), Face(held=one), joints=(one,) * joints, layer_limits=(one,) * limits)
+    assert len(Cases(Shape.WALL, (layer,) * 3, Face(), Face(held=one), joints=(one, None), layer_limits=(None, one, one))) == 1
+    with pytest.raises(ValueError, match=r"^a body has at least one layer$"):
+        Cases(Shape.WALL, (), Face(), Face(held=one))
+    with pytest.raises(ValueError, match=r"^radiation needs its surroundings$"):
+        Face(emissivity=one)
     with pytest.raises(KeyError, match=r"^'warmth'$"):
         steady(Cases(Shape.WALL, (layer,), Face(), Face(held=one)), ("peak", "warmth"))
 

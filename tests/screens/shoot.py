@@ -85,9 +85,7 @@ def _values_only(book: Path, copy: Path) -> None:
 @contextmanager
 def _running(command: list[str], environment: Environment) -> Iterator[None]:
     """A program that is ended with the block."""
-    process = subprocess.Popen(
-        command, env=environment, start_new_session=True, stdout=subprocess.DEVNULL, stderr=subprocess.DEVNULL
-    )
+    process = subprocess.Popen(command, env=environment, start_new_session=True, stdout=subprocess.DEVNULL, stderr=subprocess.DEVNULL)
     try:
         yield
     finally:

@@ -115,9 +115,7 @@ class Archive:
         if self._inflated > 2 * MAX_TOTAL_BYTES:  # every sheet is read twice: to compute and to write
             raise BookError(f"{path} is larger than {MAX_TOTAL_BYTES >> 20} MB unpacked; split the workbook")
         if size > RATIO_FREE_BYTES and size > MAX_RATIO * max(1, info.compress_size):
-            raise BookError(
-                f"{path}: the part {name} unpacks to more than {MAX_RATIO} times its size, as no honest workbook does"
-            )
+            raise BookError(f"{path}: the part {name} unpacks to more than {MAX_RATIO} times its size, as no honest workbook does")
 
     def copy(self, out: IO[bytes], changed: Mapping[str, bytes]) -> None:
         """Write the same archive to ``out``: parts in their order, unchanged ones without being unpacked.
@@ -171,11 +169,7 @@ def _write_member(out: IO[bytes], info: zipfile.ZipInfo, payload: bytes, crc: in
     offset = out.tell()
     needs = max(20, min(info.extract_version, 45)) if method != zipfile.ZIP_STORED else 10
     reserved = 0
-    out.write(
-        _LOCAL.pack(
-            b"PK\3\4", needs, reserved, flags, method, time, date, crc, len(payload), size, len(name), len(extra)
-        )
-    )
+    out.write(_LOCAL.pack(b"PK\3\4", needs, reserved, flags, method, time, date, crc, len(payload), size, len(name), len(extra)))
     out.write(name)
     out.write(extra)
     out.write(payload)

@@ -83,9 +83,7 @@ class Binder:
             made.append(Call(each.name, sheet, key, args, state.level, state.moves, state.whole_column))
         return made
 
-    def _argument(
-        self, plan: ArgPlan, slots: Sequence[str], sheet: int, key: int, made: list[Call], state: _State
-    ) -> Argument:
+    def _argument(self, plan: ArgPlan, slots: Sequence[str], sheet: int, key: int, made: list[Call], state: _State) -> Argument:
         match plan:
             case Omitted():
                 return Constant(())
@@ -107,9 +105,7 @@ class Binder:
                 return self._computed(plan, slots, key, made, state)
             case ChoiceArg(selector, branches, is_if):
                 chosen = self._single(selector, slots, key, made, state)
-                return Choice(
-                    chosen, [self._argument(each, slots, sheet, key, made, state) for each in branches], is_if
-                )
+                return Choice(chosen, [self._argument(each, slots, sheet, key, made, state) for each in branches], is_if)
             case IndexArg(ref, row, column):
                 rect = rect_of(ref, slots, key)
                 if rect is None:
@@ -189,9 +185,7 @@ class Binder:
         self, plan: HelperArg, slots: Sequence[str], key: int, element: tuple[int, int] | None, made: list[Call]
     ) -> Callable[[], str]:
         def write() -> str:
-            return render(
-                plan.pieces, slots, key, element, lambda call, whole, at: self._address(made[call], whole, at)
-            )
+            return render(plan.pieces, slots, key, element, lambda call, whole, at: self._address(made[call], whole, at))
 
         return write
 

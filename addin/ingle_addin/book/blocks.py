@@ -60,8 +60,4 @@ class Blocks:
         rect = call.block
         if rect is None:
             return []
-        return [
-            (key_of(rect.top + i, rect.left + j), plain(value))
-            for i, row in enumerate(call.grid)
-            for j, value in enumerate(row)
-        ]
+        return [(key_of(rect.top + i, rect.left + j), plain(value)) for i, row in enumerate(call.grid) for j, value in enumerate(row)]

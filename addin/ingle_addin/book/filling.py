@@ -82,9 +82,7 @@ def report_of(book: Book, computed: Computed, changed: int, out: Path | None, ba
     """The report of a computation."""
     remarks = []
     if book.parts.displayed_precision:
-        remarks.append(
-            "The workbook is set to calculate with the precision displayed; here the full precision was used."
-        )
+        remarks.append("The workbook is set to calculate with the precision displayed; here the full precision was used.")
     return Report(
         book=book.path,
         out=out,

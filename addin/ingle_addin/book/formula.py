@@ -213,9 +213,7 @@ class _Parser:
                 self._at += 1
                 if text in ("!", "#"):
                     raise UnreadableError(
-                        "it refers to the spilled range of a cell (A1#)"
-                        if text == "#"
-                        else "the formula could not be read"
+                        "it refers to the spilled range of a cell (A1#)" if text == "#" else "the formula could not be read"
                     )
                 if text == ":":
                     raise UnreadableError("it joins two references with a colon")

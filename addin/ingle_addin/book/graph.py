@@ -178,8 +178,4 @@ def _size(rect: Rect) -> int:
 
 
 def _keys(rect: Rect) -> list[int]:
-    return [
-        key
-        for row in range(rect.top, rect.bottom + 1)
-        for key in range(key_of(row, rect.left), key_of(row, rect.right) + 1)
-    ]
+    return [key for row in range(rect.top, rect.bottom + 1) for key in range(key_of(row, rect.left), key_of(row, rect.right) + 1)]

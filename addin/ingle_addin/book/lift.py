@@ -60,9 +60,7 @@ _RANGE = "range"  # a range may stand alone; inside operators it is as in _ONE (
 _ARRAY = "array"  # the engine works on all elements
 
 # Looked-up cells that may be empty: asked about with ISBLANK, since the engine hands back 0 for them.
-_LOOK_UPS = frozenset(
-    ["VLOOKUP", "HLOOKUP", "LOOKUP", "XLOOKUP", "INDEX", "IF", "IFS", "SWITCH", "IFERROR", "IFNA", "CHOOSE"]
-)
+_LOOK_UPS = frozenset(["VLOOKUP", "HLOOKUP", "LOOKUP", "XLOOKUP", "INDEX", "IF", "IFS", "SWITCH", "IFERROR", "IFNA", "CHOOSE"])
 # The engine's ISBLANK is wrong about these.
 _NEVER_PLAIN = frozenset(["OFFSET", "INDIRECT", "CHOOSE"])
 
@@ -104,9 +102,7 @@ class Lifter:
 def _has_call(expression: Expr, spelling: Spelling) -> bool:
     for node in expression:
         if isinstance(node, Func) and (
-            spelling.canonical(node.name)
-            or spelling.is_misspelt(node.name)
-            or any(_has_call(a, spelling) for a in node.args)
+            spelling.canonical(node.name) or spelling.is_misspelt(node.name) or any(_has_call(a, spelling) for a in node.args)
         ):
             return True
         if isinstance(node, Group) and _has_call(node.body, spelling):

@@ -34,9 +34,7 @@ def parser(path: Path, part: str) -> expat.XMLParserType:
 
     def declaration(_version: str, encoding: str | None, _standalone: int) -> None:
         if encoding is not None and encoding.lower() not in ("utf-8", "utf8", "us-ascii", "ascii"):
-            raise _RefusedError(
-                f"{path}: the part {part} is written in {encoding}, not UTF-8; open it and save it anew"
-            )
+            raise _RefusedError(f"{path}: the part {part} is written in {encoding}, not UTF-8; open it and save it anew")
 
     made.StartDoctypeDeclHandler = doctype
     made.XmlDeclHandler = declaration
@@ -49,18 +47,14 @@ def feed(made: expat.XMLParserType, chunks: Iterable[bytes], path: Path, part: s
     try:
         for chunk in chunks:
             if first and chunk[:2] in (b"\xff\xfe", b"\xfe\xff", b"<\x00", b"\x00<"):
-                raise _RefusedError(
-                    f"{path}: the part {part} is written in UTF-16, not UTF-8; open it and save it anew"
-                )
+                raise _RefusedError(f"{path}: the part {part} is written in UTF-16, not UTF-8; open it and save it anew")
             first = False
             made.Parse(chunk, False)
         made.Parse(b"", True)
     except _RefusedError as refusal:
         raise BookError(str(refusal)) from None
     except expat.ExpatError:
-        raise BookError(
-            f"{path} is damaged in its part {part}; open it in the spreadsheet program and save it anew"
-        ) from None
+        raise BookError(f"{path} is damaged in its part {part}; open it in the spreadsheet program and save it anew") from None
 
 
 def main_name(name: str) -> str | None:

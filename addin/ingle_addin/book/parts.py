@@ -87,9 +87,7 @@ def _workbook_part(archive: Archive) -> str:
     for kind, target in _relations(archive, "").values():
         if kind == "officeDocument":
             if target.lower().endswith(".bin"):
-                raise BookError(
-                    f"{path} is a binary .xlsb workbook; open it in the spreadsheet program and save it as .xlsx"
-                )
+                raise BookError(f"{path} is a binary .xlsb workbook; open it in the spreadsheet program and save it as .xlsx")
             if target in archive:
                 return target
             raise BookError(f"{path} lacks the part {target}; open it in the spreadsheet program and save it anew")
@@ -154,9 +152,7 @@ def _read_workbook(archive: Archive, part: str, relations: dict[str, tuple[str, 
         kind, target = relations.get(relation, ("", ""))
         if kind == "worksheet":
             if target not in archive:
-                raise BookError(
-                    f"{archive.path} lacks the part {target}; open it in the spreadsheet program and save it anew"
-                )
+                raise BookError(f"{archive.path} lacks the part {target}; open it in the spreadsheet program and save it anew")
             positions[position] = len(parts.sheets)
             parts.sheets.append(SheetPart(name, target))
     if not parts.sheets:
@@ -253,9 +249,7 @@ def _read_table(archive: Archive, part: str, sheet: int) -> Table:
     feed(made, archive.stream(part), archive.path, part)
     rect = parse_rect(head.get("ref", ""))
     if rect is None:
-        raise BookError(
-            f"{archive.path} is damaged in its part {part}; open it in the spreadsheet program and save it anew"
-        )
+        raise BookError(f"{archive.path} is damaged in its part {part}; open it in the spreadsheet program and save it anew")
     return Table(
         name=head.get("displayName", head.get("name", "")),
         sheet=sheet,

@@ -262,8 +262,4 @@ def cell_keys(rect: Rect) -> range | list[int]:
     if rect.rows == 1:
         start = key_of(rect.top, rect.left)
         return range(start, start + rect.columns)
-    return [
-        key
-        for row in range(rect.top, rect.bottom + 1)
-        for key in range(key_of(row, rect.left), key_of(row, rect.right) + 1)
-    ]
+    return [key for row in range(rect.top, rect.bottom + 1) for key in range(key_of(row, rect.left), key_of(row, rect.right) + 1)]

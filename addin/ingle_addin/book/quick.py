@@ -49,9 +49,7 @@ def quick_scan(content: bytes, parts: Parts, path: Path, part: str) -> Sheet | N
     arrays: list[Rect] = []
     bottom = right = count = 0
     for match in _ITEM.finditer(content, begin, finish):
-        letters, digits, style, kind, more, formula_attributes, formula, raw, inline, close, row_attributes, other = (
-            match.groups()
-        )
+        letters, digits, style, kind, more, formula_attributes, formula, raw, inline, close, row_attributes, other = match.groups()
         if letters is None:
             if other is not None:
                 return None

@@ -32,9 +32,7 @@ class Resolver:
     def __init__(self, parts: Parts) -> None:
         self._parts = parts
         self._sheets = {sheet.name.casefold(): index for index, sheet in enumerate(parts.sheets)}
-        self._names: dict[tuple[str, int | None], DefinedName] = {
-            (name.name.casefold(), name.scope): name for name in parts.names
-        }
+        self._names: dict[tuple[str, int | None], DefinedName] = {(name.name.casefold(), name.scope): name for name in parts.names}
         self._tables = {table.name.casefold(): table for table in parts.tables}
 
     def sheet(self, name: str) -> int:

@@ -88,9 +88,7 @@ class _Rounds:
             keys = range(start, start + rect.columns)
             cells = tuple(map(get, keys))
             if dated and not dated.isdisjoint(keys):
-                cells = tuple(
-                    self._dated(value) if key in dated else value for key, value in zip(keys, cells, strict=True)
-                )
+                cells = tuple(self._dated(value) if key in dated else value for key, value in zip(keys, cells, strict=True))
             rows.append(cells)
         return tuple(rows)
 
@@ -136,15 +134,11 @@ class _Rounds:
                     continue
                 values = work.engine.values(sheet, keys)
                 work.values[sheet].update(zip(keys, values, strict=True))
-                strange += [
-                    ((sheet, key), value) for key, value in zip(keys, values, strict=True) if isinstance(value, Strange)
-                ]
+                strange += [((sheet, key), value) for key, value in zip(keys, values, strict=True) if isinstance(value, Strange)]
             if not strange or not self._keep_strange(strange):
                 break
         if work.helper.keys:
-            self._helper_values.update(
-                zip(work.helper.keys, work.engine.values(work.helper_index, work.helper.keys), strict=True)
-            )
+            self._helper_values.update(zip(work.helper.keys, work.engine.values(work.helper_index, work.helper.keys), strict=True))
 
     def _keep_strange(self, strange: list[tuple[Place, str]]) -> bool:
         """Give up formulas that the engine cannot do; whether there were any (others only rest on them)."""
@@ -258,11 +252,7 @@ class _Rounds:
             call.reasons = [_WHOLE_COLUMN]
         elif many:
             self._note_truncated(call, range_name(stored))
-        cells = (
-            list(laid(call.grid, stored, cell.dynamic))
-            if cell.kind == "array"
-            else [(cell.key, plain(call.grid[0][0]))]
-        )
+        cells = list(laid(call.grid, stored, cell.dynamic)) if cell.kind == "array" else [(cell.key, plain(call.grid[0][0]))]
         self._work.values[call.sheet].update(cells)
         self._dirty[call.sheet] += cells
 
@@ -279,11 +269,7 @@ class _Rounds:
                 work.engine.put(sheet, cells)
             if self._moved:
                 work.rewrite(
-                    [
-                        lifted
-                        for lifted in work.nested
-                        if lifted.elements and any(id(call) in self._moved for call in lifted.calls)
-                    ]
+                    [lifted for lifted in work.nested if lifted.elements and any(id(call) in self._moved for call in lifted.calls)]
                 )
                 for key, write, calls in work.helper.open:
                     if any(id(call) in self._moved for call in calls):
@@ -374,9 +360,7 @@ class _Rounds:
         is_ingle = not rests and found is not None and found[2].is_ingle
         return NotComputed(self._book.name_of(place[0]), cell_name(place[1]), reason, rests, is_ingle)
 
-    def _note_unanswered(
-        self, call: Call, cell: FormulaCell | None, answers: dict[tuple[int, int, int], NoAnswer]
-    ) -> None:
+    def _note_unanswered(self, call: Call, cell: FormulaCell | None, answers: dict[tuple[int, int, int], NoAnswer]) -> None:
         row, column = place_of(call.key)
         for i, j, error, reason in unanswered(call.grid, call.reasons):
             # A nested call's own rows are nowhere to be seen: its formula's cell stands for them.

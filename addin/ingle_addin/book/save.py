@@ -19,9 +19,7 @@ def refuse_if_open(path: Path) -> None:
     """Refuse a workbook that a spreadsheet program has open: it would save its own copy over ours."""
     for lock in (path.with_name(f".~lock.{path.name}#"), path.with_name(f"~${path.name}")):
         if lock.exists():
-            raise BookError(
-                f"{path} is open in a spreadsheet program; close it there first (or delete {lock.name} if it is not)"
-            )
+            raise BookError(f"{path} is open in a spreadsheet program; close it there first (or delete {lock.name} if it is not)")
 
 
 def check_target(source: Path, out: Path, *, in_place: bool) -> None:
@@ -41,9 +39,7 @@ def check_target(source: Path, out: Path, *, in_place: bool) -> None:
         refuse_if_open(out)
 
 
-def place(
-    source: Path, mark: Fingerprint, out: Path, write: Callable[[IO[bytes]], None], *, in_place: bool
-) -> Path | None:
+def place(source: Path, mark: Fingerprint, out: Path, write: Callable[[IO[bytes]], None], *, in_place: bool) -> Path | None:
     """Let ``write`` fill a file beside ``out``, then move it there; return the backup kept of ``source``, if any.
 
     A run that is stopped at any moment leaves the old file whole. Refuses if ``source`` no longer is the file that was

@@ -79,9 +79,7 @@ def scan_sheet(chunks: Iterable[bytes], parts: Parts, path: Path, part: str) -> 
     texts, date_styles = parts.texts, frozenset(str(index) for index in parts.date_styles)
     made = parser(path, part)
     kinds: dict[str, str] = {
-        f"{space}{SEPARATOR}{name}": name
-        for space in MAIN_NAMESPACES
-        for name in ("sheetData", "row", "c", "v", "f", "is", "t", "r")
+        f"{space}{SEPARATOR}{name}": name for space in MAIN_NAMESPACES for name in ("sheetData", "row", "c", "v", "f", "is", "t", "r")
     }
     columns: dict[str, int] = {}
     state, skip = _OUTSIDE, 0

@@ -122,9 +122,7 @@ def _sorted_children(prefix: bytes, inner: bytes) -> tuple[bytes, bytes]:
             # At an empty element the index is past it already; at any other it is at the end tag.
             position = made.CurrentByteIndex - len(head)
             is_end_tag = inner[position : position + 2] == b"</" and position > opened and not _is_empty(inner, opened)
-            spans.append(
-                (name_opened, opened, inner.index(b">", position) + 1 if is_end_tag else _tag_end(inner, opened))
-            )
+            spans.append((name_opened, opened, inner.index(b">", position) + 1 if is_end_tag else _tag_end(inner, opened)))
         depth -= 1
 
     made.StartElementHandler, made.EndElementHandler = start, end

@@ -270,9 +270,7 @@ def _engine_names(names: Sequence[str]) -> list[str]:
     found: list[str] = []
     for index, name in enumerate([*names, "in", "out", "try"]):
         ours = index >= len(names)
-        good = (
-            not ours and 0 < len(name) <= 31 and not _FORBIDDEN_IN_NAMES.search(name) and "'" not in (name[0], name[-1])
-        )
+        good = not ours and 0 < len(name) <= 31 and not _FORBIDDEN_IN_NAMES.search(name) and "'" not in (name[0], name[-1])
         free = name if good and name.casefold() not in taken else f"of Ingle {index}"
         while free.casefold() in taken:
             free += "'s"
