@@ -14,6 +14,7 @@ from pathlib import Path
 
 import numpy as np
 import openpyxl
+import pytest
 import reference
 import xlsxwriter
 from ingle_addin import ask
@@ -188,6 +189,7 @@ def answered_alone(answer: str, heads: list[str], row: list[object]) -> str:
     return str(outcome.reasons[0])
 
 
+@pytest.mark.long
 def test_the_wider_scope_agrees_with_the_reference() -> None:
     """Rows that use what is not available yet, and such answers of other rows, are left out and counted."""
     wrong: list[str] = []

@@ -120,7 +120,7 @@ INPUTS: tuple[Input, ...] = (
     Input("beam flux", (Kind.HEAT_FLUX,), "walls: q = μ Φ e^(−μ s)", Where.BODY, 0.0, 1e15, False),
     Input("absorption coefficient", (Kind.ATTENUATION,), "of a beam, or of a generation that decays", _LAYER, 0.0, 1e12, False),
     Input("beam enters", _TEXT, "left (if blank), right or both", texts=("left", "right", "both")),
-    Input("joint", (Kind.AREA_RESISTANCE, Kind.FILM), "between two layers, per area where they meet", Where.JOINT, 0.0, 1e9,
+    Input("joint", (Kind.AREA_RESISTANCE, Kind.FILM), "between two layers, per area where they meet", Where.JOINT, 0.0, 1e20,
           False, available=True),
     _temperature("held", "temperature the face is held at", _FACE, available=True),
     Input("flux in", (Kind.HEAT_FLUX,), "heat put into the body at that surface; may stand beside a film", _FACE, -1e20,
@@ -129,7 +129,7 @@ INPUTS: tuple[Input, ...] = (
     _temperature("fluid", "temperature of the fluid, with its film", _BOTH, available=True),
     Input("emissivity", _N, "radiation to large surroundings", _BOTH, 0.0, 1.0, False, available=True),
     _temperature("surroundings", "of the radiation; the fluid's temperature if blank", _BOTH, available=True),
-    Input("resistance", (Kind.AREA_RESISTANCE, Kind.FILM), "between the face and its outermost surface", _FACE, 0.0, 1e9,
+    Input("resistance", (Kind.AREA_RESISTANCE, Kind.FILM), "between the face and its outermost surface", _FACE, 0.0, 1e20,
           False, available=True),
     Input("film law", _TEXT, "film coefficient by a published law", _BOTH, texts=FILM_LAWS, available=True),
     Input(

@@ -120,9 +120,8 @@ def layer_mean(state: State, number: int) -> Array:
         total = np.zeros_like(ends.T0)
         nodes = _SMOOTH if layer.k.table is None else _CORNERED
         for node, weight in zip(*nodes, strict=True):
-            V = layer.V * ((1.0 + node) / 2.0)
-            s = np.minimum(depth_of_volume(shape, layer.a, V), layer.d) if layer.W is not None else _solid_depth(shape, layer, V)
-            total = total + (weight / 2.0) * (layer_rise(state, number, s) - ends.T0)
+            s, share = _spot(shape, layer, (1.0 + node) / 2.0)
+            total = total + (weight / 2.0) * share * (layer_rise(state, number, s) - ends.T0)
         return ends.T0 + total
     if layer.W is None:
         U = solid_source_square(shape, layer.d)
@@ -132,9 +131,19 @@ def layer_mean(state: State, number: int) -> Array:
     return ends.T0 - (conducted + q * (layer.V * layer.D - U)) / (layer.k * layer.V)
 
 
-def _solid_depth(shape: Shape, layer: LayerSteps, V: Array) -> Array:
-    share = V / layer.V
-    return layer.d * (np.sqrt(share) if shape == Shape.CYLINDER else np.cbrt(share))
+def _spot(shape: Shape, layer: LayerSteps, x: float) -> tuple[Array, Array | float]:
+    """A place s at a share x of a layer, and dV/dx over V there: even in V of a solid body, in ln r of a hollow one.
+
+    A thick shell's temperature changes most near its bore, which has little of the volume.
+    """
+    if layer.W is None:
+        return layer.d * (np.sqrt(x) if shape == Shape.CYLINDER else np.cbrt(x)), 1.0
+    if shape == Shape.WALL:
+        return layer.d * x, 1.0
+    log = np.log1p(layer.d / layer.a)
+    s = np.minimum(layer.a * np.expm1(log * x), layer.d)
+    r = layer.a + s
+    return s, log * r * (r if shape == Shape.CYLINDER else r * r) / layer.V
 
 
 def mean_rise(state: State) -> Array:

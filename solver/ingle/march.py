@@ -262,6 +262,10 @@ def _body_resistance(problem: Problem) -> Array:
     R = np.zeros_like(problem.sink)
     for layer in problem.layers:
         R = R + (layer.D / layer.V if layer.W is None else layer.W) / _k_of(layer, problem.sink)
+        R = R if layer.joint is None else R + layer.joint
+    for side, A in ((problem.left, problem.area_left), (problem.right, problem.area_right)):
+        if side.resistance is not None:
+            R = R + np.where(A > 0.0, side.resistance / np.where(A > 0.0, A, 1.0), 0.0)
     return R
 
 
@@ -287,7 +291,7 @@ def _root(problem: Problem, q: tuple[Array, ...], u: Array) -> Array:
         middle = _middle(lo, hi, coldest[rows], of_heat)
         slow = (np.abs(g) > 0.5 * np.abs(before[rows])) & np.isfinite(middle)
         outside = ~((new > lo) & (new < hi)) & np.isfinite(middle)
-        settled = np.abs(step) <= 1e-11 * np.abs(here) + 1e-15 * (0.0 if of_heat else np.abs(part.sink) + KELVIN)
+        settled = np.abs(step) <= 1e-11 * np.abs(here)
         settled |= (g == 0.0) | ~np.isfinite(g)
         new = np.where(settled, np.where(np.isfinite(step), here + step, here), np.where(slow | outside, middle, new))
         before[rows] = np.abs(g)
