@@ -201,7 +201,7 @@ LAYERS = Table(
          "Joint 2 [m²·K/W] in {row} needs layer 3, which this body has not; describe that layer or leave it blank"),
         ({"limit 4 [°C]": 90.0}, NA,
          "Limit 4 [°C] in {row} needs layer 4, which this body has not; describe that layer or leave it blank"),
-        ({JOINT: -1e-4}, NUM, f"Joint 1 [m²·K/W] in {{row}} is -0.0001; {RANGE} 1e9; {HEADING_UNIT}"),
+        ({JOINT: -1e-4}, NUM, f"Joint 1 [m²·K/W] in {{row}} is -0.0001; {RANGE} 1e20; {HEADING_UNIT}"),
         ({JOINT2: 1e-4, "joint 2 [W/(m²·K)]": 1e4}, VALUE, both("Joint 2 [m²·K/W]", "joint 2 [W/(m²·K)]", "joint 2")),
         ({"joint 2 [W/(m²·K)]": 0.0}, NUM, "Joint 2 [W/(m²·K)] in {row} is 0; a conductance is above 0"),
         ({SLOPE: -1.0, Q: 3e8}, NUM, "The conductivity in {row} falls to zero within the body at its temperature; check the slope or "
@@ -275,7 +275,7 @@ RADIATING = Table(
          "Left emissivity in {row} needs the temperature of its surroundings; fill in 'left surroundings [°C]'"),
         ({EMITTED: None, AROUND: None}, NA, "Left resistance [m²·K/W] in {row} needs a fluid, surroundings or a held temperature "
          "beyond it; fill in 'left fluid [°C]'"),
-        ({RESISTANCE: -1.0}, NUM, f"Left resistance [m²·K/W] in {{row}} is -1; {RANGE} 1e9; {HEADING_UNIT}"),
+        ({RESISTANCE: -1.0}, NUM, f"Left resistance [m²·K/W] in {{row}} is -1; {RANGE} 1e20; {HEADING_UNIT}"),
         ({CONDUCTANCE: 50.0}, VALUE, both("Left resistance [m²·K/W]", "left resistance [W/(m²·K)]", "left resistance")),
         ({RESISTANCE: None, CONDUCTANCE: 0.0}, NUM, "Left resistance [W/(m²·K)] in {row} is 0; a conductance is above 0"),
         ({"left held [°C]": 20.0}, VALUE, held("Left held [°C]", "left emissivity")),
