@@ -251,7 +251,7 @@ NOT_READ = {
     "fill other.zip": "other.zip is a zip file but not a workbook; name an .xlsx or .xlsm file",
     "fill old.xls": "old.xls is an old .xls workbook; open it in the spreadsheet program and save it as .xlsx",
     "fill good.xlsx -o good.xlsx": "good.xlsx is the workbook itself; name another file, or say --in-place to replace it",
-    "fill good.xlsx -o ../work/good.xlsx": "../work/good.xlsx is the workbook itself; name another file, or say --in-place to "
+    "fill good.xlsx -o ../books/good.xlsx": "../books/good.xlsx is the workbook itself; name another file, or say --in-place to "
     "replace it",
     "fill good.xlsx -o folder.xlsx": "folder.xlsx is a folder; name a file in it",
     "fill good.xlsx -o nowhere/out.xlsx": "the folder nowhere does not exist; make it first",
@@ -273,7 +273,7 @@ NOT_READ = {
 
 @pytest.fixture(scope="module")
 def books(tmp_path_factory: pytest.TempPathFactory) -> Path:
-    folder = tmp_path_factory.mktemp("refused") / "work"
+    folder = tmp_path_factory.mktemp("refused") / "books"
     folder.mkdir()
     good = book(folder / "good.xlsx").read_bytes()
     (folder / "open.xlsx").write_bytes(good)
