@@ -25,20 +25,16 @@ _SLOPE_REFERENCE = 20.0  # °C, where the reference of a slope is blank
 
 @dataclass(frozen=True)
 class Built:
-    """Cases, and what turns the solver's numbers into the row's own: the layers' volumes and the row's sizes.
+    """Cases, and what turns the solver's numbers into the row's own: ``area`` and ``length``.
 
-    ``scales`` are the generation [W/m³] that one base unit of each layer's source heading makes (None: 1); ``single`` is
-    True where one layer's source scales, so that a multiple is the source itself. ``table_ends`` [°C] are the last
-    temperatures of the layers' text tables.
+    ``single`` is True where one layer's source scales, so that a multiple is the source itself. ``table_ends`` [°C] are the
+    last temperatures of the layers' text tables.
     """
 
     cases: Cases
-    volumes: tuple[Array, ...]
     area: Array | None
     length: Array | None
-    scales: tuple[Array | None, ...]
     single: bool
-    scaled_layer: int
     table_ends: Mapping[int, Array]
 
 
@@ -154,7 +150,7 @@ def build_cases(recipe: Recipe, get: Get, tables: GetTable, flag: Flag) -> Built
     if inner is not None:
         _flag_solid_left(recipe, inner, flag)
     place = inner
-    volumes, scales, layers, patterns = [], [], [], []
+    layers, patterns = [], []
     scaled_layers = [layer.number for layer in recipe.layers if layer.source in recipe.scaled_slots]
     single = len(scaled_layers) <= 1
     for layer, d in zip(recipe.layers, thicknesses, strict=True):
@@ -172,8 +168,6 @@ def build_cases(recipe: Recipe, get: Get, tables: GetTable, flag: Flag) -> Built
         q = get(layer.source) if layer.source else np.zeros_like(d)
         if layer.source and scale is not None:
             q = q * scale
-        scales.append(scale)
-        volumes.append(V)
         layers.append(Layer(d, make.conductivity(layer), q))
         if not single:
             patterns.append(q if layer.number in scaled_layers else np.zeros_like(d))
@@ -201,8 +195,7 @@ def build_cases(recipe: Recipe, get: Get, tables: GetTable, flag: Flag) -> Built
         tuple(make.maybe(f"limit {layer.number}") for layer in recipe.layers),
         tuple(patterns),
     )
-    area, length = make.maybe("area"), make.maybe("length")
-    return Built(cases, tuple(volumes), area, length, tuple(scales), single, recipe.scaled_layer, make.table_ends)
+    return Built(cases, make.maybe("area"), make.maybe("length"), single, make.table_ends)
 
 
 def _check_probe(recipe: Recipe, get: Get, flag: Flag, inner: Array | None, thicknesses: list[Array]) -> None:

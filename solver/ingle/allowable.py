@@ -17,7 +17,7 @@ from ingle.cases import Cases
 from ingle.conductivities import Conductivity
 from ingle.field import Extremes, extremes
 from ingle.march import LayerSteps, Problem, State, Tangent, beyond, carried, finish, solve, start
-from ingle.shapes import Array, path, source_path
+from ingle.shapes import Array, path, solid_source_path, source_path
 
 _MOST_STEPS = 200
 
@@ -138,7 +138,7 @@ def _slope(problem: Problem, state: State, top: Extremes, which: np.ndarray, pat
     for number, (layer, ends, p) in enumerate(zip(problem.layers, state.ends, pattern, strict=True)):
         s = np.clip(top.places[number] - layer.a, 0.0, layer.d)
         W = None if layer.W is None else path(shape, layer.a, s)
-        D = s * s / (2.0 * (shape + 1.0)) if W is None else source_path(shape, layer.a, s)
+        D = solid_source_path(shape, s) if W is None else source_path(shape, layer.a, s)
         to_peak = replace(layer, W=W, D=D)
         at_peak = replace(ends, T1=top.by_layer[number])
         watched = ((which == PEAK_LIMIT) & (top.layer == number + 1.0)) | (which == LAYER_LIMIT + number + 1)

@@ -13,9 +13,9 @@ from typing import Protocol
 import numpy as np
 
 from ingle.conductivities import FLOOR, Table
+from ingle.fluids import KELVIN
 from ingle.shapes import Array
 
-KELVIN = 273.15
 STEFAN_BOLTZMANN = 5.670374419e-8  # W/(m²·K⁴), exact to the digits given: SI 2019
 GAS_CONSTANT = 8.31446261815324  # J/(mol·K), exact: SI 2019
 

@@ -15,8 +15,9 @@ import numpy as np
 
 from ingle.cases import Cases, FaceKind, Rows, Structure, take
 from ingle.conductivities import Conductivity
+from ingle.fluids import KELVIN
 from ingle.shapes import Array, Shape, area, path, solid_source_path, solid_volume, source_path, volume
-from ingle.surfaces import KELVIN, Surface, sink_of, surface
+from ingle.surfaces import Surface, sink_of, surface
 
 MOST_STEPS = 120
 
@@ -67,7 +68,7 @@ class Problem:
 
 @dataclass(frozen=True)
 class Ends:
-    """Rises and heats at both ends of a layer, with their derivatives to the unknown (u) where they were carried."""
+    """Rises and heats at both ends of a layer."""
 
     T0: Array
     Q0: Array
@@ -90,7 +91,6 @@ class State:
     q: tuple[Array, ...]
     u: Array
     ends: tuple[Ends, ...]
-    slope: Array
     imbalance: Array
 
     @property
@@ -226,7 +226,7 @@ def solve(problem: Problem, q: tuple[Array, ...], guess: Array | None = None) ->
     zero = np.zeros_like(problem.sink)
     if not problem.structure.settles:
         trail = _march(problem, q, zero)
-        return State(problem, q, zero, trail.ends, zero, zero)
+        return State(problem, q, zero, trail.ends, zero)
     if problem.linear:
         trail = _march(problem, q, zero)
         u = -trail.residual / trail.slope
@@ -242,7 +242,7 @@ def solve(problem: Problem, q: tuple[Array, ...], guess: Array | None = None) ->
         ends = (*ends[:-1], Ends(last.T0, last.Q0, exact, last.Q1))
     elif problem.structure.right == FaceKind.FILM:
         ends = (*ends[:-1], _by_its_film(problem, ends[-1]))
-    return State(problem, q, u, ends, trail.slope, _as_heat(problem, trail))
+    return State(problem, q, u, ends, _as_heat(problem, trail))
 
 
 def _by_its_film(problem: Problem, last: Ends) -> Ends:

@@ -13,11 +13,9 @@ import numpy as np
 
 from ingle.cases import Face, FaceKind, Rows, take
 from ingle.film_laws import FilmLaw, FluidKind, coefficient
+from ingle.fluids import KELVIN
+from ingle.heat_sources import STEFAN_BOLTZMANN
 from ingle.shapes import Array
-
-KELVIN = 273.15
-# CODATA 2018, exact since the 2019 SI: 2 π⁵ k⁴ / (15 h³ c²).
-STEFAN_BOLTZMANN = 5.670374419e-8
 
 
 @dataclass(frozen=True)
