@@ -94,20 +94,10 @@ def _row_calls(name: str, calls: Sequence[Sequence[Grid]]) -> list[Outcome]:
 
 def _read(name: str, call: Sequence[Grid]) -> _Call | Fault:
     """What a row function's arguments hold."""
-    asked: tuple[Asked | Fault, ...]
-    first = 0
-    if name == "INGLE.ASK":
-        answers = heading_texts(call[0], "answers")
-        if isinstance(answers, Fault):
-            return answers
-        asked, first = tuple(read_answer(text) for text in answers[0]), 1
-    elif name == "INGLE.FACE":
-        side = _side(call[0])
-        if isinstance(side, Fault):
-            return side
-        asked, first = (side,), 1
-    else:
-        asked = (_ASKED[name],)
+    asked = asked_of(name, call)
+    if isinstance(asked, Fault):
+        return asked
+    first = 0 if name in _ASKED else 1
     texts = heading_texts(call[first])
     if isinstance(texts, Fault):
         return texts
@@ -115,6 +105,17 @@ def _read(name: str, call: Sequence[Grid]) -> _Call | Fault:
     if isinstance(rows, Fault):
         return rows
     return _Call(asked, texts[0], texts[1], rows)
+
+
+def asked_of(name: str, call: Sequence[Grid]) -> tuple[Asked | Fault, ...] | Fault:
+    """What a row function asks for, by its name or its first argument."""
+    if name == "INGLE.ASK":
+        answers = heading_texts(call[0], "answers")
+        return answers if isinstance(answers, Fault) else tuple(read_answer(text) for text in answers[0])
+    if name == "INGLE.FACE":
+        side = _side(call[0])
+        return side if isinstance(side, Fault) else (side,)
+    return (_ASKED[name],)
 
 
 def _side(grid: Grid) -> Asked | Fault:
@@ -148,7 +149,7 @@ def _evaluated(
     )
     table = to_columns(rows)
     result = evaluate(plan, table, asked, mismatch, numbers)
-    cells = [_cells(result, j) for j in range(len(asked))]
+    cells = [cells_of(result, j) for j in range(len(asked))]
     firsts = _first_faults(result)
     done, start = [], 0
     for i, call in members:
@@ -170,7 +171,7 @@ def _first_faults(result: Evaluation) -> np.ndarray:
     return first
 
 
-def _cells(result: Evaluation, j: int) -> list[Cell]:
+def cells_of(result: Evaluation, j: int) -> list[Cell]:
     """One answer's column as cells: empty text in blank rows, errors where there is a fault."""
     values: list[Cell] = result.values[j].tolist()
     for row in np.flatnonzero(result.blank):

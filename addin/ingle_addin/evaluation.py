@@ -39,6 +39,16 @@ class Evaluation:
         return self.known[fault]
 
 
+@dataclass(frozen=True)
+class Alone(Asked):
+    """`why` asked beside others, yet answered as in a call of its own: the faults of the other answers are not its."""
+
+    @classmethod
+    def of(cls, asked: Asked) -> Alone:
+        """The same answer, alone."""
+        return cls(asked.item, asked.side, asked.layer, asked.unit, asked.label)
+
+
 def reason(result: Evaluation, table: Sequence[Values], j: int, row: int, number: int) -> str | None:
     """The sentence why answer j of a row is missing, None where it is not."""
     index = result.fault[j][row]
@@ -58,9 +68,10 @@ def judge(result: Evaluation, table: Sequence[Values], numbers: np.ndarray | Non
         if name not in ("why", "verdict"):
             continue
         found = np.full(result.n, -1, np.intp)
-        for other in others if name == "why" and others else [j]:
+        joined = name == "why" and others and not isinstance(result.asked[j], Alone)
+        for other in others if joined else [j]:
             found = np.where(found < 0, result.fault[other], found)
-        if name == "why":
+        if joined:
             # Its own: a limit passed with no source. That a source is blank is no fault of the other answers.
             own = np.array([fault.error is CellError.NUM for fault in result.faults] + [False])[result.fault[j]]
             found = np.where((found < 0) & own, result.fault[j], found)
