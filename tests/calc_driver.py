@@ -124,11 +124,11 @@ class Driver:
         kind = path.rsplit(".", 1)[1]
         self.documents[number].storeToURL(uno.systemPathToFileUrl(path), properties(FilterName=FILTERS[kind], Overwrite=True))
 
-    def dispatch(self, number: int, sheet: str, at: str, command: str) -> str:
+    def dispatch(self, number: int, sheet: str, at: str, command: str, quiet: bool = True) -> str:
         """Carry out a command with a cell selected; what it says."""
         controller = self.documents[number].CurrentController
         controller.select(self._range(number, sheet, at))
-        event = self.dispatcher.executeDispatch(controller.Frame, command, "", 0, properties(Quiet=True))
+        event = self.dispatcher.executeDispatch(controller.Frame, command, "", 0, properties(Quiet=quiet))
         return str(getattr(event, "Result", event))
 
     def described(self, name: str) -> dict[str, Any]:

@@ -224,7 +224,7 @@ class RowAnswers:
             if isinstance(value, (int, float)) and not isinstance(value, bool) and value == 0:
                 for column in table.plan.columns:
                     if column.index == at and column.unit.kind is Kind.TEMPERATURE:
-                        sentence = f"{column.label} is 0 and may be an empty cell; pass a range, as in A2:H2, or write 0 into a range"
+                        sentence = f"{column.label} is 0 and may be an empty cell; pass a range, as in A2:H2"
                         return Fault(CellError.VALUE, sentence)
             grid = _grid(value)
             if grid:
