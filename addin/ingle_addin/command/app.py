@@ -72,6 +72,8 @@ def _first(
             "Ingle fills workbooks whose cells ask how hot self-heating parts get.\n"
             "  ingle fill BOOK.xlsx    computes a workbook into BOOK.filled.xlsx\n"
             "  ingle ask ANSWERS CASE  answers one case here\n"
+            "  ingle install calc      puts the functions into LibreOffice Calc\n"
+            "  ingle doctor            says what is wrong with that\n"
             "  ingle reference         lists all headings and functions\n"
             "  ingle --help            lists all commands"
         )
@@ -111,3 +113,34 @@ def reference() -> int:
     from ingle_addin.command.reference import print_reference
 
     return print_reference()
+
+
+installs = typer.Typer(help="Put the functions into a spreadsheet program.", no_args_is_help=False, rich_markup_mode=None)
+app.add_typer(installs, name="install", short_help="Put the functions into Calc.")
+
+_OFFICE = typer.Option("--office", help="LibreOffice's program folder; found by itself if not given.")
+_PROFILE = typer.Option("--profile", help="A folder for a LibreOffice profile apart from your own; for trials.")
+
+
+@installs.command("calc", short_help="Into LibreOffice Calc.", epilog="Example: ingle install calc")
+def install_calc(
+    build_only: Annotated[Path | None, typer.Option("--build-only", help="Write the extension to this file, install nothing.")] = None,
+    remove: Annotated[bool, typer.Option("--remove", help="Take Ingle out of Calc.")] = False,
+    office: Annotated[Path | None, _OFFICE] = None,
+    profile: Annotated[Path | None, _PROFILE] = None,
+) -> int:
+    """Put the functions and the menu of Ingle into LibreOffice Calc."""
+    from ingle_addin.command.installing import install_calc as install
+
+    return install(build_only, remove, office, profile)
+
+
+@app.command(short_help="Say what is wrong with the set-up.", epilog="Example: ingle doctor")
+def doctor(
+    office: Annotated[Path | None, _OFFICE] = None,
+    profile: Annotated[Path | None, _PROFILE] = None,
+) -> int:
+    """Check Ingle in the spreadsheet programs step by step; each finding that is wrong has its remedy. Leaves with 1 then."""
+    from ingle_addin.command.doctor import examine
+
+    return examine(office, profile)
