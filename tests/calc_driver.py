@@ -138,7 +138,7 @@ class Driver:
         got = {item.Name: item.Value for item in found}
         return {
             "description": got["Description"],
-            "arguments": [[a.Name, a.Description, a.IsOptional] for a in got["Arguments"]],
+            "arguments": [[a.Name, a.Description, a.IsOptional] for a in got["Arguments"] or ()],
         }
 
     def quit(self) -> int:

@@ -10,6 +10,7 @@ import json
 import os
 import shutil
 import subprocess
+import sys
 from collections.abc import Iterator
 from contextlib import contextmanager
 from pathlib import Path
@@ -87,12 +88,19 @@ def install(folder: Path, extension: Path) -> None:
 
 
 @contextmanager
-def office(folder: Path, seconds: float = 20.0, settings: str = "") -> Iterator[Office]:
-    """Calc with this tree's extension; ``seconds`` is the worker's time limit, ``settings`` registry items of the profile."""
-    install(folder, build(folder / "ingle.oxt", seconds))
+def office(folder: Path, settings: str = "") -> Iterator[Office]:
+    """Calc with this tree's extension; ``settings`` are registry items of the profile.
+
+    The worker's Python is a link in the folder, so that a test can take it away.
+    """
+    python = folder / "python"
+    python.symlink_to(sys.executable)
+    install(folder, build(folder / "ingle.oxt", python=str(python)))
     if settings:
-        (folder / "profile" / "user").mkdir(parents=True, exist_ok=True)
-        (folder / "profile" / "user" / "registrymodifications.xcu").write_text(settings, encoding="utf-8")
+        with (folder / "profile" / "user" / "registrymodifications.xcu").open("r+", encoding="utf-8") as file:
+            text = file.read().replace("</oor:items>", settings + "</oor:items>")
+            file.seek(0)
+            file.write(text)
     with running(folder) as calc:
         yield calc
 
@@ -100,15 +108,12 @@ def office(folder: Path, seconds: float = 20.0, settings: str = "") -> Iterator[
 @contextmanager
 def running(folder: Path) -> Iterator[Office]:
     """Calc on the folder's profile as it is."""
-    command = [SYSTEM_PYTHON, str(Path(__file__).with_name("calc_driver.py")), "/usr/lib/libreoffice/program/soffice.bin"]
-    driver = subprocess.Popen(
-        [*command, *arguments(folder)], stdin=subprocess.PIPE, stdout=subprocess.PIPE, text=True, env=environment(folder)
-    )
+    program = Path(str(shutil.which("soffice"))).resolve().parent / "soffice.bin"
+    command = [SYSTEM_PYTHON, str(Path(__file__).with_name("calc_driver.py")), str(program), *arguments(folder)]
+    driver = subprocess.Popen(command, stdin=subprocess.PIPE, stdout=subprocess.PIPE, text=True, env=environment(folder))
     try:
         calc = Office(driver, folder)
         yield calc
         calc.quit()
     finally:
-        assert driver.stdin is not None
-        driver.stdin.close()
-        driver.wait(60)
+        driver.communicate(timeout=60)  # closes both pipes; a driver that reads no more commands ends the office

@@ -65,7 +65,8 @@ def _worker(extension: Extension) -> Finding:
         name, _ = client.ask(("hello",))
         rows = client.ask(("INGLE.PEAK", ((_HEADINGS,), (_VALUES,)), False))
     except WorkerError as error:
-        return Finding("worker", str(error), _INSTALL)
+        said, _, remedy = str(error).partition("; ")
+        return Finding("worker", said, remedy or _INSTALL)
     finally:
         client.close()
     python = settings["command"][0]

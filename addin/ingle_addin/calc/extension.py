@@ -35,9 +35,9 @@ _START = (
 )
 
 
-def worker_command() -> list[str]:
+def worker_command(python: str = sys.executable) -> list[str]:
     """What starts the worker: this Python, told where its packages lie, deaf to variables and folders around it."""
-    return [sys.executable, "-I", "-c", _START, *package_folders()]
+    return [python, "-I", "-c", _START, *package_folders()]
 
 
 def package_folders() -> list[str]:
@@ -50,11 +50,11 @@ def package_folders() -> list[str]:
     return list(folders)
 
 
-def settings(seconds: float = ANSWER_SECONDS) -> dict[str, Any]:
-    """What the component reads when the office loads it; ``seconds`` is the time limit of an answer."""
+def settings(seconds: float = ANSWER_SECONDS, python: str = sys.executable) -> dict[str, Any]:
+    """What the component reads when the office loads it: also the time limit of an answer and the Python of the worker."""
     return {
         "version": version(),
-        "command": worker_command(),
+        "command": worker_command(python),
         "seconds": seconds,
         "interface": f"{registration.MODULE}.{registration.INTERFACE}",
         "service": registration.SERVICE,
@@ -73,7 +73,7 @@ def settings(seconds: float = ANSWER_SECONDS) -> dict[str, Any]:
     }
 
 
-def parts(seconds: float = ANSWER_SECONDS) -> dict[str, str]:
+def parts(seconds: float = ANSWER_SECONDS, python: str = sys.executable) -> dict[str, str]:
     """The files of the extension and what they hold."""
     component = f"python/{_COMPONENT}"
     found = {
@@ -83,7 +83,7 @@ def parts(seconds: float = ANSWER_SECONDS) -> dict[str, str]:
         "CalcAddIns.xcu": registration.functions(),
         "ProtocolHandler.xcu": registration.protocol_handler(),
         "Addons.xcu": registration.menu(available()),
-        SETTINGS: json.dumps(settings(seconds), indent=1, ensure_ascii=False) + "\n",
+        SETTINGS: json.dumps(settings(seconds, python), indent=1, ensure_ascii=False) + "\n",
     }
     kinds = [
         # A plain interface text serves as a type library too, so that no development kit of the office is needed.
@@ -97,12 +97,12 @@ def parts(seconds: float = ANSWER_SECONDS) -> dict[str, str]:
     return {"META-INF/manifest.xml": registration.manifest(kinds), **found}
 
 
-def build(path: Path, seconds: float = ANSWER_SECONDS) -> Path:
+def build(path: Path, seconds: float = ANSWER_SECONDS, python: str = sys.executable) -> Path:
     """Write the extension, whole or not at all; the path."""
     beside = path.with_name(path.name + ".part")
     try:
         with zipfile.ZipFile(beside, "w", zipfile.ZIP_DEFLATED) as archive:
-            for name, text in parts(seconds).items():
+            for name, text in parts(seconds, python).items():
                 info = zipfile.ZipInfo(name, _EPOCH)
                 info.compress_type = zipfile.ZIP_DEFLATED
                 info.external_attr = 0o644 << 16

@@ -10,12 +10,13 @@ from collections.abc import Iterable, Sequence
 from xml.sax.saxutils import escape, quoteattr
 
 from ingle_addin.case_tables import CaseTable
-from ingle_addin.functions import FUNCTIONS, Function
+from ingle_addin.functions import FUNCTIONS, Argument, Function
 
 IDENTIFIER = "ingle.for.calc"
 SERVICE = "INGLE"
 MODULE, INTERFACE = "inglecalc", "XFunctions"
 HANDLER, PROTOCOL = "inglecalc.Commands", "ingle.calc:"
+ONE_BY_ONE = 20  # parameters for value arguments before the one that takes the rest
 _NOT_YET = "not available yet"
 
 _HEAD = '<?xml version="1.0" encoding="UTF-8"?>\n'
@@ -39,9 +40,23 @@ def interface() -> str:
 _RESULT = "sequence< sequence< any > >"
 
 
+def arguments(function: Function) -> list[Argument]:
+    """The function's parameters in Calc: an argument that may be repeated stands there several times, then once for the rest.
+
+    Within an array formula Calc hands over whole ranges to parameters that it knows one by one, but goes through the cells
+    of what falls into the rest, with a call for each.
+    """
+    found: list[Argument] = []
+    for argument in function.arguments:
+        if argument.repeats:
+            found += [Argument(f"{argument.name} {number}", argument.help) for number in range(1, ONE_BY_ONE + 1)]
+        found.append(argument)
+    return found
+
+
 def _parameters(function: Function) -> str:
-    kinds = ["sequence< any >" if argument.repeats else "any" for argument in function.arguments]
-    return ", ".join(f"[in] {kind} arg{number}" for number, kind in enumerate(kinds, 1))
+    kinds = ["sequence< any >" if argument.repeats else "any" for argument in arguments(function)]
+    return ", ".join(f"[in] {kind} arg{number:02}" for number, kind in enumerate(kinds, 1))
 
 
 def functions() -> str:
@@ -52,16 +67,16 @@ def functions() -> str:
 
 def _function(function: Function) -> str:
     described = function.returns if function.available else f"{function.returns} ({_NOT_YET})"
-    arguments = "".join(
-        _node(f"arg{number}", _text("DisplayName", argument.name) + _text("Description", argument.help))
-        for number, argument in enumerate(function.arguments, 1)
+    parameters = "".join(
+        _node(f"arg{number:02}", _text("DisplayName", argument.name) + _text("Description", argument.help))
+        for number, argument in enumerate(arguments(function), 1)
     )
     return (
         _text("DisplayName", function.name)
         + _text("Description", described[:1].upper() + described[1:])
         + '<prop oor:name="Category"><value>Add-In</value></prop>'
         + _text("CompatibilityName", function.name)
-        + _named("Parameters", arguments)
+        + _named("Parameters", parameters)
     )
 
 

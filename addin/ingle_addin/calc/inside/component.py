@@ -22,12 +22,17 @@ with open(os.path.join(os.path.dirname(os.path.dirname(__file__)), "ingle.json")
     SETTINGS = json.load(file)
 CLIENT = Client(SETTINGS["command"], SETTINGS["seconds"])
 _NO_ANSWER = ((error_value("#N/A"),),)
-_OURS_TO_MEND = ((error_value("#VALUE!"),),)
+_REFUSED = ((error_value("#VALUE!"),),)
+_TOO_MANY = "There are too many value arguments for an answer of several cells; pass one range of several columns"
 _LONGEST = 255
 
 
-def _answered(context: Any, name: str, args: tuple[Any, ...]) -> Any:
-    """The worker's rows for a call; where there are none, an error, and the reason from INGLE.WHY."""
+def _answered(context: Any, name: str, args: tuple[Any, ...], rest: bool = False) -> Any:
+    """The worker's rows for a call; where there are none, an error, and the reason from INGLE.WHY.
+
+    ``rest`` is whether arguments fell into the last parameter: in an array formula Calc then calls cell by cell and keeps
+    the first value of each answer, so that an answer of more cells is refused.
+    """
     whole, cells = False, 0
     for arg in args:
         if type(arg) is tuple:
@@ -40,16 +45,26 @@ def _answered(context: Any, name: str, args: tuple[Any, ...]) -> Any:
     except WorkerError as error:
         answer, failed = str(error), _NO_ANSWER
     else:
-        if type(answer) is tuple:
+        if type(answer) is tuple and not (rest and (len(answer) > 1 or len(answer[0]) > 1)):
             return answer
-        failed = _OURS_TO_MEND
+        answer, failed = answer if type(answer) is str else _TOO_MANY, _REFUSED
     return ((answer[:_LONGEST],),) if name == "INGLE.WHY" else failed
 
 
 def _method(name: str, repeats: bool) -> Any:
-    if repeats:
-        return lambda self, *args: _answered(self.context, name, args[:-1] + tuple(args[-1]))
-    return lambda self, *args: _answered(self.context, name, args)
+    if not repeats:
+        return lambda self, *args: _answered(self.context, name, args)
+
+    def method(self: Any, *args: Any) -> Any:
+        rest = args[-1]
+        if rest:
+            return _answered(self.context, name, args[:-1] + tuple(rest), True)
+        count = len(args) - 1
+        while count and args[count - 1] is None:  # left out at the end
+            count -= 1
+        return _answered(self.context, name, args[:count])
+
+    return method
 
 
 class _Service(unohelper.Base, XServiceInfo):  # type: ignore[misc]
