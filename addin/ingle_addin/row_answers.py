@@ -21,7 +21,7 @@ from ingle_addin.cells import Cell, CellError, Grid
 from ingle_addin.evaluate import evaluate
 from ingle_addin.evaluation import Alone
 from ingle_addin.faults import Fault, finished, number_text
-from ingle_addin.from_sheet import OMITTED, cell_of, grid_of, rows_to_sheet, to_sheet, used_rows
+from ingle_addin.from_sheet import OMITTED, cell_of, grid_of, rows_to_sheet, to_sheet
 from ingle_addin.heading_reader import Asked, Plan, clean, read_headings
 from ingle_addin.tables import heading_texts, join, to_columns
 from ingle_addin.units import Kind
@@ -230,11 +230,6 @@ class RowAnswers:
             if grid:
                 at += len(grid) if table.upright else len(grid[0])
         return None
-
-
-def trimmed(columns: Sequence[Sequence[Row]]) -> int:
-    """The rows used of whole columns that are passed together."""
-    return max(map(used_rows, columns), default=0)
 
 
 def _grid(value: Any) -> Grid:

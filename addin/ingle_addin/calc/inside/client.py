@@ -162,7 +162,7 @@ class Client:
         if self._gone:
             return self._gone_words("holds no working Ingle")
         if self._overdue:
-            return f"Ingle did not answer within {patience:.0f} s; choose Ingle > Recalculate, or run: ingle doctor"
+            return f"Ingle did not answer within {patience:.3g} s; choose Ingle > Recalculate, or run: ingle doctor"
         return f"Ingle's worker ended by itself (code {code}); choose Ingle > Recalculate, or run: ingle doctor"
 
     def _gone_words(self, what: str) -> str:
