@@ -13,6 +13,7 @@ import uno
 from com.sun.star.beans import PropertyValue
 from com.sun.star.connection import NoConnectException
 
+_ERRORS = 4  # com.sun.star.sheet.FormulaResult.ERROR
 FILTERS = {"xlsx": "Calc MS Excel 2007 XML", "ods": "calc8"}
 
 
@@ -102,10 +103,11 @@ class Driver:
         """The values of a block; an error as the text that the cell shows."""
         block = self._range(number, sheet, at)
         rows = [list(row) for row in block.getDataArray()]
-        for i, row in enumerate(rows):
-            for j, value in enumerate(row):
-                if value is None or (value == "" and block.getCellByPosition(j, i).getError()):
-                    row[j] = {"error": block.getCellByPosition(j, i).String}
+        corner = block.RangeAddress
+        for place in block.queryFormulaCells(_ERRORS).RangeAddresses:
+            for i in range(place.StartRow - corner.StartRow, place.EndRow - corner.StartRow + 1):
+                for j in range(place.StartColumn - corner.StartColumn, place.EndColumn - corner.StartColumn + 1):
+                    rows[i][j] = {"error": block.getCellByPosition(j, i).String}
         return rows
 
     def formulas(self, number: int, sheet: str, at: str) -> list[list[str]]:
@@ -130,6 +132,16 @@ class Driver:
         controller.select(self._range(number, sheet, at))
         event = self.dispatcher.executeDispatch(controller.Frame, command, "", 0, properties(Quiet=quiet))
         return str(getattr(event, "Result", event))
+
+    def undo(self, number: int) -> str:
+        """Undo the last action; its title."""
+        manager = self.documents[number].UndoManager
+        title = manager.getCurrentUndoActionTitle()
+        manager.undo()
+        return str(title)
+
+    def add_sheet(self, number: int, name: str) -> None:
+        self.documents[number].Sheets.insertNewByName(name, 9)
 
     def described(self, name: str) -> dict[str, Any]:
         """What the function wizard knows of a function."""

@@ -7,7 +7,7 @@ from typing import Any, NamedTuple
 
 _CALL = re.compile(r"\bINGLE\.(PEAK|FACE|ALLOW|ASK|WHY|PROFILE|SEEK)\s*\(", re.IGNORECASE)
 _NUMBER = re.compile(r"[+-]?(\d+\.?\d*|\.\d+)([eE][+-]?\d+)?")
-_SEVERAL = ("FACE", "ASK", "PROFILE", "SEEK")  # have an argument before the headings
+_ON_SHEET = re.compile(r"\$?('(?:[^']|'')+'|[^.'$()]+)\.([$A-Za-z0-9:]+)")
 _MOST_ROWS = 20_000
 _FORMULAS = 16  # com.sun.star.sheet.CellFlags.FORMULA
 
@@ -36,13 +36,13 @@ def call_behind(document: Any, sheet: Any, column: int, row: int) -> Call:
         places += [(each, row) for each in range(place.StartColumn, place.EndColumn + 1)]
     for x, y in places:
         cell = sheet.getCellByPosition(x, y)
-        formula = str(cell.ArrayFormula or cell.Formula)
+        formula = str(cell.Formula)  # an array formula stands in braces
         texts = arguments_of(formula)
         if texts is None:
             continue
         name, parts = texts
         within = 0
-        if cell.ArrayFormula:
+        if formula[0] == "{":
             block = sheet.createCursorByRange(cell)
             block.collapseToCurrentArray()
             within = y - block.RangeAddress.StartRow
@@ -87,8 +87,13 @@ def _read(document: Any, sheet: Any, text: str) -> Any:
         return text[1:-1].replace('""', '"')
     if _NUMBER.fullmatch(text):
         return float(text)
+    owner, place = sheet, text
+    match = _ON_SHEET.fullmatch(text)
     try:
-        block = sheet.getCellRangeByName(text)
+        if match is not None:
+            name = match[1] if match[1][0] != "'" else match[1][1:-1].replace("''", "'")
+            owner, place = document.Sheets.getByName(name), match[2]
+        block = owner.getCellRangeByName(place)
         address = block.RangeAddress
     except Exception:  # the office's own exceptions know no common ancestor
         raise NoCallError(

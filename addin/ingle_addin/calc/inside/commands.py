@@ -60,48 +60,33 @@ def insert(document: Any, client: Client, settings: dict[str, Any], wanted: dict
     name = block.AbsoluteName.split(".")[-1].replace("$", "")
     if any(text for row in block.getFormulaArray() for text in row):
         raise RefusedError(f"The cells {name} are not all empty; choose an empty place for the table.")
+    inputs = sheet.getCellRangeByPosition(left, top, left + len(headings) - 1, top + 1)
+    first, last = (edge.split("$")[1] for edge in inputs.AbsoluteName.split(".")[-1].split(":"))
+    ranges = {
+        "headings": f"${first}${top + 1}:${last}${top + 1}",
+        "values": f"${first}{top + 2}:${last}{top + 2}",  # the row moves when the formulas are filled down
+    }
     undo = document.UndoManager
     undo.enterUndoContext("Insert a case table")
     try:
-        inputs = sheet.getCellRangeByPosition(left, top, left + len(headings) - 1, top)
-        ranges = {
-            "headings": _absolute(inputs),
-            "values": sheet.getCellRangeByPosition(left, top + 1, left + len(headings) - 1, top + 1).AbsoluteName,
-        }
-        # The row stays relative and the columns fixed, so that the formulas can be filled down.
-        first, last = (_cell(edge) for edge in ranges["values"].split(".")[-1].split(":"))
-        ranges["values"] = f"${first[0]}{first[1]}:${last[0]}{last[1]}"
-        block.setFormulaArray((_typed([*headings, *(heading for heading, _ in answers)]), _typed([*values, *[None] * len(answers)])))
-        for number, (_, formula) in enumerate(answers):
-            column = left + len(headings) + number
-            here = sheet.getCellByPosition(column, top)
-            text = formula.format(here=_fixed_row(here), **ranges)
-            sheet.getCellByPosition(column, top + 1).setFormula("=" + text)
+        # Cell by cell, for only so can the user take it back.
+        for number, heading in enumerate([*headings, *(heading for heading, _ in answers)]):
+            sheet.getCellByPosition(left + number, top).setString(heading)
+        for number, value in enumerate(values):
+            cell = sheet.getCellByPosition(left + number, top + 1)
+            if isinstance(value, str):
+                cell.setString(value)
+            elif value is not None:
+                cell.setValue(value)
+        for number, (_, formula) in enumerate(answers, left + len(headings)):
+            column = sheet.getCellByPosition(number, top).AbsoluteName.split("$")[-2]
+            sheet.getCellByPosition(number, top + 1).setFormula("=" + formula.format(here=f"{column}${top + 1}", **ranges))
         head = sheet.getCellRangeByPosition(left, top, right, top)
         head.CharWeight, head.IsTextWrapped = BOLD, True
         head.Rows.OptimalHeight = True
     finally:
         undo.leaveUndoContext()
     return f"A case table is in {name}. Its row is an invented example: type your own values, and fill the formulas down."
-
-
-def _typed(cells: list[Any]) -> tuple[Any, ...]:
-    # A text that looks like a formula or a number stays a text; none of ours does.
-    return tuple("" if cell is None else cell for cell in cells)
-
-
-def _absolute(block: Any) -> str:
-    return str(block.AbsoluteName).split(".")[-1]
-
-
-def _cell(text: str) -> tuple[str, str]:
-    _, column, row = text.split("$")
-    return column, row
-
-
-def _fixed_row(cell: Any) -> str:
-    column, row = _cell(_absolute(cell))
-    return f"{column}${row}"
 
 
 def explain(document: Any, client: Client, settings: dict[str, Any], wanted: dict[str, str]) -> str:  # noqa: ARG001
