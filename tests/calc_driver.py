@@ -2,6 +2,7 @@
 
 from __future__ import annotations
 
+import contextlib
 import json
 import subprocess
 import sys
@@ -113,6 +114,11 @@ class Driver:
     def formulas(self, number: int, sheet: str, at: str) -> list[list[str]]:
         return [list(row) for row in self._range(number, sheet, at).getFormulaArray()]
 
+    def local_formulas(self, number: int, sheet: str, at: str) -> list[str]:
+        """Formulas of a column of cells as the user sees them."""
+        block = self._range(number, sheet, at)
+        return [block.getCellByPosition(0, row).FormulaLocal for row in range(block.Rows.Count)]
+
     def sheets(self, number: int) -> list[str]:
         return list(self.documents[number].Sheets.ElementNames)
 
@@ -159,10 +165,8 @@ class Driver:
                 document.close(True)
             except Exception:  # closed before
                 continue
-        try:
+        with contextlib.suppress(Exception):  # the connection ends with the office
             self.desktop.terminate()
-        except Exception:  # the connection ends with the office
-            pass
         return self.process.wait(60)
 
     def _range(self, number: int, sheet: str, at: str) -> Any:

@@ -18,6 +18,7 @@ from typing import Any
 
 from ingle_addin.calc.extension import build
 
+_NO_SETTINGS = '<?xml version="1.0" encoding="UTF-8"?>\n<oor:items xmlns:oor="http://openoffice.org/2001/registry"></oor:items>\n'
 SYSTEM_PYTHON = "/usr/bin/python3"
 
 
@@ -93,14 +94,15 @@ def office(folder: Path, settings: str = "") -> Iterator[Office]:
 
     The worker's Python is a link in the folder, so that a test can take it away.
     """
+    folder.mkdir(exist_ok=True)
     python = folder / "python"
     python.symlink_to(sys.executable)
     install(folder, build(folder / "ingle.oxt", python=str(python)))
     if settings:
-        with (folder / "profile" / "user" / "registrymodifications.xcu").open("r+", encoding="utf-8") as file:
-            text = file.read().replace("</oor:items>", settings + "</oor:items>")
-            file.seek(0)
-            file.write(text)
+        registry = folder / "profile" / "user" / "registrymodifications.xcu"
+        known = registry.read_text(encoding="utf-8") if registry.exists() else _NO_SETTINGS
+        registry.parent.mkdir(parents=True, exist_ok=True)
+        registry.write_text(known.replace("</oor:items>", settings + "</oor:items>"), encoding="utf-8")
     with running(folder) as calc:
         yield calc
 

@@ -121,17 +121,14 @@ def test_arrays_of_many_rows_turned_and_not(sheet: Sheet) -> None:
 def test_any_number_of_value_arguments_and_constants(sheet: Sheet) -> None:
     peak = shown(sheet, "=INGLE.PEAK($A$1:$G$1;A2:G2)")[0]
     text = "; ".join(HEADINGS)
-    assert (
-        shown(
-            sheet,
-            "=INGLE.PEAK($A$1:$G$1;A2;B2;C2;D2;E2;F2;G2)",
-            "=INGLE.PEAK($A$1:$G$1;A2:C2;0.12;E2:G2)",
-            f'=INGLE.PEAK("{text}";"wall";10;390;0.12;12;35;105)',
-            "=INGLE.PEAK(A1:C1;A2:C2)",
-            "=IF(A2=\"wall\";INGLE.PEAK($A$1:$G$1;A2:G2)+1;\"\")",
-        )
-        == [peak, peak, peak, "#N/A", float(str(peak)) + 1.0]
-    )
+    assert shown(
+        sheet,
+        "=INGLE.PEAK($A$1:$G$1;A2;B2;C2;D2;E2;F2;G2)",
+        "=INGLE.PEAK($A$1:$G$1;A2:C2;0.12;E2:G2)",
+        f'=INGLE.PEAK("{text}";"wall";10;390;0.12;12;35;105)',
+        "=INGLE.PEAK(A1:C1;A2:C2)",
+        '=IF(A2="wall";INGLE.PEAK($A$1:$G$1;A2:G2)+1;"")',
+    ) == [peak, peak, peak, "#N/A", float(str(peak)) + 1.0]
     # More arguments than Calc knows one by one: the answer of one cell is right, one of several is refused.
     many = "; ".join(["shape", *(f"thickness {n} [mm]; conductivity {n} [W/(m·K)]" for n in range(1, 13)), "generation [W/cm³]",
                       "both held [°C]"])  # fmt: skip
@@ -180,22 +177,25 @@ def test_arguments_that_are_missing_or_hold_errors(sheet: Sheet) -> None:
 
 
 def test_a_lone_empty_cell_is_not_taken_for_zero_degrees(sheet: Sheet) -> None:
-    assert shown(
-        sheet,
-        "=INGLE.PEAK($A$1:$G$1;A2:E2;J9;G2)",
-        "=INGLE.WHY($A$1:$G$1;A2:E2;J9;G2)",
-        "=INGLE.WHY($A$1:$G$1;A2:E2;J9:J9;G2)",
-        "=INGLE.ASK(\"peak [°C]\";$A$1:$G$1;A2:E2;0;G2)",
-        "=INGLE.PEAK($A$1:$G$1;A2:E2;0.001;G2)",
-        "=INGLE.PEAK($A$1:$G$1;A2:D2;0;F2:G2)",  # a film of 0 is a number like any other
-    ) == [
-        "#VALUE!",
-        "Both fluid [°C] is 0 and may be an empty cell; pass a range, as in A2:H2",
-        outside("INGLE.WHY", (HEADINGS,), ([*ROW[:5], None, ROW[6]],)),  # a range, though of one cell: blank
-        "#VALUE!",
-        pytest.approx(85.00484615384615 - 35.0),
-        "#NUM!",
-    ]
+    assert (
+        shown(
+            sheet,
+            "=INGLE.PEAK($A$1:$G$1;A2:E2;J9;G2)",
+            "=INGLE.WHY($A$1:$G$1;A2:E2;J9;G2)",
+            "=INGLE.WHY($A$1:$G$1;A2:E2;J9:J9;G2)",
+            '=INGLE.ASK("peak [°C]";$A$1:$G$1;A2:E2;0;G2)',
+            "=INGLE.PEAK($A$1:$G$1;A2:E2;0.001;G2)",
+            "=INGLE.PEAK($A$1:$G$1;A2:D2;0;F2:G2)",  # a film of 0 is a number like any other
+        )
+        == [
+            "#VALUE!",
+            "Both fluid [°C] is 0 and may be an empty cell; pass a range, as in A2:H2",
+            outside("INGLE.WHY", (HEADINGS,), ([*ROW[:5], None, ROW[6]],)),  # a range, though of one cell: blank
+            "#VALUE!",
+            pytest.approx(85.00484615384615 - 35.0),
+            "#NUM!",
+        ]
+    )
     calc, number = sheet
     calc.fill(number, SHEET, "A8:G8", [[*ROW[:5], 0.0, 105.0]])
     assert shown(sheet, "=INGLE.PEAK($A$1:$G$1;A8:G8)") == [pytest.approx(85.00384615384615 - 35.0)]
@@ -215,7 +215,7 @@ def test_whole_columns_serve_arrays_and_are_refused_for_one_row(sheet: Sheet) ->
     want = ["#VALUE!", pytest.approx(20.0 + rise), pytest.approx(30.0 + 2.0 * rise), "#N/A", "#N/A"]
     assert [row[0] for row in calc.values(number, SHEET, "S1:S5")] == want
     lone = formula.replace("PEAK", "WHY")
-    assert shown(sheet, lone, lone.replace("WHY", "FACE(\"left\";").replace(";(", ";")) == [
+    assert shown(sheet, lone, lone.replace("WHY", 'FACE("left";').replace(";(", ";")) == [
         "A whole column is passed where one row is asked; pass the cells of this row, as in A2:H2",
         "#VALUE!",
     ]

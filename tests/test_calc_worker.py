@@ -135,7 +135,9 @@ def test_after_an_answer_that_is_overdue_twice_no_cell_waits_again(
     monkeypatch.setattr(client_module, "START_SECONDS", 0.8)
     start = time.monotonic()
     for _ in range(1000):
-        with pytest.raises(WorkerError, match=r"^Ingle did not answer within 0.7 s; choose Ingle > Recalculate, or run: ingle doctor$"):
+        with pytest.raises(
+            WorkerError, match=r"^Ingle did not answer within 0.7 s; choose Ingle > Recalculate, or run: ingle doctor$"
+        ):
             bad.ask("sleep")
     assert marks(tmp_path) == 2
     assert time.monotonic() - start < 60.0  # a thousand waits would be twenty minutes
@@ -176,8 +178,8 @@ def test_an_environment_that_is_gone_says_what_to_run(tmp_path: Path) -> None:
 
 def test_the_environment_is_cleaned_and_the_worker_deaf_to_it(monkeypatch: pytest.MonkeyPatch, tmp_path: Path) -> None:
     (tmp_path / "numpy.py").write_text("raise SystemExit('the wrong numpy')")
-    given = {"PYTHONPATH": str(tmp_path), "PYTHONHOME": "/nowhere", "LD_LIBRARY_PATH": "/nowhere", "UNO_PATH": "x", "URE_BOOTSTRAP": "x",
-             "PATH": "/bin", "HOME": "/home/someone"}  # fmt: skip
+    given = {"PYTHONPATH": str(tmp_path), "PYTHONHOME": "/nowhere", "LD_LIBRARY_PATH": "/nowhere", "UNO_PATH": "x",
+             "URE_BOOTSTRAP": "x", "PATH": "/bin", "HOME": "/home/someone"}  # fmt: skip
     assert clean_environment(given) == {"PATH": "/bin", "HOME": "/home/someone"}
     for name in ("PYTHONPATH", "LD_LIBRARY_PATH"):
         monkeypatch.setenv(name, str(tmp_path))

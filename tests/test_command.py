@@ -66,7 +66,7 @@ def book(path: Path, second: object = 10.0) -> Path:
 
 # Help.
 
-HELP = [(), ("fill",), ("ask",), ("reference",)]
+HELP = [(), ("fill",), ("ask",), ("reference",), ("doctor",), ("install", "calc")]
 
 
 @pytest.fixture(scope="module")
@@ -104,6 +104,8 @@ def test_ingle_alone_says_how_to_begin() -> None:
         "Ingle fills workbooks whose cells ask how hot self-heating parts get.",
         "  ingle fill BOOK.xlsx    computes a workbook into BOOK.filled.xlsx",
         "  ingle ask ANSWERS CASE  answers one case here",
+        "  ingle install calc      puts the functions into LibreOffice Calc",
+        "  ingle doctor            says what is wrong with that",
         "  ingle reference         lists all headings and functions",
         "  ingle --help            lists all commands",
     ], [])  # fmt: skip

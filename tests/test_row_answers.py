@@ -172,7 +172,9 @@ def test_a_whole_column_for_one_row_is_refused_with_a_remedy() -> None:
 def test_a_row_explained() -> None:
     answers = RowAnswers(ERRORS)
     pairs, why = answers.explain("INGLE.PEAK", ((HEADINGS,), ((*ROW[:2], None, *ROW[3:]), ROW)), 1)
-    assert pairs == [(heading, f"{value:g}" if isinstance(value, float) else value) for heading, value in zip(HEADINGS, ROW, strict=True)]
+    assert pairs == [
+        (heading, f"{value:g}" if isinstance(value, float) else value) for heading, value in zip(HEADINGS, ROW, strict=True)
+    ]
     assert why == "ok"
     pairs, why = answers.explain("INGLE.ASK", ("why", (HEADINGS,), ((*ROW[:2], None, *ROW[3:]),)))
     assert [heading for heading, _ in pairs] == [heading for heading in HEADINGS if not heading.startswith("conductivity")]
@@ -186,7 +188,8 @@ def test_a_row_explained() -> None:
 
 def test_values_of_a_program_become_cells() -> None:
     day = datetime.datetime(2024, 5, 17)
-    given = [1.5, 2, True, "text", "", None, "#N/A", "#note", CellError.NUM, day, day.date(), day.time(), Decimal("2.5"), np.float64(3)]
+    given = [1.5, 2, True, "text", "", None, "#N/A", "#note", CellError.NUM, day, day.date(), day.time(), Decimal("2.5"),
+             np.float64(3)]  # fmt: skip
     want = [1.5, 2, True, "text", None, None, CellError.NA, "#note", CellError.NUM, day, day.date(), day.time(), 2.5, 3.0]
     got = [cell_of(value) for value in given]
     assert [(type(a), a) for a in got] == [(type(b), b) for b in want]

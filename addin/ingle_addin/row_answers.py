@@ -154,7 +154,7 @@ class RowAnswers:
     def _slots_of(self, asked: tuple[Asked | Fault, ...]) -> Slots:
         """A slot an answer; `why` among others tells of those others and shares one slot with them."""
         has_why = any(isinstance(each, Asked) and each.item.quantity == "why" for each in asked)
-        parts = [asked] if has_why and len(asked) > 1 else [(each,) for each in asked]
+        parts: list[tuple[Asked | Fault, ...]] = [asked] if has_why and len(asked) > 1 else [(each,) for each in asked]
         if has_why and len(asked) == 1 and isinstance(asked[0], Asked):
             parts = [(Alone.of(asked[0]),)]
         for part in parts:

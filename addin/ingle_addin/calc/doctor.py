@@ -97,7 +97,7 @@ def _in_calc(office: Office) -> Finding:
         text = "csv:Text - txt - csv (StarCalc):44,34,76,1,,0,false,false,false"
         try:
             done = office.run(office.soffice, "--headless", "--norestore", "--convert-to", text, "--outdir", folder, str(path))
-            rows = list(csv.reader(path.with_suffix(".csv").open(encoding="utf-8", newline="")))
+            rows = list(csv.reader(path.with_suffix(".csv").read_text(encoding="utf-8").splitlines()))
         except OSError:
             last = (done.stderr.strip().splitlines() or ["no reason was given"])[-1]
             return Finding(what, f"no answer from LibreOffice: {last}", f"{RESTART}, then run this again")

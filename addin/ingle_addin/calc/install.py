@@ -31,7 +31,9 @@ def install(office: Office) -> list[str]:
     lines = [f"LibreOffice {version} in {office.program}", f"{about()} is in its Calc now, {office.whom}."]
     closed = closed_folder() if office.shared and office.profile is None else None
     if closed is not None:
-        lines.append(f"Other users cannot read {closed}, where its Python lies: they will see #N/A. Install Ingle in a folder open to all.")
+        lines.append(
+            f"Other users cannot read {closed}, where its Python lies: they will see #N/A. Install Ingle in a folder open to all."
+        )
     return [*lines, f"Now {RESTART}; then =INGLE.ABOUT() in a cell answers."]
 
 
@@ -49,8 +51,9 @@ def remove(office: Office) -> list[str]:
 
 def closed_folder() -> Path | None:
     """A folder on the way to Ingle's Python that other users of this computer cannot enter."""
-    for target in (sys.executable, Path(sys.executable).resolve(), *package_folders()):
-        for folder in reversed(Path(target).parents):
+    python = Path(sys.executable)
+    for target in (python, python.resolve(), *map(Path, package_folders())):
+        for folder in reversed(target.parents):
             if folder.exists() and not folder.stat().st_mode & stat.S_IXOTH:
                 return folder
     return None

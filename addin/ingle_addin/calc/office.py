@@ -82,7 +82,7 @@ class Office:
                 timeout=_PATIENCE, env=environment,
             )  # fmt: skip
         except subprocess.TimeoutExpired:
-            raise OfficeError(f"{program.name} did not end within {_PATIENCE:.0f} s; close LibreOffice and try again") from None
+            raise OfficeError(f"{program.name} did not end within {_PATIENCE:g} s; close LibreOffice and try again") from None
         except OSError as error:
             raise OfficeError(f"{program} cannot be run ({error.strerror}); repair the installation of LibreOffice") from None
 
@@ -114,7 +114,11 @@ class Office:
             roots = [self.profile / "shared"]
         else:
             share = Path("share") / "uno_packages" / "cache"
-            roots = [self.program.parent / share, Path("/var/lib/libreoffice") / share, Path("/var/spool/libreoffice/uno_packages/cache")]
+            roots = [
+                self.program.parent / share,
+                Path("/var/lib/libreoffice") / share,
+                Path("/var/spool/libreoffice/uno_packages/cache"),
+            ]
         return next((root / path for root in roots if (root / path).is_dir()), None)
 
     @property

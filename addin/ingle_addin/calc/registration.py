@@ -21,8 +21,7 @@ _NOT_YET = "not available yet"
 
 _HEAD = '<?xml version="1.0" encoding="UTF-8"?>\n'
 _REGISTRY = (
-    'xmlns:oor="http://openoffice.org/2001/registry" xmlns:xs="http://www.w3.org/2001/XMLSchema" '
-    'oor:package="org.openoffice.Office"'
+    'xmlns:oor="http://openoffice.org/2001/registry" xmlns:xs="http://www.w3.org/2001/XMLSchema" oor:package="org.openoffice.Office"'
 )
 
 

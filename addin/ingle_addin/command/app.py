@@ -124,7 +124,9 @@ _PROFILE = typer.Option("--profile", help="A folder for a LibreOffice profile ap
 
 @installs.command("calc", short_help="Into LibreOffice Calc.", epilog="Example: ingle install calc")
 def install_calc(
-    build_only: Annotated[Path | None, typer.Option("--build-only", help="Write the extension to this file, install nothing.")] = None,
+    build_only: Annotated[
+        Path | None, typer.Option("--build-only", help="Write the extension to this file, install nothing.")
+    ] = None,
     remove: Annotated[bool, typer.Option("--remove", help="Take Ingle out of Calc.")] = False,
     office: Annotated[Path | None, _OFFICE] = None,
     profile: Annotated[Path | None, _PROFILE] = None,

@@ -8,6 +8,7 @@ from urllib.parse import parse_qs, urlsplit
 
 from com.sun.star.awt.FontWeight import BOLD
 from com.sun.star.awt.MessageBoxType import ERRORBOX, INFOBOX
+
 from ingle_addin.calc.inside.calls import NoCallError, call_behind
 from ingle_addin.calc.inside.client import Client, WorkerError
 
@@ -113,7 +114,10 @@ def about(document: Any, client: Client, settings: dict[str, Any], wanted: dict[
     except WorkerError as error:
         worker, process = str(error), 0
     python = ".".join(map(str, sys.version_info[:3]))
-    lines = [f"{worker}, process {process}" if process else worker, f"Extension {settings['version']}, in the office's Python {python}"]
+    lines = [
+        f"{worker}, process {process}" if process else worker,
+        f"Extension {settings['version']}, in the office's Python {python}",
+    ]
     return "\n".join([*lines, "", settings["caution"]])
 
 

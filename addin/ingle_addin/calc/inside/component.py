@@ -13,6 +13,7 @@ import uno
 import unohelper
 from com.sun.star.frame import XDispatchProvider, XNotifyingDispatch
 from com.sun.star.lang import XInitialization, XServiceInfo
+
 from ingle_addin.calc.inside.client import Client, WorkerError
 from ingle_addin.calc.inside.commands import carry_out
 from ingle_addin.calc.inside.errors import error_value
@@ -105,24 +106,29 @@ class Commands(_Service, XInitialization, XDispatchProvider, XNotifyingDispatch)
         self.frame = args[0] if args else None
 
     def initialize(self, args: tuple[Any, ...]) -> None:
+        """Take the window."""
         self.frame = args[0] if args else self.frame
 
     def queryDispatch(self, url: Any, target: str, flags: int) -> Any:  # noqa: ARG002
+        """Who carries out a command: we do, if it is one of ours."""
         return self if url.Protocol == SETTINGS["protocol"] else None
 
     def queryDispatches(self, requests: tuple[Any, ...]) -> tuple[Any, ...]:
+        """The same for many."""
         return tuple(self.queryDispatch(each.FeatureURL, each.FrameName, each.SearchFlags) for each in requests)
 
     def addStatusListener(self, listener: Any, url: Any) -> None:
-        pass
+        """Our commands have no state to tell of."""
 
     def removeStatusListener(self, listener: Any, url: Any) -> None:
-        pass
+        """There is none to remove."""
 
     def dispatch(self, url: Any, args: tuple[Any, ...]) -> None:
+        """Carry out a command."""
         carry_out(self.context, self.frame, CLIENT, SETTINGS, url.Complete, args)
 
     def dispatchWithNotification(self, url: Any, args: tuple[Any, ...], listener: Any) -> None:
+        """Carry out a command and hand what it says to the listener."""
         said = carry_out(self.context, self.frame, CLIENT, SETTINGS, url.Complete, args)
         if listener is not None:
             event = uno.createUnoStruct("com.sun.star.frame.DispatchResultEvent")
@@ -130,6 +136,6 @@ class Commands(_Service, XInitialization, XDispatchProvider, XNotifyingDispatch)
             listener.dispatchFinished(event)
 
 
-g_ImplementationHelper = unohelper.ImplementationHelper()
+g_ImplementationHelper = unohelper.ImplementationHelper()  # noqa: N816 - the name that the office looks for
 for _class in (Functions, Commands):
     g_ImplementationHelper.addImplementation(_class, _class.implementation, (_class.service,))
