@@ -138,7 +138,7 @@ def write_tables(path: Path, tables: list[tuple[list[str], list[list[object]]]])
     book.close()
 
 
-@pytest.mark.parametrize("rows", [60, pytest.param(2000, marks=pytest.mark.long)])
+@pytest.mark.parametrize("rows", [60, pytest.param(1000, marks=pytest.mark.long)])
 def test_random_mixed_rows_agree_with_the_independent_reference(calc: Office, tmp_path: Path, rows: int) -> None:
     tables = draw.tables(20, rows)
     write_tables(tmp_path / "tables.xlsx", tables)

@@ -179,6 +179,8 @@ def test_a_row_explained() -> None:
     pairs, why = answers.explain("INGLE.ASK", ("why", (HEADINGS,), ((*ROW[:2], None, *ROW[3:]),)))
     assert [heading for heading, _ in pairs] == [heading for heading in HEADINGS if not heading.startswith("conductivity")]
     assert why == alone("INGLE.WHY", (), HEADINGS, (*ROW[:2], None, *ROW[3:]))[0][0]
+    mine = answers.explain("INGLE.PEAK", ((("# no.", *HEADINGS, None),), (("B01", *ROW, "mine"),)))
+    assert [heading for heading, _ in mine[0]] == list(HEADINGS)
     assert answers.explain("INGLE.PEAK", ((HEADINGS,), ((None,) * 7,))) == ([], "this row is blank")
     assert answers.explain("INGLE.WHY", (None, (ROW,))) == ([], "The headings are missing; pass the range that holds them")
 

@@ -110,19 +110,19 @@ class RowAnswers:
         return tuple((cell,) for cell in cells) if table.upright else (cells,)
 
     def explain(self, name: str, args: Sequence[Any], row: int = 0) -> tuple[list[tuple[str, str]], str]:
-        """The filled headings of a row with their values as texts, and what INGLE.WHY says of it."""
+        """The filled headings of a row that are not the user's own, with their values as texts, and what INGLE.WHY says of it."""
         args = args[_LEADS.get(name, 1) :]
         texts = heading_texts(_grid(args[0]))
         rows = join([_grid(arg) for arg in args[1:]], texts[1]) if not isinstance(texts, Fault) else texts
         if isinstance(texts, Fault) or isinstance(rows, Fault):
             fault = texts if isinstance(texts, Fault) else rows
             return [], finished(fault.sentence, 0)  # type: ignore[union-attr]
-        cells = rows[min(row, len(rows) - 1)]
+        cells, own = rows[min(row, len(rows) - 1)], read_headings(texts[0]).own
         (why,) = solve_calls("INGLE.WHY", [((texts[0],), (cells,))])
         pairs = [
             (clean(text), _text(cell))
-            for text, cell in zip(texts[0], cells, strict=False)
-            if clean(text) and cell is not None and str(cell).strip()
+            for place, (text, cell) in enumerate(zip(texts[0], cells, strict=False))
+            if place not in own and cell is not None and str(cell).strip()
         ]
         return pairs, str(why.grid[0][0]) or "this row is blank"
 

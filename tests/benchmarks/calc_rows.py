@@ -13,6 +13,7 @@ import statistics
 import sys
 import tempfile
 import time
+from collections.abc import Callable
 from dataclasses import dataclass
 from pathlib import Path
 from typing import TYPE_CHECKING
@@ -60,7 +61,9 @@ def measure(calc: Office, rows: int, times: int = 3) -> list[Line]:
     case = ((tuple(HEADINGS),), (("wall", 10.0, 390.0, 0.12, 12.0, 35.0, 105.0),))
     lines.append(Line("the evaluator alone: PEAK of one row", few, _seconds(lambda: solve_calls("INGLE.PEAK", [case]), few)))
     worker = Client(worker_command())
-    lines.append(Line("the worker alone: a known row over the pipe", few, _seconds(lambda: worker.ask(("INGLE.PEAK", case, False)), few)))
+    lines.append(
+        Line("the worker alone: a known row over the pipe", few, _seconds(lambda: worker.ask(("INGLE.PEAK", case, False)), few))
+    )
     worker.close()
     return lines
 
@@ -86,8 +89,7 @@ def _timed(calc: Office, name: str, rows: int, times: int, formulas: list[str], 
     return Line(name, rows, statistics.median(found))
 
 
-def _seconds(work: object, times: int) -> float:
-    assert callable(work)
+def _seconds(work: Callable[[], object], times: int) -> float:
     work()
     start = time.perf_counter()
     for _ in range(times):
@@ -100,7 +102,9 @@ def table_of(lines: list[Line]) -> str:
     native = lines[0].each
     (array,) = (line.each for line in lines if "array" in line.name)
     rows = [f"{'':46}{'rows':>8}{'µs a row':>10}{'native':>9}{'array':>8}"]
-    rows += [f"{line.name:46}{line.rows:>8,}{line.each:>10.1f}{line.each / native:>8.0f}×{line.each / array:>7.1f}×" for line in lines]
+    rows += [
+        f"{line.name:46}{line.rows:>8,}{line.each:>10.1f}{line.each / native:>8.0f}×{line.each / array:>7.1f}×" for line in lines
+    ]
     return "\n".join(rows)
 
 

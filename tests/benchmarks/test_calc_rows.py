@@ -2,8 +2,9 @@
 
 from __future__ import annotations
 
-from benchmarks import calc_rows
 from calc_office import Office
+
+from benchmarks import calc_rows
 
 
 def test_the_benchmark_of_calc_gives_ratios(calc: Office) -> None:

@@ -57,22 +57,29 @@ def shoot(book: Path, out: Path, display: str, *, live: bool, every: bool) -> No
         shutil.copy(book, copy) if live else _values_only(book, copy)
         calc = ["soffice", f"-env:UserInstallation={(folder / 'profile').as_uri()}", "--norestore", "--nologo", "--calc"]
         environment = {**os.environ, "DISPLAY": display, "HOME": scratch, "SAL_USE_VCLPLUGIN": "gen"}
-        # A new profile ends the first start at once; this one is spent on that.
-        subprocess.run([*calc, "--headless", "--terminate_after_init"], env=environment, check=False, capture_output=True)
-        with _running(["Xvfb", display, "-screen", "0", f"{WIDTH}x{HEIGHT}x24"], environment):
-            time.sleep(2)
-            with _running([*calc, str(copy)], environment):
-                window = _window(book.name, environment)
-                _run(environment, "xdotool", "windowmove", window, "0", "0", "windowsize", window, str(WIDTH), str(HEIGHT))
-                _run(environment, "xdotool", "windowfocus", window)
-                time.sleep(4)
-                for name, sheets, cells, kept in VIEWS:
-                    for _ in range(sheets):
-                        _keys(environment, "ctrl+Next")
-                    for cell in cells:
-                        _keys(environment, cell) if cell == "Right" else _go(environment, cell)
-                    if kept or every:
-                        _picture(environment, out / f"{book.stem}-{name}.png")
+        with opened(calc, copy, environment):
+            for name, sheets, cells, kept in VIEWS:
+                for _ in range(sheets):
+                    _keys(environment, "ctrl+Next")
+                for cell in cells:
+                    _keys(environment, cell) if cell == "Right" else _go(environment, cell)
+                if kept or every:
+                    _picture(environment, out / f"{book.stem}-{name}.png")
+
+
+@contextmanager
+def opened(calc: list[str], book: Path, environment: Environment) -> Iterator[None]:
+    """A workbook in a Calc that fills a screen of its own."""
+    # A new profile ends the first start at once; this one is spent on that.
+    subprocess.run([*calc, "--headless", "--terminate_after_init"], env=environment, check=False, capture_output=True)
+    with _running(["Xvfb", environment["DISPLAY"], "-screen", "0", f"{WIDTH}x{HEIGHT}x24"], environment):
+        time.sleep(2)
+        with _running([*calc, str(book)], environment):
+            window = _window(book.name, environment)
+            _run(environment, "xdotool", "windowmove", window, "0", "0", "windowsize", window, str(WIDTH), str(HEIGHT))
+            _run(environment, "xdotool", "windowfocus", window)
+            time.sleep(4)
+            yield
 
 
 def _values_only(book: Path, copy: Path) -> None:

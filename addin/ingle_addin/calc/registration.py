@@ -48,7 +48,7 @@ def arguments(function: Function) -> list[Argument]:
     found: list[Argument] = []
     for argument in function.arguments:
         if argument.repeats:
-            found += [Argument(f"{argument.name} {number}", argument.help) for number in range(1, ONE_BY_ONE + 1)]
+            found += [Argument(argument.name, argument.help)] * ONE_BY_ONE  # the wizard numbers them
         found.append(argument)
     return found
 
