@@ -233,7 +233,7 @@ def column(calc: Office, number: int, rows: int) -> list[Any]:
 
 
 def test_killing_the_worker_in_the_middle_of_a_recalculation_heals(calc: Office) -> None:
-    rows = 600
+    rows = 300
     number = column_book(calc, rows)
     assert column(calc, number, rows) == pytest.approx(peaks(rows, 35.0), rel=1e-12)
     calc.set(number, "Sheet1", "N1", 36.0)

@@ -15,7 +15,7 @@ import pytest
 from ingle_addin.about import about, version
 from ingle_addin.calc import doctor, install
 from ingle_addin.calc import office as office_module
-from ingle_addin.calc.office import Office, OfficeError, find
+from ingle_addin.calc.office import Extension, Office, OfficeError, find
 from ingle_addin.command.app import run
 from ingle_addin.findings import Finding
 
@@ -28,6 +28,7 @@ def command(capsys: pytest.CaptureFixture[str], *words: str) -> tuple[int, list[
     return code, said.out.splitlines(), said.err.strip()
 
 
+@pytest.mark.long
 @NEEDS_OFFICE
 def test_install_doctor_and_remove_in_a_real_office(
     tmp_path: Path, capsys: pytest.CaptureFixture[str], monkeypatch: pytest.MonkeyPatch
@@ -224,6 +225,65 @@ def test_an_extension_for_all_users_is_removed_by_root_alone(tmp_path: Path, mon
     with pytest.raises(OfficeError) as caught:
         install.remove(office)
     assert str(caught.value) == "Ingle was installed for all users of this computer; remove it as administrator (root)"
+
+
+@pytest.mark.skipif(sys.platform == "win32", reason="the stand-in is made of shell scripts")
+def test_root_installs_for_all_and_is_told_who_cannot_use_it(tmp_path: Path, monkeypatch: pytest.MonkeyPatch) -> None:
+    program = fake(tmp_path, unopkg=f'echo "$@" >> {tmp_path}/calls')
+    monkeypatch.setattr(Office, "shared", True)
+    monkeypatch.setattr(install, "closed_folder", lambda: Path("/root"))
+    done = install.install(find(program))
+    restart = "Now close every window of LibreOffice and start it again; then =INGLE.ABOUT() in a cell answers."
+    assert done == [
+        f"LibreOffice 7.4.7.2 in {program}",
+        f"{about()} is in its Calc now, for all users of this computer.",
+        "Other users cannot read /root, where its Python lies: they will see #N/A. Install Ingle in a folder open to all.",
+        restart,
+    ]
+    verb, *rest, oxt = (tmp_path / "calls").read_text().split()
+    assert [verb, *rest, Path(oxt).name] == ["add", "--shared", "-f", "-s", "ingle.oxt"]
+    monkeypatch.setattr(Office, "shared", False)
+    assert install.install(find(program))[1:] == [f"{about()} is in its Calc now, for this user.", restart]
+    assert "--shared" not in (tmp_path / "calls").read_text().splitlines()[1]
+
+
+@pytest.mark.skipif(sys.platform == "win32", reason="the stand-in is made of shell scripts")
+def test_a_program_that_cannot_be_run(tmp_path: Path, capsys: pytest.CaptureFixture[str]) -> None:
+    program = fake(tmp_path)
+    (program / "soffice").write_text("no program")
+    (program / "soffice").chmod(0o644)
+    told = f"{program / 'soffice'} cannot be run (Permission denied); repair the installation of LibreOffice"
+    assert command(capsys, "install", "calc", "--office", str(program)) == (2, [], f"ingle: {told}")
+    silent = fake(tmp_path / "silent", unopkg="exit 1")
+    refused = "LibreOffice's extension manager refused: no reason was given"
+    assert command(capsys, "install", "calc", "--office", str(silent)) == (2, [], f"ingle: {refused}")
+
+
+def test_doctor_knows_a_worker_of_another_version_and_one_that_computes_wrong(
+    tmp_path: Path, monkeypatch: pytest.MonkeyPatch
+) -> None:
+    (tmp_path / "ingle.json").write_text('{"command": ["/some/python"], "seconds": 1.0}')
+    found = Extension("1", tmp_path)
+    replies: dict[str, object] = {"hello": ("Ingle 0.0.1", 7), "INGLE.PEAK": ((21.5,),)}
+
+    class Stand:
+        def __init__(self, command: list[str], seconds: float) -> None:
+            assert (command, seconds) == (["/some/python"], 1.0)
+
+        def ask(self, message: tuple[str, ...]) -> object:
+            return replies[message[0]]
+
+        def close(self) -> None:
+            pass
+
+    monkeypatch.setattr(doctor, "Client", Stand)
+    said = f"/some/python holds Ingle 0.0.1, but this is {about()}"
+    assert doctor._worker(found) == Finding("worker", said, "run: ingle install calc")
+    replies["hello"] = (about(), 7)
+    said = "/some/python answers ((21.5,),) where 22.5 is right"
+    assert doctor._worker(found) == Finding("worker", said, "install Ingle again, then run: ingle install calc")
+    replies["INGLE.PEAK"] = ((22.5,),)
+    assert doctor._worker(found) == Finding("worker", f"{about()} in /some/python")
 
 
 def test_root_is_told_of_a_folder_that_others_cannot_read(tmp_path: Path, monkeypatch: pytest.MonkeyPatch) -> None:

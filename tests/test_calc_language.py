@@ -3,6 +3,7 @@
 from __future__ import annotations
 
 import shutil
+import time
 from pathlib import Path
 
 import calc_office
@@ -51,5 +52,12 @@ def test_a_german_calc(tmp_path: Path) -> None:
         assert calc.values(again, "Tabelle1", "G2") == [[first]]
         said = calc.dispatch(again, "Tabelle1", "G3", "ingle.calc:explain")
         assert said.splitlines()[0] == "G3  INGLE.PEAK"
+        worker = int(calc.dispatch(again, "Tabelle1", "G3", "ingle.calc:about").splitlines()[0].rsplit(" ", 1)[1])
+        assert Path(f"/proc/{worker}").exists()
+    for _ in range(100):  # the worker ends with Calc
+        if not Path(f"/proc/{worker}").exists():
+            break
+        time.sleep(0.1)
+    assert not Path(f"/proc/{worker}").exists()
     saved = openpyxl.load_workbook(tmp_path / "saved.xlsx")["Tabelle1"]
     assert saved["G2"].value == "=INGLE.PEAK($A$1:$E$1,A2:E2)"

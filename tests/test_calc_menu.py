@@ -2,6 +2,9 @@
 
 from __future__ import annotations
 
+import importlib
+import sys
+import types
 from collections.abc import Iterator
 
 import pytest
@@ -171,3 +174,36 @@ def test_a_dialog_does_not_hold_up_an_office_without_windows_and_strangers_are_r
     calc, number = sheet
     assert calc.dispatch(number, SHEET, "A1", "ingle.calc:about", False).endswith(CAUTION)
     assert calc.dispatch(number, SHEET, "A1", "ingle.calc:polish") == "Ingle has no command polish."
+
+
+class Named:
+    """An argument of a command."""
+
+    Name, Value = "Quiet", True
+
+
+def test_commands_without_a_spreadsheet_or_a_cell(monkeypatch: pytest.MonkeyPatch) -> None:
+    """Without an office: its names are stood in for."""
+    names = {"FontWeight": ("BOLD",), "MessageBoxType": ("ERRORBOX", "INFOBOX")}
+    for name in ("com", "com.sun", "com.sun.star", "com.sun.star.awt"):
+        monkeypatch.setitem(sys.modules, name, types.ModuleType(name))
+    for module, constants in names.items():
+        stand = types.ModuleType(module)
+        for constant in constants:
+            setattr(stand, constant, constant)
+        monkeypatch.setitem(sys.modules, f"com.sun.star.awt.{module}", stand)
+    monkeypatch.delitem(sys.modules, "ingle_addin.calc.inside.commands", raising=False)
+    commands = importlib.import_module("ingle_addin.calc.inside.commands")
+    monkeypatch.delitem(sys.modules, "ingle_addin.calc.inside.commands")
+    tables = {"tables": {"wall": [[], [], []]}}
+
+    def said(frame: object, command: str, client: object = None) -> str:
+        return str(commands.carry_out(None, frame, client, tables, command, (Named(),)))
+
+    assert said(None, "ingle.calc:about") == "Open a spreadsheet first."
+    text = types.SimpleNamespace(Controller=types.SimpleNamespace(Model=types.SimpleNamespace()))
+    assert said(text, "ingle.calc:about") == "Open a spreadsheet first."
+    drawing = types.SimpleNamespace(Sheets=None, CurrentSelection=types.SimpleNamespace())
+    frame = types.SimpleNamespace(Controller=types.SimpleNamespace(Model=drawing))
+    assert said(frame, "ingle.calc:insert?shape=wall") == "Select a cell first."
+    assert said(frame, "ingle.calc:explain") == "Select a cell first."

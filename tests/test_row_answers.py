@@ -54,7 +54,7 @@ def test_every_order_gives_what_calls_of_their_own_give(order: str) -> None:
     rng = random.Random(7)
     answers = RowAnswers(ERRORS)
     compared = errors = 0
-    for heads, drawn in draw.tables(5, 60):
+    for heads, drawn in draw.tables(5, 40):
         rows = typed(drawn)
         calls = [(question, row) for question in QUESTIONS for row in rows]
         if order == "along the rows":
@@ -68,7 +68,7 @@ def test_every_order_gives_what_calls_of_their_own_give(order: str) -> None:
             assert all(map(same, got[0], want[0])), (name, lead, dict(zip(heads, row, strict=True)), got, want)
             compared += len(got[0])
             errors += sum(isinstance(cell, CellError) for cell in got[0])
-    assert compared > 500
+    assert compared > 400
     assert errors > 20
 
 

@@ -15,7 +15,7 @@ from typing import Any
 
 from ingle_addin.about import about
 from ingle_addin.calc.inside import wire
-from ingle_addin.calc.inside.errors import error_value
+from ingle_addin.calc.inside.errors import FAILED, error_value
 from ingle_addin.cells import CellError
 from ingle_addin.row_answers import RowAnswers
 
@@ -61,7 +61,7 @@ def main() -> None:
             answer = desk.answer(message)
         except Exception as error:
             # Ours to mend; the cell says so, and the next call is answered as ever.
-            answer = f"Ingle itself failed here ({type(error).__name__}: {error}); please report it with this row"
+            answer = FAILED.format(type(error).__name__, error)
         try:
             wire.write(out, wire.frame(answer))
         except OSError:

@@ -29,11 +29,12 @@ def carry_out(context: Any, frame: Any, client: Client, settings: dict[str, Any]
         document = frame.Controller.Model if frame is not None else None
         if document is None or not hasattr(document, "Sheets"):
             raise RefusedError("Open a spreadsheet first.")
-        said = _COMMANDS[parts.path](document, client, settings, wanted)
+        work = _COMMANDS.get(parts.path)
+        if work is None:
+            raise RefusedError(f"Ingle has no command {parts.path}.")
+        said = work(document, client, settings, wanted)
     except (RefusedError, NoCallError, WorkerError) as error:
         kind, said = ERRORBOX, str(error)
-    except KeyError:
-        kind, said = ERRORBOX, f"Ingle has no command {parts.path}."
     if not quiet and said:
         _show(context, frame, kind, said)
     return said
@@ -94,7 +95,10 @@ def explain(document: Any, client: Client, settings: dict[str, Any], wanted: dic
     """What INGLE.WHY says of the row behind the selected cell, and the row's filled headings."""
     top, left, sheet = _selected(document)
     call = call_behind(document, sheet, left, top)
-    pairs, why = client.ask(("explain", call.name, call.args, call.row))
+    answer = client.ask(("explain", call.name, call.args, call.row))
+    if isinstance(answer, str):
+        raise RefusedError(answer)
+    pairs, why = answer
     lines = [f"{call.cell}  {call.name}", "", why[:1].upper() + why[1:], ""]
     return "\n".join([*lines, *(f"{heading} = {value}" for heading, value in pairs)]).rstrip()
 

@@ -16,7 +16,7 @@ from com.sun.star.lang import XInitialization, XServiceInfo
 
 from ingle_addin.calc.inside.client import Client, WorkerError
 from ingle_addin.calc.inside.commands import carry_out
-from ingle_addin.calc.inside.errors import error_value
+from ingle_addin.calc.inside.errors import FAILED, error_value
 from ingle_addin.calc.inside.sheets import WHOLE, whole_columns
 
 with open(os.path.join(os.path.dirname(os.path.dirname(__file__)), "ingle.json"), encoding="utf-8") as file:
@@ -45,6 +45,8 @@ def _answered(context: Any, name: str, args: tuple[Any, ...], rest: bool = False
         answer = CLIENT.ask((name, args, whole), cells)
     except WorkerError as error:
         answer, failed = str(error), _NO_ANSWER
+    except Exception as error:  # whatever it is, a cell shows an error of ours and a reason
+        answer, failed = FAILED.format(type(error).__name__, error), _REFUSED
     else:
         if type(answer) is tuple and not (rest and (len(answer) > 1 or len(answer[0]) > 1)):
             return answer

@@ -1,9 +1,13 @@
-"""Cell errors as Calc knows them: a NaN whose low 32 bits hold the number of the error."""
+"""Cell errors as Calc knows them: a NaN whose low 32 bits hold the number of the error.
+
+Also the words that a failure of our own has.
+"""
 
 from __future__ import annotations
 
 import struct
 
+FAILED = "Ingle itself failed here ({}: {}); please report it with this row"
 NUMBERS = {
     "#NULL!": 521,
     "#DIV/0!": 532,
