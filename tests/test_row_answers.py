@@ -72,6 +72,27 @@ def test_every_order_gives_what_calls_of_their_own_give(order: str) -> None:
     assert errors > 20
 
 
+def test_a_call_of_many_rows_gives_what_it_gives_elsewhere() -> None:
+    answers = RowAnswers(ERRORS)
+    compared = 0
+    for heads, drawn in draw.tables(6, 60):
+        rows = tuple(typed(drawn))
+        if len(rows) < 2:
+            continue
+        upright = tuple(zip(*rows, strict=True))
+        for name, lead in QUESTIONS:
+            for values in ((rows,), (rows[:1], rows[1:]), (rows, rows[:1])):
+                call = (*(((each,),) for each in lead), (tuple(heads),), *values)
+                (want,) = solve_calls(name, [call])
+                got = answers.answer(name, (*lead, (tuple(heads),), *values))
+                assert list(map(tuple, want.grid)) == list(got), (name, lead)
+                compared += len(got)
+            turned = (*lead, tuple((head,) for head in heads), upright)
+            (want,) = solve_calls(name, [(*(((each,),) for each in lead), *turned[len(lead) :])])
+            assert list(map(tuple, want.grid)) == list(answers.answer(name, turned))
+    assert compared > 500
+
+
 def test_a_row_is_solved_once_for_what_its_neighbours_show_is_asked(monkeypatch: pytest.MonkeyPatch) -> None:
     sizes: list[tuple[int, int]] = []
     evaluate = row_answers.evaluate

@@ -45,8 +45,12 @@ def grid_of(value: Any) -> Grid:
         return OMITTED
     if not isinstance(value[0], (list, tuple)):
         value = (value,)
-    width = max(len(row) for row in value)
-    return tuple(tuple(map(cell_of, row)) + (None,) * (width - len(row)) for row in value)
+    # Long tables are mostly numbers, which need no call each.
+    rows = [tuple([cell if type(cell) is float else cell_of(cell) for cell in row]) for row in value]
+    widths = set(map(len, rows))
+    if len(widths) > 1:
+        rows = [row + (None,) * (max(widths) - len(row)) for row in rows]
+    return tuple(rows)
 
 
 def used_rows(grid: Grid) -> int:

@@ -15,6 +15,7 @@ from typing import Any
 
 import numpy as np
 
+from ingle_addin.asking import mismatch_of
 from ingle_addin.batch import asked_of, cells_of, failed, solve_calls
 from ingle_addin.calls import Outcome
 from ingle_addin.cells import Cell, CellError, Grid
@@ -100,8 +101,10 @@ class RowAnswers:
             if doubt is not None:
                 return self._failed(name, doubt)
             rows = join([_grid(arg) for arg in args[lead + 1 :]], table.upright)
-            if isinstance(rows, Fault) or len(rows) != 1:
+            if isinstance(rows, Fault):
                 return self._many(name, args)
+            if len(rows) > 1:
+                return self._of_rows(table, rows, slots)
             row = tuple(rows[0])
         if len(row) != table.plan.width:
             return self._many(name, args)
@@ -127,13 +130,7 @@ class RowAnswers:
         return pairs, str(why.grid[0][0]) or "this row is blank"
 
     def _many(self, name: str, args: Sequence[Any]) -> tuple[Row, ...]:
-        """A call of many rows, or of none that could be read as one."""
-        lead = _LEADS.get(name)
-        if lead is not None and len(args) > lead + 1:
-            table = self._table(_hashable(args[lead]))
-            doubt = self._doubt(table, args[lead + 1 :]) if table is not None else None
-            if doubt is not None:
-                return self._failed(name, doubt)
+        """A call that could not be read as rows under headings: another function, or one with a fault of the call itself."""
         (outcome,) = solve_calls(name, [tuple(map(_grid, args))])
         return rows_to_sheet(outcome.grid, self._errors)
 
@@ -215,6 +212,13 @@ class RowAnswers:
                     known.found[slot] = values
                 start = stop
 
+    def _of_rows(self, table: _Table, rows: list[list[Cell]], slots: Slots) -> tuple[Row, ...]:
+        """Many rows of one call: long tables are not kept."""
+        asked = tuple(chain.from_iterable(self._asked[slot] for slot in slots))
+        result = evaluate(table.plan, to_columns(rows), asked, mismatch_of(len(rows[0]), table.plan))
+        columns = [[to_sheet(cell, self._errors) for cell in cells_of(result, j)] for j in range(len(asked))]
+        return tuple(map(tuple, columns)) if table.upright else tuple(zip(*columns, strict=True))
+
     def _doubt(self, table: _Table, values: Sequence[Any]) -> Fault | None:
         """An argument of its own that is 0 where a temperature belongs, for it may have been an empty cell."""
         if not self._wary:
@@ -226,10 +230,19 @@ class RowAnswers:
                     if column.index == at and column.unit.kind is Kind.TEMPERATURE:
                         sentence = f"{column.label} is 0 and may be an empty cell; pass a range, as in A2:H2"
                         return Fault(CellError.VALUE, sentence)
-            grid = _grid(value)
-            if grid:
-                at += len(grid) if table.upright else len(grid[0])
+            at += _width(value, table.upright)
         return None
+
+
+def _width(value: Any, upright: bool) -> int:
+    """How many headings an argument's columns (or rows, where headings stand upright) belong to."""
+    if value is None:
+        return 0
+    if not isinstance(value, (list, tuple)) or not value:
+        return int(not isinstance(value, (list, tuple)))
+    if not isinstance(value[0], (list, tuple)):
+        return 1 if upright else len(value)
+    return len(value) if upright else len(value[0])
 
 
 def _grid(value: Any) -> Grid:
