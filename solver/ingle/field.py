@@ -9,7 +9,6 @@ import numpy as np
 from ingle.conductivities import Conductivity
 from ingle.march import LayerSteps, State
 from ingle.shapes import (
-    MEASURE,
     Array,
     Shape,
     depth_of_volume,
@@ -157,59 +156,23 @@ def mean_rise(state: State) -> Array:
     return total / V
 
 
-def left_flux(state: State) -> Array:
-    """Net heat leaving through the left face, W/m² of that face; 0 at the centre of a solid body."""
-    if state.problem.layers[0].W is None:
-        return np.zeros_like(state.Q_left)
-    return (0.0 - state.Q_left) / state.problem.area_left
-
-
-def right_flux(state: State) -> Array:
-    """Net heat leaving through the right face, W/m² of that face."""
-    return state.Q_right / state.problem.area_right
-
-
-def left_heat(state: State) -> Array:
-    """Net heat leaving on the left: W/m² of a wall, W/m of a cylinder, W of a sphere."""
-    return (0.0 - state.Q_left) * MEASURE[state.problem.structure.shape]
-
-
-def right_heat(state: State) -> Array:
-    """Net heat leaving on the right, measured as ``left_heat``."""
-    return state.Q_right * MEASURE[state.problem.structure.shape]
-
-
-def _made(state: State) -> Array:
-    made = state.q[0] * state.problem.layers[0].V
+def made(state: State) -> Array:
+    """Heat generated in the body, in the measure of Q."""
+    total = state.q[0] * state.problem.layers[0].V
     for q, layer in zip(state.q[1:], state.problem.layers[1:], strict=True):
-        made = made + q * layer.V
-    return made
+        total = total + q * layer.V
+    return total
 
 
-def heat_made(state: State) -> Array:
-    """Heat generated in the body, measured as ``left_heat``."""
-    return _made(state) * MEASURE[state.problem.structure.shape]
-
-
-def left_share(state: State) -> Array:
-    """Share of all heat that leaves which leaves on the left, 0 to 1; NaN where none leaves beyond rounding."""
-    left, right = np.maximum(-state.Q_left, 0.0), np.maximum(state.Q_right, 0.0)
-    total = left + right
-    leaves = total > 1e-13 * largest_heat(state)
-    return np.where(leaves, left / np.where(leaves, total, 1.0), np.nan)
-
-
-def balance(state: State) -> Array:
-    """What the heats are out of balance by, over the largest of heat made, taken in and passing through (a self-check)."""
+def short(state: State) -> Array:
+    """What the heats are out of balance by, in the measure of Q (a self-check)."""
     # Q₁ − Q₀ = made by the march itself; what can be wrong is the far face's law, and the sum in floating point.
-    short = np.abs(state.imbalance) + np.abs(state.Q_right - state.Q_left - _made(state))
-    scale = largest_heat(state)
-    return np.where(scale > 0.0, short / np.where(scale > 0.0, scale, 1.0), short)
+    return np.abs(state.imbalance) + np.abs(state.Q_right - state.Q_left - made(state))
 
 
 def largest_heat(state: State) -> Array:
-    """Largest of heat made, put in, and crossing a layer's face."""
-    scale = np.abs(_made(state))
+    """Largest of heat made, put in, and crossing a layer's face, in the measure of Q."""
+    scale = np.abs(made(state))
     for ends in state.ends:
         scale = np.maximum(scale, np.maximum(np.abs(ends.Q0), np.abs(ends.Q1)))
     for side, A in ((state.problem.left, state.problem.area_left), (state.problem.right, state.problem.area_right)):

@@ -290,3 +290,37 @@ def mean(state: NetworkState, layer: int | None = None) -> Array:
                     total = total + element.port.sum(state_e.Ta[e], state_e.Tb[e], multiples[e], state_e.theta[e])
             result[part.rows] = part.network.zero + total / size
     return np.where(state.status == Status.SOLVED, result, np.nan)
+
+
+def shape_sum(state: NetworkState, layer: int) -> Array:
+    """∫ g r^m dr of a layer's source law g, side losses apart; NaN where not solved."""
+    result = np.full(len(state.status), np.nan)
+    with np.errstate(all="ignore"):
+        for part in state.parts:
+            total, multiples, found = np.zeros(len(part.rows)), part.border.multiples(part.network, part.state), part.state
+            for e, element in enumerate(part.network.elements):
+                if element.layer == layer:
+                    total = total + element.port.shape_sum(found.Ta[e], found.Tb[e], multiples[e], found.theta[e])
+            result[part.rows] = total
+    return np.where(state.status == Status.SOLVED, result, np.nan)
+
+
+def low(state: NetworkState, layer: int) -> Array:
+    """The lowest temperature of a layer [°C]; NaN where not solved."""
+    T = np.full(len(state.status), np.nan)
+    with np.errstate(all="ignore"):
+        for part in state.parts:
+            least = np.full(len(part.rows), np.inf)
+            multiples, found = part.border.multiples(part.network, part.state), part.state
+            for e, element in enumerate(part.network.elements):
+                if element.layer != layer:
+                    continue
+                port, start = element.port, found.Ta[e]
+                if port.solid:
+                    start = port.at(found.Ta[e], found.Tb[e], multiples[e], found.theta[e], np.zeros_like(start)).T
+                least = np.minimum(least, np.minimum(start, found.Tb[e]))
+                inside = port.span(found.theta[e])
+                if inside is not None:
+                    least = np.minimum(least, inside[0])
+            T[part.rows] = part.network.zero + least
+    return np.where(state.status == Status.SOLVED, T, np.nan)
