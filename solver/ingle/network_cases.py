@@ -91,9 +91,7 @@ class Driven:
     amplitudes: tuple[Amplitude | None, ...]
 
 
-def network_of(
-    cases: Cases, structure: Structure, sources: Sequence[Source], driven: Sequence[bool] | None = None
-) -> Driven:
+def network_of(cases: Cases, structure: Structure, sources: Sequence[Source], driven: Sequence[bool] | None = None) -> Driven:
     """The problem with these sources in its layers, those ``driven`` marked as scaling together. ValueError: see ``Bar``."""
     zero = coldest(cases, structure)
     supplies: list[Supply] = []

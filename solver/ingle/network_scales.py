@@ -83,7 +83,8 @@ def allowable_scale(problem: NetworkProblem, limits: tuple[Limit, ...]) -> Allow
             if not len(rows):
                 continue
             found, rising, good = _held(problem.take(rows), limit, limit.value[rows])
-            unsure[rows] |= ~good | (found < 0.0)
+            # A limit below the source-free state may be met on a far branch, where λ falls.
+            unsure[rows] |= ~good | (found < 0.0) | ~(rising > 0.0)
             beyond[rows] |= good & (found >= 0.0) & ~(rising > 0.0)
             lower = good & (found >= 0.0) & (rising > 0.0) & (found < scale[rows])
             scale[rows[lower]], governs[rows[lower]] = found[lower], number

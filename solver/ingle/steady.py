@@ -50,6 +50,9 @@ QUANTITIES: dict[str, Callable[[Solution], Array]] = {
 # Those of the allowable source, which a case has though its own source be too much for any steady state.
 OF_ALLOWABLE = frozenset({"allowable_multiple", "governs", "cold_broken", "first_broken", "lacking"})
 
+# Those that depend on which sources scale.
+OF_SCALING = OF_ALLOWABLE | {"headroom"}
+
 # Of layer n, asked as "layer_peak 2"; "joint_left 1" and "joint_right 1" are the sides of the joint beyond layer n.
 LAYER_QUANTITIES: dict[str, Callable[[Solution, int], Array]] = {
     "layer_peak": lambda s, n: s.layer_range(n)[1],

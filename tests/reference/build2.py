@@ -275,6 +275,8 @@ def _electric(cells: Cells, body: Model, kind: str, n: int, blank: bool) -> Sour
     if kind == "voltage":
         cells.need("length")
     size, whole, electric = abs(given), False, SOLID_CURRENT
+    if kind == "voltage":
+        size /= ac  # the resistance is that of alternating current
     if shape == BAR:
         electric = WOUND
         size *= {"current": 1.0 / body.section, "voltage": body.section}.get(kind, 1.0)

@@ -218,12 +218,12 @@ class Draw:
                 out[f"resistivity reference {n}"] = self.warm + rng.uniform(-0.1, 0.2) * min(self.rise, 100.0)
         elif chance < 0.75:
             out[f"resistivity {n}"] = self.points(rho, 0.6, 2.0)
-        wound = self.shape in ("wall", "cylinder") and kind != "voltage" and self.chance(0.3)
+        wound = self.shape in ("wall", "cylinder") and self.chance(0.3)
         if wound:
             out[f"turns {n}"] = float(rng.randint(5, 500))
             if self.chance(0.7):
                 out[f"fill factor {n}"] = rng.uniform(0.3, 0.9)
-        if kind != "voltage" and self.chance(0.25):
+        if self.chance(0.25):
             out[f"ac ratio {n}"] = rng.uniform(1.0, 1.8)
         if self.shape == "wall":
             out.setdefault("width", spread(rng, 1e-3, 1.0))
