@@ -10,12 +10,14 @@ from dataclasses import dataclass, replace
 
 import numpy as np
 
-from ingle.network import peak, solve_network
+from ingle.network import solve_network
+from ingle.network_bracket import bracketed, temperature_of
 from ingle.network_controls import face, hottest, middle
 from ingle.network_newton import Border, Control, Status, newton, usable
 from ingle.network_problem import NetworkProblem
 from ingle.network_run import Part, run
 from ingle.network_trace import FAR, _some, follow, held_border, is_linear, refollowing, start_of_path
+from ingle.network_unique import strides
 from ingle.shapes import Array
 
 RUNAWAY = -1  # governs: the turning point, not a limit
@@ -101,9 +103,15 @@ def allowable_scale(problem: NetworkProblem, limits: tuple[Limit, ...]) -> Allow
         if len(rows):
             most = turning_scale(problem.take(rows))
             sooner = ~(most.scale > scale[rows]) | (governs[rows] < 0)
-            # A limit found on the far side of a turning point does not count.
+            # A limit found on the far side of a turning point does not count, but it may also be passed on this side.
             take = rows[sooner]
             scale[take], governs[take] = most.scale[sooner], RUNAWAY
+            again = np.flatnonzero(unsure[take] & ~np.isnan(scale[take]))
+            if len(again):
+                take = take[again]
+                within = bracketed(problem.take(take), [(limit.value[take], limit.where) for limit in limits], scale[take])
+                hit = within.which >= 0
+                scale[take[hit]], governs[take[hit]] = within.scale[hit], within.which[hit]
     never = np.isinf(scale) & (governs == RUNAWAY)
     governs[never] = -2
     governs[broken >= 0] = broken[broken >= 0]
@@ -130,10 +138,7 @@ def _check_sourceless(problem: NetworkProblem, limits: tuple[Limit, ...], rows: 
     part = problem.take(rows)
     state = solve_network(part, np.zeros(len(rows)))
     for number, limit in reversed(list(enumerate(limits))):
-        if isinstance(limit.where, str):
-            T = state.left[0] if limit.where == "left" else state.right[-1]
-        else:
-            T = peak(state, limit.where).T
+        T = temperature_of(state, limit.where)
         broken[rows[limit.value[rows] < T]] = number
 
 
@@ -150,10 +155,7 @@ def _doubted(problem: NetworkProblem, scale: Array, limits: tuple[Limit, ...], g
         mine = governs[rows] == number
         if not mine.any():
             continue
-        if isinstance(limit.where, str):
-            T = state.left[0] if limit.where == "left" else state.right[-1]
-        else:
-            T = peak(state, limit.where).T
+        T = temperature_of(state, limit.where)
         rise = np.abs(limit.value[rows] - problem.coldest[rows])
         off = ~(np.abs(T - limit.value[rows]) <= 1e-3 * rise + 1e-6)
         doubted[rows[mine & off & (state.status != Status.TOO_HOT)]] = True
@@ -181,7 +183,7 @@ def turning_scale(problem: NetworkProblem) -> TurningScale:
                 scale[part.rows] = _eigenvalue(part, border)
                 rise[part.rows] = np.inf
                 continue
-            turn = follow(part.network, border, part.state, None)
+            turn = follow(part.network, border, part.state, None, strides(here))
             value, tau = turn.scale.copy(), turn.tau.copy()
             endless = ~turn.turned & (turn.tau >= FAR)
             value[~turn.turned] = np.nan

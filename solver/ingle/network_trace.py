@@ -18,6 +18,7 @@ from ingle.network_newton import Border, State, Status, newton, usable
 from ingle.network_problem import NetworkProblem, Supply
 from ingle.network_run import Part, run, transferred
 from ingle.network_sweep import Network
+from ingle.network_unique import Strides, maybe_another, strides
 from ingle.shapes import Array
 
 _MOST_TURNS = 60
@@ -95,11 +96,16 @@ def start_of_path(network: Network, border: Border, state: State) -> tuple[State
     return opened, middle(network, opened, multiples, models).T
 
 
-def follow(network: Network, border: Border, base: State, goal: Array | None) -> Turn:
-    """Follow every case's path from its source-free state until λ is ``goal`` or turns."""
+def follow(network: Network, border: Border, base: State, goal: Array | None, strides: Strides | None = None) -> Turn:
+    """Follow every case's path from its source-free state until λ is ``goal`` or turns.
+
+    ``strides``: no step is longer, for behind a table's point λ may turn and rise again at once.
+    """
     state, T0 = start_of_path(network, border, base)
     n = len(T0)
     tau = _FIRST * (network.zero + 273.15 + T0)
+    if strides is not None:
+        tau = np.minimum(tau, strides.length)
     one, zero = np.ones(n), np.zeros(n)
     tries = _Tries(*(x.copy() for x in (zero, zero + np.inf, one, one, tau, one, zero, zero, one)))
     kept, final = state.take(np.arange(n)), state.take(np.arange(n))  # where the next try starts; the last usable one
@@ -157,6 +163,9 @@ def follow(network: Network, border: Border, base: State, goal: Array | None) ->
         if not len(live):
             break
         step = _next(tries.take(live), None if goal is None else goal[live], turn)
+        if strides is not None:
+            low = tries.low[live]
+            step = np.where(low < strides.reach[live], np.minimum(step, low + strides.length[live]), step)
         again = back[~stop]
         tau[live] = np.where(again, np.sqrt(tries.low[live] * tau[live]), step)
     return Turn(tries.tau, tries.scale, tries.D, T0, turned, reached, turned & floored, network, border, final)
@@ -194,6 +203,7 @@ def traced(problem: NetworkProblem, scale: Array | None, parts: list[Part]) -> l
     doubtful = [part.status == Status.NOT_CONVERGED for part in parts]
     if not linear:
         doubtful = [lost | (part.status == Status.RUNAWAY) for lost, part in zip(doubtful, parts, strict=True)]
+    doubtful = [lost | maybe_another(problem, part) for lost, part in zip(doubtful, parts, strict=True)]
     if not any(d.any() for d in doubtful):
         return parts
     rows = np.sort(np.concatenate([part.rows[d] for part, d in zip(parts, doubtful, strict=True)]))
@@ -223,7 +233,7 @@ def _settled(problem: NetworkProblem, base: Part, coarse: bool) -> list[Part]:
     """
     n = len(base.rows)
     one, supplies = np.ones(n), problem.supplies
-    turn = follow(base.network, held_border(problem, n), base.state, one)
+    turn = follow(base.network, held_border(problem, n), base.state, one, strides(problem))
     status = np.where(turn.turned, Status.RUNAWAY, np.where(turn.reached, Status.SOLVED, Status.NOT_CONVERGED)).astype(np.int8)
     status[~turn.turned & ~turn.reached & (turn.tau >= FAR)] = Status.TOO_HOT
     fixed = Border([supply.given for supply in supplies], [False] * len(supplies), one)
