@@ -8,7 +8,7 @@ from ingle_addin.cells import CellError
 from ingle_addin.faults import ROW, Fault
 
 # Allowable sources are answered though the row's own source is too much for any steady state.
-BEYOND = frozenset({Status.RUNAWAY, Status.TOO_HOT})
+BEYOND = frozenset({Status.RUNAWAY, Status.TOO_HOT, Status.NO_CONDUCTIVITY})
 
 STATUS_FAULTS = {
     Status.NO_OUTLET: Fault(

@@ -98,7 +98,11 @@ def allowable_scale(problem: NetworkProblem, limits: tuple[Limit, ...]) -> Allow
         scale[broken >= 0] = np.nan
         governs[broken >= 0] = -2
         beyond &= broken < 0
-        beyond |= _doubted(problem, scale, limits, governs)
+        # A limit found on a branch beyond a turning point is none.
+        elsewhere = _doubted(problem, scale, limits, governs)
+        scale[elsewhere], governs[elsewhere] = np.inf, -2
+        unsure |= elsewhere
+        beyond |= elsewhere
         rows = np.flatnonzero(beyond)
         if len(rows):
             most = turning_scale(problem.take(rows))

@@ -50,6 +50,12 @@ QUANTITIES: dict[str, Callable[[Solution], Array]] = {
 # Those of the allowable source, which a case has though its own source be too much for any steady state.
 OF_ALLOWABLE = frozenset({"allowable_multiple", "governs", "cold_broken", "first_broken", "lacking"})
 
+# The states of which only the source is too much.
+GONE = (Status.RUNAWAY, Status.TOO_HOT, Status.NO_CONDUCTIVITY)
+
+# The states of which only the source is too much.
+GONE = (Status.RUNAWAY, Status.TOO_HOT, Status.NO_CONDUCTIVITY)
+
 # Those that depend on which sources scale.
 OF_SCALING = OF_ALLOWABLE | {"headroom"}
 
@@ -95,7 +101,7 @@ def steady(cases: Cases, wanted: Iterable[str]) -> Answers:
     limit, that of ``worst_limit`` (infinite where there is none), ``cold_broken`` the limit passed without the scaled sources,
     ``allowable_multiple`` of the pattern's heat, never beyond runaway and NaN where ``lacking`` (1 no limit, 2 ``first_broken``
     passed with no source, 3 never reached, 4 no state there, 5 not found). Those of the allowable have values also where the
-    status is RUNAWAY or TOO_HOT. Raises KeyError for another name.
+    status is one of ``GONE``. Raises KeyError for another name.
     Source: Fourier's law and conservation of heat, by layers with the Kirchhoff integral of k(T).
     """
     wanted = tuple(wanted)
@@ -137,7 +143,7 @@ def _group(cases: Cases, structure: Structure, wanted: tuple[str, ...]) -> Answe
     failed = status != Status.SOLVED
     values = {name: quantity(name)(solution) for name in wanted}
     if failed.any():
-        beyond = failed & (status != Status.RUNAWAY) & (status != Status.TOO_HOT)
+        beyond = failed & ~np.isin(status, GONE)
         values = {name: np.where(beyond if name in OF_ALLOWABLE else failed, np.nan, value) for name, value in values.items()}
     return Answers(values, status)
 
