@@ -224,7 +224,9 @@ def _refined(problem: NetworkProblem, seed: Part, T0: Array, tau: Array, scale: 
             outcome = newton(part.network, replace(edge, target=T0[rows] + trial), state)
             state = outcome.state
             D_new = outcome.rising * trial / state.mu[-1]
-            fine = open_rows & (outcome.status == Status.SOLVED) & np.isfinite(D_new) & usable(part.network, state)
+            held = usable(part.network, state)
+            fine = open_rows & (outcome.status == Status.SOLVED) & np.isfinite(D_new)
+            fine = fine if held is None else fine & held
             change = (D_new - D) / np.where(step == 0.0, 1.0, step)
             slope = np.where(fine & (change < 0.0), change, slope)
             best = np.where(fine, state.mu[-1], best)

@@ -85,7 +85,7 @@ def start_of_path(network: Network, border: Border, state: State) -> tuple[State
     zero = np.zeros_like(network.zero)
     groups = len(border.given)
     mu = [x.copy() for x in state.mu[:groups]] + [zero.copy()]
-    opened = State(state.Ta, state.Tb, state.theta, state.surfaces, mu)
+    opened = State(state.faces, state.theta, state.surfaces, mu)
     multiples = border.multiples(network, opened)
     owners = border.of(network)
     models = [
@@ -110,7 +110,8 @@ def follow(network: Network, border: Border, base: State, goal: Array | None) ->
         outcome = newton(network.take(live), replace(border.take(live), target=T0[live] + tau[live]), here)
         scale = here.mu[-1]
         D = outcome.rising * tau[live] / scale
-        held = usable(network.take(live), here)
+        free = usable(network.take(live), here)
+        held = np.ones(len(live), dtype=bool) if free is None else free
         sound = (outcome.status == Status.SOLVED) & np.isfinite(D) & (scale > 0.0) & held
         over = np.zeros(len(live), dtype=bool) if goal is None else sound & (scale >= goal[live])
         up = sound & (D > 0.0) & ~over
@@ -228,7 +229,7 @@ def _settled(problem: NetworkProblem, base: Part, coarse: bool) -> list[Part]:
     status[~turn.turned & ~turn.reached & (turn.tau >= FAR)] = Status.TOO_HOT
     fixed = Border([supply.given for supply in supplies], [False] * len(supplies), one)
     found = turn.state
-    state = State(found.Ta, found.Tb, found.theta, found.surfaces, found.mu[: len(supplies)])
+    state = State(found.faces, found.theta, found.surfaces, found.mu[: len(supplies)])
     seed = Part(base.rows, base.network, fixed, state, status, base.steps, base.rising)
     near = turn.turned & (turn.scale > 0.7) & (turn.tau < FAR) if coarse else np.zeros(n, dtype=bool)
     parts: list[Part] = []
