@@ -149,7 +149,7 @@ class CollocatedPort(Port):
 
     def _unstable(self, sigma: Array, seen: Array, matrix: Array) -> np.ndarray | None:
         """How many of the layer's own modes grow while both faces are held; None where no case has any."""
-        steep = sigma.max(axis=0) >= self.rule.safe
+        steep = np.maximum.reduce(sigma, axis=0) >= self.rule.safe
         if not np.count_nonzero(steep):
             return None
         # With both faces raised alike, a stable inside rises everywhere.
@@ -176,14 +176,14 @@ class CollocatedPort(Port):
         sigma = self.stretch * (S / k)
         seen, matrix = self._columns(sigma, self.stretch * A, None)
         negatives = self._unstable(sigma, seen, matrix)
-        hottest = np.abs(seen[0, :N]).max(axis=0) / k
+        hottest = np.maximum.reduce(np.abs(seen[0, :N]), axis=0) / k
         if self.solid:
             made, by_b = C * seen[0, N], C * (seen[1, N] * k)
-            inside = np.stack([seen[0, :N], seen[0, :N], (1.0 + seen[1, :N]) * k])
+            inside = (seen[0, :N], None, (1.0 + seen[1, :N]) * k)
             return bound_port(None, np.zeros_like(k), made, (None, None, None, by_b), hottest, negatives, inside)
-        x = self.rule.x[:, None]
+        from_a, from_b = self.rule.toward
         to_a, to_b, g = C * seen[:, N], C * seen[:, N + 1], C * k
-        inside = np.stack([seen[0, :N], (1.0 - x + seen[1, :N]) * k, (x + seen[2, :N]) * k])
+        inside = (seen[0, :N], (from_a + seen[1, :N]) * k, (from_b + seen[2, :N]) * k)
         terms = (-to_a[1] * k, -to_a[2] * k, to_b[1] * k, to_b[2] * k)
         return bound_port(g, -to_a[0], to_b[0], terms, hottest, negatives, inside)
 
@@ -204,13 +204,13 @@ class CollocatedPort(Port):
             lined = theta_b
         else:
             theta_a, ka = self.map.lift(Ta)
-            x = R.x[:, None]
-            lined = (1.0 - x) * theta_a + x * theta_b
+            from_a, from_b = R.toward
+            lined = from_a * theta_a + from_b * theta_b
         short = lined - theta
         last = self.stretch * per_mu if border else None
         seen, matrix = self._columns(sigma, self.stretch * q + sigma * short, last)
         negatives = self._unstable(sigma, seen, matrix)
-        v_short, hottest = short + seen[0, :N], np.abs(T).max(axis=0)
+        v_short, hottest = short + seen[0, :N], np.maximum.reduce(np.abs(T), axis=0)
         if self.solid:
             v_b = (1.0 + seen[1, :N]) * kb
             zero = np.zeros_like(Tb)
@@ -218,7 +218,7 @@ class CollocatedPort(Port):
             Qb, bb = C * seen[0, N], C * (seen[1, N] * kb)
             v_a = v_b
         else:
-            v_a, v_b = (1.0 - x + seen[1, :N]) * ka, (x + seen[2, :N]) * kb
+            v_a, v_b = (from_a + seen[1, :N]) * ka, (from_b + seen[2, :N]) * kb
             to_a, to_b = C * seen[:, N], C * seen[:, N + 1]
             fall = C * self.map.between(Ta, Tb)
             Qa, Qb = fall - to_a[0], fall + to_b[0]
@@ -254,7 +254,7 @@ class CollocatedPort(Port):
             move = move + inner[1] * da
         if dl is not None:
             move = move + inner[3] * dl
-        return theta + move, np.abs(move).max(axis=0) / self.map.at(db * 0.0)
+        return theta + move, np.maximum.reduce(np.abs(move), axis=0) / self.map.cold
 
     def _all(self, Ta: Array, Tb: Array, mu: Array, theta: Array) -> Array:
         """θ at both ends and the nodes."""
@@ -410,7 +410,12 @@ class CollocatedPort(Port):
         """See ``Port``."""
         assert theta is not None
         T = self._held[2] if self._held is not None and self._held[0] is theta else self.map.read(theta)[0]
-        return T.min(axis=0), T.max(axis=0)
+        return np.minimum.reduce(T, axis=0), np.maximum.reduce(T, axis=0)
+
+    def apart(self, theta: Array, other: Array) -> Array:
+        """See ``Port``."""
+        largest: Array = np.maximum.reduce(np.abs(theta - other), axis=0)
+        return largest / self.map.cold
 
     def reach(self, Ta: Array, Tb: Array, theta: Array | None) -> Array | None:
         """See ``Port``."""
@@ -435,7 +440,7 @@ class CollocatedPort(Port):
         """About how far T is off for want of nodes [K], from the last coefficients of f."""
         _, k, q = self._picture(mu, theta)
         tail = np.abs(combine(self.rule.tail, self.stretch * q))
-        least = k if k.ndim == 1 else k.min(axis=0)
+        least = k if k.ndim == 1 else np.minimum.reduce(k, axis=0)
         worst: Array = (tail[0] + tail[1]) / (4.0 * self.N * self.N) / least
         return worst
 

@@ -24,7 +24,7 @@ class Rule:
     ``x``: nodes in η or s; ``ends``: nodes with both ends; ``D``: derivative at those; ``bary``: barycentric weights
     (``bary_solid`` without the centre); ``weights``: of ∫ q r^m dr; ``toward_a``, ``toward_b``: of the heats; ``tail``: gives
     the last two coefficients of f; ``centre``: weights of θ at a solid body's centre. ``turned`` −Green, ``lines``: Green with
-    the rows of the heats below it (of a solid body the heat outward and the centre).
+    the rows of the heats below it (of a solid body the heat outward and the centre); ``toward``: α and β as columns.
     ``safe``: while σ stays below, no mode of the layer grows with both faces held.
     """
 
@@ -43,6 +43,7 @@ class Rule:
     centre: Array
     turned: Array
     lines: Array
+    toward: tuple[Array, Array]
     safe: float
 
 
@@ -94,7 +95,7 @@ def rule(N: int, solid_shape: int | None) -> Rule:
     heats = [toward_a, toward_b] if solid_shape is None else [w, centre]
     return Rule(
         x, w, Green, alpha, beta, toward_a, toward_b, ends, D, bary, bary_solid, to_coefficients[-2:], centre, -Green,
-        np.ascontiguousarray(np.vstack([Green, *heats])), 0.9 * _FIRST_MODE[solid_shape],
+        np.ascontiguousarray(np.vstack([Green, *heats])), (alpha[:, None], beta[:, None]), 0.9 * _FIRST_MODE[solid_shape],
     )  # fmt: skip
 
 

@@ -6,6 +6,8 @@ everywhere and has the last word wherever a conductivity lies on its floor.
 
 from __future__ import annotations
 
+from functools import cached_property
+
 import numpy as np
 
 from ingle.conductivities import FLOOR, Conductivity
@@ -32,6 +34,11 @@ class Kirchhoff:
     def _k0(self) -> Array:
         assert self.k.k0 is not None
         return self.k.k0
+
+    @property
+    def cold(self) -> Array:
+        """k at the zero."""
+        return self._k0
 
     def read(self, theta: Array) -> tuple[Array, Array]:
         """T and k at θ."""
@@ -73,6 +80,11 @@ class _Sloped(Kirchhoff):
         self.k_square = self.k_z * self.k_z
         self.twice_c = 2.0 * self.c
 
+    @property
+    def cold(self) -> Array:
+        """See ``Kirchhoff``."""
+        return np.maximum(self.plain, self.least)
+
     def read(self, theta: Array) -> tuple[Array, Array]:
         """See ``Kirchhoff``."""
         square = self.k_square + self.twice_c * theta
@@ -108,6 +120,16 @@ class _Sloped(Kirchhoff):
 
 class _General(Kirchhoff):
     """By the conductivity's own integral."""
+
+    @cached_property
+    def _cold(self) -> Array:
+        assert self.k.table is not None
+        return self.k.at(np.zeros(len(self.k.table.T)))
+
+    @property
+    def cold(self) -> Array:
+        """See ``Kirchhoff``."""
+        return self._cold
 
     def read(self, theta: Array) -> tuple[Array, Array]:
         """See ``Kirchhoff``."""

@@ -21,6 +21,9 @@ MOST_STEPS = 40
 # Stands for the move of a step that was shortened, which is no sign of nearness.
 SHORTENED = 1e300
 
+# A state that is this share of its rise from a known one is taken for it: Newton's steps shrink as squares.
+_NEAR = 0.02
+
 
 class Status(IntEnum):
     """How a case ended."""
@@ -118,7 +121,7 @@ class Border:
     @property
     def nodes(self) -> bool:
         """Whether plane layers are collocated."""
-        return self.by_nodes or self.count > 0
+        return self.by_nodes or len(self.given) > 0
 
     def take(self, rows: np.ndarray) -> Border:
         """The border of some of the cases."""
@@ -228,8 +231,8 @@ class Ready:
                 state.theta[e] = bound.settled(state.faces[2 * e], state.faces[2 * e + 1])
 
 
-def newton(network: Network, border: Border, state: State) -> Outcome:
-    """From ``state``, which is changed, to the steady state of every case."""
+def newton(network: Network, border: Border, state: State, near: State | None = None) -> Outcome:
+    """From ``state``, which is changed, to the steady state of every case; or, where given, until it is surely at ``near``."""
     n = len(network.zero)
     status = np.full(n, Status.NOT_CONVERGED, dtype=np.int8)
     steps = np.zeros(n, dtype=np.int8)
@@ -244,8 +247,13 @@ def newton(network: Network, border: Border, state: State) -> Outcome:
         control = border.opening if step == 0 and border.opening is not None else border.control
         moved, moved_by, size, bad, slope = _step(ready, control, here)
         settled = _settled(moved_by, size, before, ready.network.zero)
+        if near is not None:
+            arrived = _arrived(ready, moved, near if live is None else near.take(live), size)
+            settled = arrived if settled is None else settled | arrived
         finite = np.isfinite(moved_by)
         lost = None if np.count_nonzero(finite) == finite.size else ~finite
+        if step == 0 and border.opening is not None:
+            _ease(ready, moved)
         done = settled
         for ended in (bad, lost):
             if ended is not None:
@@ -291,18 +299,51 @@ def newton(network: Network, border: Border, state: State) -> Outcome:
     return Outcome(state, status, steps, rising)
 
 
+def _arrived(ready: Ready, state: State, near: State, size: Array) -> np.ndarray:
+    """Where a state is at another one, but for steps that are then certain."""
+    off = np.maximum.reduce(np.abs(state.faces - near.faces), axis=0)
+    for port, bound, theta, other in zip(ready.ports, ready.bounds, state.theta, near.theta, strict=True):
+        if bound is None and theta is not None and other is not None:
+            off = np.maximum(off, port.apart(theta, other))
+    arrived: np.ndarray = off <= _NEAR * size
+    return arrived
+
+
+def _ease(ready: Ready, state: State) -> None:
+    """Take back from λ what warm sources give more than the cold ones of the first step, so that the next one starts closer."""
+    target = ready.border.target
+    assert target is not None
+    cold: Array | float = 0.0
+    warm: Array | float = 0.0
+    for e, port in enumerate(ready.ports):
+        source = port.source
+        if not source.driven or source.group is not None:
+            continue
+        Tb = state.faces[2 * e + 1]
+        T = Tb if port.solid else (state.faces[2 * e] + Tb) / 2.0
+        T = T + 0.6 * np.maximum(target - T, 0.0)
+        size = source.scale * port.volume()
+        cold = cold + size * source.at(np.zeros_like(T))[0]
+        warm = warm + size * source.at(T)[0]
+    if isinstance(cold, float) or isinstance(warm, float):
+        return
+    share = cold / warm
+    state.mu[-1] = np.where((share > 0.02) & (share < 1.5), state.mu[-1] * share, state.mu[-1])
+
+
 def _settled(moved_by: Array, size: Array, before: Array, zero: Array) -> np.ndarray | None:
     """Where a step was the last one needed; None where it was nowhere."""
-    absolute = 4e-16 * (np.abs(zero) + size)
-    near = moved_by <= 1e-6 * size + absolute
-    if not np.count_nonzero(near):
+    absolute = 4e-16 * np.abs(zero)
+    close = moved_by <= 1e-6 * size
+    last = moved_by <= 2e-13 * size + absolute
+    if np.count_nonzero(close):
+        # Newton's steps shrink as squares: the next one would be moved³/before² at most.
+        ratio = moved_by / before
+        small = moved_by * (ratio * ratio) <= 1e-14 * size + 0.25 * absolute
+        last |= close & (small | ((ratio >= 0.5) & (moved_by <= 1e-9 * size)))
+    elif not np.count_nonzero(last):
         return None
-    # Newton's steps shrink as squares: the next one would be moved³/before² at most.
-    ratio = moved_by / before
-    done = (moved_by * (ratio * ratio) <= 1e-14 * size + 0.25 * absolute) & (moved_by <= 1e-6 * size)
-    done |= moved_by <= 2e-13 * size + absolute
-    done |= (ratio >= 0.5) & (moved_by <= 1e-9 * size)
-    return done
+    return last
 
 
 def _step(
@@ -327,12 +368,13 @@ def _step(
         M, short = _border_rows(network, border, control, state, multiples, models, swept, owners)
         moves = _small_solve(M, short)
         bad, slope = _judged(M, swept.negatives, len(border.given), border.control is not None)
-        move = np.stack([_along(column, moves) for pair in zip(swept.a, swept.b, strict=True) for column in pair])
-    else:
-        move = np.stack([column[0] for pair in zip(swept.a, swept.b, strict=True) for column in pair])
-        bad = None if bad is None else bad > 0
+    elif bad is not None:
+        bad = bad > 0
+    move = np.empty(faces.shape)
+    for e, (a, b) in enumerate(zip(swept.a, swept.b, strict=True)):
+        move[2 * e], move[2 * e + 1] = _along(a, moves), _along(b, moves)
     after = faces + move
-    biggest, size = np.abs(move).max(axis=0), np.abs(after).max(axis=0)
+    biggest, size = np.maximum.reduce(np.abs(move), axis=0), np.maximum.reduce(np.abs(after), axis=0)
     theta: list[Array | None] = []
     # The part of the step that no source grows too much over; None where it is whole in every case.
     part: Array | None = None

@@ -22,9 +22,10 @@ from ingle.shapes import Array, Shape
 
 BLOCK = 2048
 # Nodes of a slice and into how many a slice is split, by turns until a case is resolved.
-LEVELS = ((12, 1), (24, 1), (48, 1), (48, 2), (48, 4), (48, 8))
-# Up to how many decay lengths a slice may span at each level; beyond the last the finest is used.
-_SPANS = (8.0, 20.0, 45.0, 90.0, 180.0)
+LEVELS = ((6, 1), (12, 1), (24, 1), (48, 1), (48, 2), (48, 4), (48, 8))
+# Up to how many decay lengths a slice may span at each level; beyond the last the finest is used. Solid bodies alone are smooth
+# enough for the first.
+_SPANS = (0.7, 8.0, 20.0, 45.0, 90.0, 180.0)
 # The largest radius ratio of a slice of a cylinder or sphere.
 RATIO = {Shape.CYLINDER: 3.0, Shape.SPHERE: 1.6}
 # A case is resolved where its estimated error is below these shares of its rise and of its coldest temperature in kelvin.
@@ -162,11 +163,15 @@ def _cold_start(
 
 def _level_needed(network: Network, border: Border, state: State) -> np.ndarray:
     """The level that each case's decay lengths call for: too few nodes would look like instability."""
-    x = np.zeros_like(network.zero)
+    x: Array | None = None
+    least = 0
     for element, mu in zip(network.elements, border.multiples(network, state), strict=True):
         if isinstance(element.port, CollocatedPort):
-            x = np.maximum(x, element.port.stiffness(mu))
-    return np.searchsorted(_SPANS, x).astype(np.intp)
+            here = element.port.stiffness(mu)
+            x = here if x is None else np.maximum(x, here)
+            least = least if element.port.solid else 1
+    assert x is not None
+    return np.maximum(np.searchsorted(_SPANS, x), least)
 
 
 def _from(

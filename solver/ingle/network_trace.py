@@ -77,7 +77,7 @@ def all_driven(problem: NetworkProblem) -> NetworkProblem:
 def held_border(problem: NetworkProblem, n: int) -> Border:
     """The border with the scale sought and the middle held, before a target is set."""
     given = [supply.given for supply in problem.supplies]
-    return Border(given, [supply.driven for supply in problem.supplies], np.ones(n), middle, np.zeros(n))
+    return Border(given, [supply.driven for supply in problem.supplies], np.ones(n), middle, np.zeros(n), by_nodes=True)
 
 
 def start_of_path(network: Network, border: Border, state: State) -> tuple[State, Array]:
@@ -198,7 +198,7 @@ def traced(problem: NetworkProblem, scale: Array | None, parts: list[Part]) -> l
     if not any(d.any() for d in doubtful):
         return parts
     rows = np.sort(np.concatenate([part.rows[d] for part, d in zip(parts, doubtful, strict=True)]))
-    rest = [_some(part, ~d) for part, d in zip(parts, doubtful, strict=True) if (~d).any()]
+    rest = [some(part, ~d) for part, d in zip(parts, doubtful, strict=True) if (~d).any()]
     hard = problem.take(rows)
     if scale is not None:
         hard = scaled(hard, scale[rows])
@@ -209,8 +209,8 @@ def traced(problem: NetworkProblem, scale: Array | None, parts: list[Part]) -> l
     for base in run(driven, base_border):
         good = base.status == Status.SOLVED
         if not good.all():
-            settled.append(_some(base, ~good))
-            base = _some(base, good)
+            settled.append(some(base, ~good))
+            base = some(base, good)
         if not len(base.rows):
             continue
         settled += _settled(driven.take(base.rows), base, coarse=True)
@@ -235,15 +235,15 @@ def _settled(problem: NetworkProblem, base: Part, coarse: bool) -> list[Part]:
     parts: list[Part] = []
     if near.any():
         rows = np.flatnonzero(near)
-        for finer in refollowing(problem.take(rows), _some(base, near), turn.T0[rows] + 0.99 * turn.tau[rows]):
+        for finer in refollowing(problem.take(rows), some(base, near), turn.T0[rows] + 0.99 * turn.tau[rows]):
             mine = rows[finer.rows]
             parts += _settled(problem.take(mine), replace(finer, rows=base.rows[mine]), coarse=False)
         near &= np.isin(base.rows, np.concatenate([part.rows for part in parts])) if parts else False
     reached = status == Status.SOLVED
     if (~reached & ~near).any():
-        parts.append(_some(seed, ~reached & ~near))
+        parts.append(some(seed, ~reached & ~near))
     if reached.any():
-        last = _some(seed, reached)
+        last = some(seed, reached)
         polished = run(problem.take(np.flatnonzero(reached)), last.border, [replace(last, rows=np.arange(len(last.rows)))])
         parts += [replace(p, rows=last.rows[p.rows]) for p in polished]
     return parts
@@ -288,7 +288,8 @@ def is_linear(problem: NetworkProblem, laws: tuple[SourceLaw, ...] = (SourceLaw.
     )
 
 
-def _some(part: Part, keep: np.ndarray) -> Part:
+def some(part: Part, keep: np.ndarray) -> Part:
+    """Some of a part's cases."""
     rows = np.flatnonzero(keep)
     return Part(
         part.rows[rows], part.network.take(rows), part.border.take(rows), part.state.take(rows), part.status[rows], part.steps[rows],

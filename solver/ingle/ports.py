@@ -104,6 +104,10 @@ class Port:
         """A temperature that any warming of the layer raises: at half depth, or a mean over nodes."""
         return self.at(Ta, Tb, mu, theta, self.d / 2.0, model)
 
+    def apart(self, theta: Array, other: Array) -> Array:
+        """About how far two insides are apart, in kelvin."""
+        raise NotImplementedError
+
     def reach(self, Ta: Array, Tb: Array, theta: Array | None) -> Array | None:
         """The rise of its coolest place over which the source grows by about a factor e²; None where that is no concern."""
         del Ta, Tb, theta
@@ -154,7 +158,7 @@ class Bound:
     """A port that is linear in its faces' temperatures, while its multiple stays: its model needs no more than a few products.
 
     Qa = g(Ta − Tb) + A + ``a_a`` Ta + ``a_b`` Tb and Qb likewise; the same product g(Ta − Tb) in both keeps the digits of close
-    temperatures. ``g`` is None where solid. ``inside``: θ at the nodes as ``inside[0]`` + ``inside[1]`` Ta + ``inside[2]`` Tb.
+    temperatures. ``g`` is None where solid. ``inside``: what θ at the nodes is made of, its own, by Ta and by Tb.
     """
 
     g: Array | None
@@ -167,7 +171,7 @@ class Bound:
     slopes: tuple[Array, Array, Array, Array]
     hottest: Array
     negatives: np.ndarray | None = None
-    inside: Array | None = None
+    inside: tuple[Array, Array | None, Array] | None = None
 
     def model(self, Ta: Array, Tb: Array) -> PortModel:
         """The linear model at the faces' temperatures."""
@@ -190,8 +194,9 @@ class Bound:
         """The inside at the faces' temperatures."""
         if self.inside is None:
             return None
-        theta: Array = self.inside[0] + self.inside[2] * Tb
-        return theta if self.g is None else theta + self.inside[1] * Ta
+        own, by_a, by_b = self.inside
+        theta = own + by_b * Tb
+        return theta if by_a is None else theta + by_a * Ta
 
     def take(self, rows: np.ndarray) -> Bound:
         """The port of some of the cases; its inside is told by that of all of them."""
@@ -203,7 +208,7 @@ class Bound:
 
 def bound_port(
     g: Array | None, A: Array, B: Array, terms: tuple[Array | None, Array | None, Array | None, Array | None], hottest: Array,
-    negatives: np.ndarray | None = None, inside: Array | None = None,
+    negatives: np.ndarray | None = None, inside: tuple[Array, Array | None, Array] | None = None,
 ) -> Bound:  # fmt: skip
     """A bound port with its slopes: ``terms`` are what Ta and Tb add to Qa, then to Qb, beyond g(Ta − Tb)."""
     if g is None:
