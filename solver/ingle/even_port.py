@@ -21,6 +21,7 @@ from ingle.shapes import (
     source_square,
     volume,
 )
+from ingle.volume_nodes import nodes
 
 
 class EvenPort(Port):
@@ -131,7 +132,7 @@ class EvenPort(Port):
         return self.k.usable(low, high) if self.floors else None
 
     def sum(self, Ta: Array, Tb: Array, mu: Array, theta: Array | None) -> Array:
-        """See ``Port``. In closed form where k is constant, by Gauss' rule in r^(m + 1) or ln r otherwise."""
+        """See ``Port``. In closed form where k is constant, by Gauss' rule otherwise."""
         q = mu * self.source.scale
         if self.map.constant:
             k = self.map.at(Tb)
@@ -140,15 +141,12 @@ class EvenPort(Port):
             Qa = (self.map.between(Ta, Tb) - q * self.D) / self.W
             conducted = Qa * source_path(self.shape, self.a + self.d, -self.d)
             return self.V * Ta - (conducted + q * (self.V * self.D - source_square(self.shape, self.a, self.d))) / k
+        if self.W is None:
+            T0, Qa = self.centre(Tb, mu, theta), np.zeros_like(Tb)
+        else:
+            T0, Qa = Ta, (self.map.between(Ta, Tb) - q * self.D) / self.W
         total = np.zeros_like(Tb)
-        span = None if self.W is None or self.shape == Shape.WALL else np.log1p(self.d / self.a)
-        for x, w in _GAUSS:
-            if span is None:
-                s = self.d * x
-                dV = w * self.d * (s**self.shape if self.W is None else 1.0)
-            else:
-                s = np.minimum(self.a * np.expm1(span * x), self.d)
-                dV = w * span * (self.a + s) ** (self.shape + 1.0)
+        for s, dV in nodes(self.shape, self.a, self.d, self.solid, self.k, T0, Qa, q):
             total = total + dV * self.at(Ta, Tb, mu, theta, s).T
         return total
 
@@ -161,7 +159,3 @@ class EvenPort(Port):
         port.map, port.source = self.map.take(rows), self.source.take(rows)
         port.k = port.map.k
         return port
-
-
-_nodes, _weights = np.polynomial.legendre.leggauss(20)
-_GAUSS = [((1.0 + x) / 2.0, w / 2.0) for x, w in zip(_nodes.tolist(), _weights.tolist(), strict=True)]
