@@ -179,8 +179,8 @@ class CollocatedPort(Port):
         hottest = np.maximum.reduce(np.abs(seen[0, :N]), axis=0) / k
         if self.solid:
             made, by_b = C * seen[0, N], C * (seen[1, N] * k)
-            inside = (seen[0, :N], None, (1.0 + seen[1, :N]) * k)
-            return bound_port(None, np.zeros_like(k), made, (None, None, None, by_b), hottest, negatives, inside)
+            alone = (seen[0, :N], None, (1.0 + seen[1, :N]) * k)
+            return bound_port(None, np.zeros_like(k), made, (None, None, None, by_b), hottest, negatives, alone)
         from_a, from_b = self.rule.toward
         to_a, to_b, g = C * seen[:, N], C * seen[:, N + 1], C * k
         inside = (seen[0, :N], (from_a + seen[1, :N]) * k, (from_b + seen[2, :N]) * k)

@@ -222,19 +222,20 @@ def sweep(
             Ps.append(P)
         if border is not None and model.bl is not None:
             H[border + 1] = H[border + 1] + model.bl
-        B = -slope
+        back = -slope
         if e < last:
             joint = elements[e + 1].joint
-            E = [H[0] - B * (faces[2 * e + 2] - faces[2 * e + 1]), *H[1:]]
+            E = [H[0] - back * (faces[2 * e + 2] - faces[2 * e + 1]), *H[1:]]
             P = 1.0
             if joint is not None:
-                crossed = 1.0 - slope * joint
+                crossed = 1.0 + back * joint
                 signs.append(crossed)
                 P = crossed
+        B = back
     P_end, B_end, A_end = ends[1]
-    pivot = B_end + P_end * B
-    signs.append(pivot)
-    b: list[list[Array]] = [[(P_end * H[0] - A_end) / pivot, *(P_end * x / pivot for x in H[1:])]]
+    final = P_end * back + B_end
+    signs.append(final)
+    b: list[list[Array]] = [[(P_end * H[0] - A_end) / final, *(P_end * x / final for x in H[1:])]]
     a: list[list[Array]] = []
     for e in range(last, -1, -1):
         model, right_side, here = models[e], rhs[e], pivots[e]
