@@ -10,22 +10,13 @@ from ingle.conductivities import Conductivity
 from ingle.march import LayerSteps, State
 from ingle.shapes import (
     Array,
-    Shape,
     depth_of_volume,
     path,
     solid_source_square,
     source_path,
     source_square,
 )
-
-# Gauss-Legendre nodes for means where T is no polynomial of place; see mean_rise.
-_SMOOTH = np.polynomial.legendre.leggauss(32)
-# A text table has corners, which Gauss nodes do not see: 128 panels of 4, about 1e-7 of the rise.
-_PANELS, _FOUR = 128, np.polynomial.legendre.leggauss(4)
-_CORNERED = (
-    np.concatenate([(_FOUR[0] + 1.0 + 2.0 * panel) / _PANELS - 1.0 for panel in range(_PANELS)]),
-    np.tile(_FOUR[1] / _PANELS, _PANELS),
-)
+from ingle.volume_nodes import nodes
 
 
 @dataclass(frozen=True)
@@ -111,16 +102,15 @@ def layer_mean(state: State, number: int) -> Array:
     """Mean rise over a layer's volume.
 
     With constant k, T̄ = T₀ − [Q₀ ∫W dV + q (V₁D₁ − U)]/(k V₁), where ∫W dV = V₁W₁ − D₁. With k(T) the
-    rise is integrated over the volume at Gauss-Legendre nodes.
+    rise is integrated over the volume at Gauss-Legendre nodes, apart at the corners of a table.
     """
     layer, ends, q = state.problem.layers[number], state.ends[number], state.q[number]
     shape = state.problem.structure.shape
     if isinstance(layer.k, Conductivity):
         total = np.zeros_like(ends.T0)
-        nodes = _SMOOTH if layer.k.table is None else _CORNERED
-        for node, weight in zip(*nodes, strict=True):
-            s, share = _spot(shape, layer, (1.0 + node) / 2.0)
-            total = total + (weight / 2.0) * share * (layer_rise(state, number, s) - ends.T0)
+        T0, solid = state.sink + ends.T0, layer.W is None
+        for s, dV in nodes(shape, layer.a, layer.d, solid, layer.k, T0, ends.Q0, q):
+            total = total + (dV / layer.V) * (layer_rise(state, number, s) - ends.T0)
         return ends.T0 + total
     if layer.W is None:
         U = solid_source_square(shape, layer.d)
@@ -128,21 +118,6 @@ def layer_mean(state: State, number: int) -> Array:
     U = source_square(shape, layer.a, layer.d)
     conducted = ends.Q0 * (layer.V * layer.W - layer.D)
     return ends.T0 - (conducted + q * (layer.V * layer.D - U)) / (layer.k * layer.V)
-
-
-def _spot(shape: Shape, layer: LayerSteps, x: float) -> tuple[Array, Array | float]:
-    """A place s at a share x of a layer, and dV/dx over V there: even in V of a solid body, in ln r of a hollow one.
-
-    A thick shell's temperature changes most near its bore, which has little of the volume.
-    """
-    if layer.W is None:
-        return layer.d * (np.sqrt(x) if shape == Shape.CYLINDER else np.cbrt(x)), 1.0
-    if shape == Shape.WALL:
-        return layer.d * x, 1.0
-    log = np.log1p(layer.d / layer.a)
-    s = np.minimum(layer.a * np.expm1(log * x), layer.d)
-    r = layer.a + s
-    return s, log * r * (r if shape == Shape.CYLINDER else r * r) / layer.V
 
 
 def mean_rise(state: State) -> Array:

@@ -78,7 +78,7 @@ def all_driven(problem: NetworkProblem) -> NetworkProblem:
 def held_border(problem: NetworkProblem, n: int) -> Border:
     """The border with the scale sought and the middle held, before a target is set."""
     given = [supply.given for supply in problem.supplies]
-    return Border(given, [supply.driven for supply in problem.supplies], np.ones(n), middle, np.zeros(n))
+    return Border(given, [supply.driven for supply in problem.supplies], np.ones(n), middle, np.zeros(n), by_nodes=True)
 
 
 def start_of_path(network: Network, border: Border, state: State) -> tuple[State, Array]:
@@ -86,7 +86,7 @@ def start_of_path(network: Network, border: Border, state: State) -> tuple[State
     zero = np.zeros_like(network.zero)
     groups = len(border.given)
     mu = [x.copy() for x in state.mu[:groups]] + [zero.copy()]
-    opened = State(state.Ta, state.Tb, state.theta, state.surfaces, mu)
+    opened = State(state.faces, state.theta, state.surfaces, mu)
     multiples = border.multiples(network, opened)
     owners = border.of(network)
     models = [
@@ -116,7 +116,8 @@ def follow(network: Network, border: Border, base: State, goal: Array | None, st
         outcome = newton(network.take(live), replace(border.take(live), target=T0[live] + tau[live]), here)
         scale = here.mu[-1]
         D = outcome.rising * tau[live] / scale
-        held = usable(network.take(live), here)
+        free = usable(network.take(live), here)
+        held = np.ones(len(live), dtype=bool) if free is None else free
         sound = (outcome.status == Status.SOLVED) & np.isfinite(D) & (scale > 0.0) & held
         over = np.zeros(len(live), dtype=bool) if goal is None else sound & (scale >= goal[live])
         up = sound & (D > 0.0) & ~over
@@ -207,7 +208,7 @@ def traced(problem: NetworkProblem, scale: Array | None, parts: list[Part]) -> l
     if not any(d.any() for d in doubtful):
         return parts
     rows = np.sort(np.concatenate([part.rows[d] for part, d in zip(parts, doubtful, strict=True)]))
-    rest = [_some(part, ~d) for part, d in zip(parts, doubtful, strict=True) if (~d).any()]
+    rest = [some(part, ~d) for part, d in zip(parts, doubtful, strict=True) if (~d).any()]
     hard = problem.take(rows)
     if scale is not None:
         hard = scaled(hard, scale[rows])
@@ -218,8 +219,8 @@ def traced(problem: NetworkProblem, scale: Array | None, parts: list[Part]) -> l
     for base in run(driven, base_border):
         good = base.status == Status.SOLVED
         if not good.all():
-            settled.append(_some(base, ~good))
-            base = _some(base, good)
+            settled.append(some(base, ~good))
+            base = some(base, good)
         if not len(base.rows):
             continue
         settled += _settled(driven.take(base.rows), base, coarse=True)
@@ -238,21 +239,21 @@ def _settled(problem: NetworkProblem, base: Part, coarse: bool) -> list[Part]:
     status[~turn.turned & ~turn.reached & (turn.tau >= FAR)] = Status.TOO_HOT
     fixed = Border([supply.given for supply in supplies], [False] * len(supplies), one)
     found = turn.state
-    state = State(found.Ta, found.Tb, found.theta, found.surfaces, found.mu[: len(supplies)])
+    state = State(found.faces, found.theta, found.surfaces, found.mu[: len(supplies)])
     seed = Part(base.rows, base.network, fixed, state, status, base.steps, base.rising)
     near = turn.turned & (turn.scale > 0.7) & (turn.tau < FAR) if coarse else np.zeros(n, dtype=bool)
     parts: list[Part] = []
     if near.any():
         rows = np.flatnonzero(near)
-        for finer in refollowing(problem.take(rows), _some(base, near), turn.T0[rows] + 0.99 * turn.tau[rows]):
+        for finer in refollowing(problem.take(rows), some(base, near), turn.T0[rows] + 0.99 * turn.tau[rows]):
             mine = rows[finer.rows]
             parts += _settled(problem.take(mine), replace(finer, rows=base.rows[mine]), coarse=False)
         near &= np.isin(base.rows, np.concatenate([part.rows for part in parts])) if parts else False
     reached = status == Status.SOLVED
     if (~reached & ~near).any():
-        parts.append(_some(seed, ~reached & ~near))
+        parts.append(some(seed, ~reached & ~near))
     if reached.any():
-        last = _some(seed, reached)
+        last = some(seed, reached)
         polished = run(problem.take(np.flatnonzero(reached)), last.border, [replace(last, rows=np.arange(len(last.rows)))])
         parts += [replace(p, rows=last.rows[p.rows]) for p in polished]
     return parts
@@ -297,7 +298,8 @@ def is_linear(problem: NetworkProblem, laws: tuple[SourceLaw, ...] = (SourceLaw.
     )
 
 
-def _some(part: Part, keep: np.ndarray) -> Part:
+def some(part: Part, keep: np.ndarray) -> Part:
+    """Some of a part's cases."""
     rows = np.flatnonzero(keep)
     return Part(
         part.rows[rows], part.network.take(rows), part.border.take(rows), part.state.take(rows), part.status[rows], part.steps[rows],

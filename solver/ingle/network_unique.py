@@ -76,7 +76,8 @@ def maybe_another(problem: NetworkProblem, part: Part) -> np.ndarray:
 def _linear_losses(problem: NetworkProblem) -> bool:
     surfaces = (face.law for face in (problem.left, problem.right))
     plain = all(layer.conductivity.constant and (layer.side is None or layer.side.linear) for layer in problem.layers)
-    return plain and all(bool(law is None or getattr(law, "linear", False)) for law in surfaces)
+    laws = all(law is None or getattr(law, "linear", False) for law in surfaces)
+    return plain and bool(laws)
 
 
 def _hottest(part: Part, number: int) -> Array:
@@ -145,6 +146,6 @@ def _least(k: Conductivity, cold: Array, hot: Array) -> Array:
 
 
 def _least_of(table: Table, cold: Array, hot: Array) -> Array:
-    within = (cold[:, None] < table.T) & (table.T < hot[:, None])
+    within = (cold[:, None] - table.T) * (hot[:, None] - table.T) < 0.0
     least: Array = np.where(within, table.y, np.inf).min(axis=1)
     return least
