@@ -19,6 +19,7 @@ STATUS_FAULTS = {
     Status.NO_CONDUCTIVITY: Fault(
         CellError.NUM,
         f"a conductivity or resistivity in {ROW} falls to zero on the way to its temperature; check the slope or give a table",
+        verdict="runaway",
     ),
     Status.NOT_BALANCED: Fault(
         CellError.NUM, f"no temperature was found at which the heats of {ROW} balance; check that its values belong together"
@@ -28,7 +29,7 @@ STATUS_FAULTS = {
         "steady state; lower the source or cool the body more", verdict="runaway"),
     Status.TOO_HOT: Fault(
         CellError.NUM, f"the body in {ROW} would pass 10,000 °C, where nothing stays solid; check the source, its unit and the "
-        "cooling"),
+        "cooling", verdict="runaway"),
     Status.UNRESOLVED: Fault(
         CellError.NUM, f"the temperature in {ROW} changes within too small a part of a layer to be resolved; shorten the body or "
         "check its sizes and slopes"),

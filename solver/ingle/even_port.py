@@ -99,7 +99,7 @@ class EvenPort(Port):
         """See ``Port``."""
         q = self.source.scale * mu
         if self.W is None:
-            return self.at(Ta, Tb, mu, theta, np.where(q > 0.0, 0.0, self.d), model)
+            return self.at(Ta, Tb, mu, theta, np.where(q >= 0.0, 0.0, self.d), model)
         Qa = (self.map.between(Ta, Tb) - q * self.D) / self.W
         inside = (Qa < 0.0) & (Qa + q * self.V > 0.0)
         if not np.count_nonzero(inside):

@@ -150,7 +150,9 @@ def status_of(problem: Problem, state: State, ends: field.Extremes) -> np.ndarra
     finite = np.isfinite(ends.peak) & np.isfinite(ends.lowest) & np.isfinite(state.Q_left) & np.isfinite(state.Q_right)
     status = np.where(cold, Status.BELOW_ABSOLUTE_ZERO, Status.SOLVED)
     if not problem.linear:
-        status = np.where(field.short(state) > _UNBALANCED * field.largest_heat(state), Status.NOT_BALANCED, status)
+        short, largest = field.short(state), field.largest_heat(state)
+        relative = np.where(largest > 0.0, short / np.where(largest > 0.0, largest, 1.0), short)
+        status = np.where(relative > _UNBALANCED, Status.NOT_BALANCED, status)
         for number, layer in enumerate(problem.layers):
             if isinstance(layer.k, Conductivity):
                 low, high = state.sink + ends.lows[number], state.sink + ends.by_layer[number]

@@ -14,6 +14,7 @@ from functools import cached_property
 
 import numpy as np
 
+from ingle.fluids import KELVIN
 from ingle.network_newton import Status
 from ingle.network_problem import NetworkFace, NetworkLayer, NetworkProblem, Supply
 from ingle.network_readings import heats_of, judged, peaks_of, supplied_of, temperatures_of
@@ -29,6 +30,7 @@ __all__ = [
 
 # Hotter than any solid stays solid [°C]; a rising resistivity with radiation has some steady state at any source.
 CEILING = 10_000.0
+_SAME = 1e-14
 
 
 @dataclass(frozen=True)
@@ -193,8 +195,9 @@ def peak(state: NetworkState, layer: int | None = None) -> NetworkPeak:
                 if best is None:
                     best, spot, which = top.T, s, np.full(len(part.rows), element.layer)
                     continue
-                higher = best < top.T
-                best, spot = np.where(higher, top.T, best), np.where(higher, s, spot)
+                # Two sides of a touching joint are one temperature but for rounding.
+                higher = best + _SAME * (np.abs(best) + np.abs(part.network.zero) + KELVIN) < top.T
+                best, spot = np.maximum(best, top.T), np.where(higher, s, spot)
                 which = np.where(higher, element.layer, which)
             if best is not None:
                 T[part.rows], place[part.rows], where[part.rows] = part.network.zero + best, spot, which
@@ -251,7 +254,7 @@ def shape_sum(state: NetworkState, layer: int) -> Array:
     result = np.full(len(state.status), np.nan)
     with np.errstate(all="ignore"):
         for part in state.parts:
-            total, multiples, found = np.zeros(len(part.rows)), part.border.multiples(part.network, part.state), part.state
+            total, multiples, found = np.zeros(len(part.rows)), part.multiples, part.state
             for e, element in enumerate(part.network.elements):
                 if element.layer == layer:
                     total = total + element.port.shape_sum(found.Ta[e], found.Tb[e], multiples[e], found.theta[e])
@@ -265,13 +268,13 @@ def low(state: NetworkState, layer: int) -> Array:
     with np.errstate(all="ignore"):
         for part in state.parts:
             least = np.full(len(part.rows), np.inf)
-            multiples, found = part.border.multiples(part.network, part.state), part.state
+            multiples, found = part.multiples, part.state
             for e, element in enumerate(part.network.elements):
                 if element.layer != layer:
                     continue
                 port, start = element.port, found.Ta[e]
                 if port.solid:
-                    start = port.at(found.Ta[e], found.Tb[e], multiples[e], found.theta[e], np.zeros_like(start)).T
+                    start = port.centre(found.Tb[e], multiples[e], found.theta[e])
                 least = np.minimum(least, np.minimum(start, found.Tb[e]))
                 inside = port.span(found.theta[e])
                 if inside is not None:

@@ -108,9 +108,21 @@ def network_of(cases: Cases, structure: Structure, sources: Sequence[Source], dr
         joint = cases.joints[number] if number < len(cases.joints) else None
         layers.append(NetworkLayer(layer.thickness, conductivity, heat, side, joint))
     inner = None if structure.solid else cases.inner
-    left, right = _face(cases.left, structure.left, zero), _face(cases.right, structure.right, zero)
+    contacts = _contacts(cases, amplitudes[0])
+    left = replace(_face(cases.left, structure.left, zero), contact=contacts[0])
+    right = replace(_face(cases.right, structure.right, zero), contact=contacts[1])
     problem = NetworkProblem(structure.shape, tuple(layers), left, right, zero, inner, tuple(supplies))
     return Driven(problem, tuple(amplitudes))
+
+
+def _contacts(cases: Cases, made: Amplitude | None) -> tuple[Array | None, Array | None]:
+    """I²R of a bar's contacts over its section [W/m²], by the multiple of its source: I = J · section."""
+    bar = cases.bar
+    if bar is None or made is None:
+        return None, None
+    square = 1.0 if made.known is None else made.known * made.known
+    left, right = (None if R is None else R * bar.section * square for R in (bar.left_contact, bar.right_contact))
+    return left, right
 
 
 def _heat_source(source: Source, made: Amplitude | None, supplies: list[Supply], driven: bool) -> HeatSource:

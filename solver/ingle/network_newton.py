@@ -359,9 +359,10 @@ def _step(
         models.append(
             port.model(Ta, Tb, multiples[e], state.theta[e], owners[e] is not None) if bound is None else bound.model(Ta, Tb)
         )
+    outside = network.seen_from_outside(models, multiples, owners)
     left = None if network.left is None else network.left.relation(faces[0], state.surfaces[0])
     right = network.right.relation(faces[-1], state.surfaces[1])
-    swept = sweep(network, models, owners, count, faces, (left, right))
+    swept = sweep(network, outside, owners, count, faces, (left, right))
     bad, slope = swept.negatives, None
     moves: list[Array] = []
     if count:

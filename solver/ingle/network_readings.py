@@ -94,6 +94,12 @@ def heats_of(part: Part) -> list[list[Array]]:
     matters the less the larger it is; so the heat entering is their mean, weighted by the resistances.
     """
     Q, made, short = _heats(part)
+    # The body's own heats lie inside its contacts.
+    first, last = part.network.contact_heats(part.multiples)
+    if first is not None:
+        Q[0], made[0] = Q[0] + first, made[0] - first
+    if last is not None:
+        Q[-1], made[-1] = Q[-1] - last, made[-1] - last
     left: list[Array] = []
     right: list[Array] = []
     own: list[Array] = []
@@ -115,6 +121,11 @@ def _heats(part: Part) -> tuple[list[Array], list[Array], Array]:
         element.port.through(faces[2 * e], faces[2 * e + 1], mu, state.theta[e])
         for e, (element, mu) in enumerate(zip(network.elements, part.multiples, strict=True))
     ]
+    first, last = network.contact_heats(part.multiples)
+    if first is not None:
+        through[0] = through[0][0] - first, through[0][1] + first
+    if last is not None:
+        through[-1] = through[-1][0], through[-1][1] + last
     made = [own for _, own in through]
     total = np.zeros_like(network.zero)
     weights, sums = np.zeros_like(total), np.zeros_like(total)

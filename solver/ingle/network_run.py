@@ -22,10 +22,10 @@ from ingle.shapes import Array, Shape
 
 BLOCK = 2048
 # Nodes of a slice and into how many a slice is split, by turns until a case is resolved.
-LEVELS = ((6, 1), (12, 1), (24, 1), (48, 1), (48, 2), (48, 4), (48, 8))
+LEVELS = ((6, 1), (12, 1), (24, 1), (48, 1), (48, 2), (48, 4), (48, 8), (48, 16), (48, 32))
 # Up to how many decay lengths a slice may span at each level; beyond the last the finest is used. Solid bodies alone are smooth
 # enough for the first.
-_SPANS = (0.7, 8.0, 20.0, 45.0, 90.0, 180.0)
+_SPANS = (0.7, 8.0, 20.0, 45.0, 90.0, 180.0, 360.0, 720.0)
 # The largest radius ratio of a slice of a cylinder or sphere.
 RATIO = {Shape.CYLINDER: 3.0, Shape.SPHERE: 1.6}
 # A case is resolved where its estimated error is below these shares of its rise and of its coldest temperature in kelvin.

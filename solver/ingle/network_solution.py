@@ -150,6 +150,9 @@ class NetworkSolution(Solution):
             made, net = made + more, net + of_layer
         side = made - net if self.cases.bar is not None and self.cases.bar.side is not None else np.zeros_like(made)
         largest = np.maximum(np.abs(made), np.abs(side))
+        for contact in (self.now.problem.left.contact, self.now.problem.right.contact):
+            if contact is not None:
+                largest = np.maximum(largest, contact * self._multiple(0))
         for Q in (*state.Q_left, *state.Q_right):
             largest = np.maximum(largest, np.abs(Q))
         for face, end in ((self.cases.left, self.left_area), (self.cases.right, self.right_area)):
@@ -160,9 +163,14 @@ class NetworkSolution(Solution):
 
     def _gross(self, number: int) -> Array:
         """∫ s g r^m dr of a layer's source alone."""
-        source = self.now.problem.layers[number].source
-        root = 1.0 if source.group is None else self.state.root_mu[source.group]
-        return root * root * source.scale * shape_sum(self.state, number)
+        return self._multiple(number) * self.now.problem.layers[number].source.scale * shape_sum(self.state, number)
+
+    def _multiple(self, number: int) -> Array | float:
+        group = self.now.problem.layers[number].source.group
+        if group is None:
+            return 1.0
+        root: Array = self.state.root_mu[group]
+        return root * root
 
     def heats(self) -> Heats:
         """See ``Solution``."""

@@ -82,17 +82,43 @@ class End:
 
 @dataclass(frozen=True)
 class Network:
-    """A problem made ready: temperatures are rises over ``zero`` [°C]. ``left`` is None where the body is solid."""
+    """A problem made ready: temperatures are rises over ``zero`` [°C]. ``left`` is None where the body is solid.
+
+    ``contacts``: heat set free at the body's left and right face, r^m q″, by the multiple of the element there.
+    """
 
     elements: tuple[Element, ...]
     left: End | None
     right: End
     zero: Array
+    contacts: tuple[Array | None, Array | None] = (None, None)
 
     def take(self, rows: np.ndarray) -> Network:
         """The network of some of the cases."""
         left = None if self.left is None else self.left.take(rows)
-        return Network(tuple(e.take(rows) for e in self.elements), left, self.right.take(rows), self.zero[rows])
+        first, last = (None if x is None else x[rows] for x in self.contacts)
+        return Network(tuple(e.take(rows) for e in self.elements), left, self.right.take(rows), self.zero[rows], (first, last))
+
+    def contact_heats(self, multiples: list[Array]) -> tuple[Array | None, Array | None]:
+        """The contacts' heats."""
+        first, last = self.contacts
+        return None if first is None else first * multiples[0], None if last is None else last * multiples[-1]
+
+    def seen_from_outside(self, models: list[PortModel], multiples: list[Array], owners: list[int | None]) -> list[PortModel]:
+        """The end elements' models with what their contacts set free: seen from outside it is heat of their own."""
+        first, last = self.contacts
+        if first is None and last is None:
+            return models
+        models = list(models)
+        if first is not None:
+            model = models[0]
+            al = None if owners[0] is None or model.al is None else model.al - first
+            models[0] = model._replace(Qa=model.Qa - first * multiples[0], al=al)
+        if last is not None:
+            model = models[-1]
+            bl = None if owners[-1] is None or model.bl is None else model.bl + last
+            models[-1] = model._replace(Qb=model.Qb + last * multiples[-1], bl=bl)
+        return models
 
 
 def collocated(shape: Shape, layer: NetworkLayer, by_nodes: bool) -> bool:
@@ -126,7 +152,9 @@ def build(problem: NetworkProblem, N: int, cuts: tuple[Array, ...], by_nodes: bo
                 elements.append(Element(port, index, begin, joint if piece == 0 else None))
         r = r + layer.thickness
         joint = None if layer.joint is None else layer.joint / area(shape, r)
-    return Network(tuple(elements), left, _end(problem.right, shape, r, zero, numbers), zero)
+    outer = problem.right.contact
+    contacts = problem.left.contact, outer if outer is None else outer * area(shape, r)
+    return Network(tuple(elements), left, _end(problem.right, shape, r, zero, numbers), zero, contacts)
 
 
 def with_nodes(network: Network, N: int) -> Network:

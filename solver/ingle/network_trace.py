@@ -281,7 +281,11 @@ def scaled(problem: NetworkProblem, scale: Array) -> NetworkProblem:
         for layer in problem.layers
     )
     supplies = tuple(Supply(s.given * np.sqrt(scale), s.driven) if s.driven else s for s in problem.supplies)
-    return replace(problem, layers=layers, supplies=supplies)
+    left, right = (
+        face if face.contact is None or source.group is not None or not source.driven else replace(face, contact=face.contact * scale)
+        for face, source in ((problem.left, problem.layers[0].source), (problem.right, problem.layers[-1].source))
+    )
+    return replace(problem, layers=layers, left=left, right=right, supplies=supplies)
 
 
 def is_linear(problem: NetworkProblem, laws: tuple[SourceLaw, ...] = (SourceLaw.EVEN, SourceLaw.SLOPED)) -> bool:

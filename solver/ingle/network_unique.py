@@ -82,13 +82,14 @@ def _linear_losses(problem: NetworkProblem) -> bool:
 
 def _hottest(part: Part, number: int) -> Array:
     """The highest temperature [°C] of a layer."""
-    T = np.full(len(part.rows), -np.inf)
+    T: Array = np.full(len(part.rows), -np.inf)
     for e, element in enumerate(part.network.elements):
         if element.layer == number:
             T = np.maximum(T, np.maximum(part.state.Ta[e], part.state.Tb[e]))
             inside = element.port.span(part.state.theta[e])
             T = T if inside is None else np.maximum(T, inside[1])
-    return part.network.zero + T
+    hottest: Array = part.network.zero + T
+    return hottest
 
 
 def _slopes(source: HeatSource) -> tuple[Array, Array]:

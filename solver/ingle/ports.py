@@ -12,7 +12,7 @@ from typing import NamedTuple
 
 import numpy as np
 
-from ingle.heat_sources import HeatSource
+from ingle.heat_sources import HeatSource, SourceLaw
 from ingle.shapes import Array
 
 
@@ -129,10 +129,11 @@ class Port:
         raise NotImplementedError
 
     def shape_sum(self, Ta: Array, Tb: Array, mu: Array, theta: Array | None) -> Array:
-        """F = ∫ g r^m dr at a settled state."""
-        F = self.model(Ta, Tb, mu, theta, True).F
-        assert F is not None
-        return F
+        """F = ∫ g r^m dr at a settled state; of a law linear in T from ∫ T r^m dr."""
+        if self.source.law == SourceLaw.EVEN:
+            return self.volume() + np.zeros_like(Tb)
+        g, slope = self.source.at(np.zeros_like(Tb))
+        return g * self.volume() + slope * self.sum(Ta, Tb, mu, theta)
 
     def resistance(self, Ta: Array, Tb: Array) -> Array:
         """About W/k, for weights."""

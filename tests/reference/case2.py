@@ -19,6 +19,7 @@ from .solution import NothingError, RunawayError, Solution
 
 Inputs = dict[str, Value]
 COLDEST, HOTTEST = 20.0, 4000.0
+HIGHEST_LIMIT = 9e4  # what a heading takes
 LEAST_PART = 0.15  # conductivities and resistivities keep this part of their base up to the highest limit
 RUNAWAY_SHARE = 0.13
 
@@ -316,7 +317,7 @@ class Draw:
                 raise DrawnBadlyError from error
             if self.chance(0.6):
                 far = rng.choice(((0.05, 1.0), (3.0, 300.0)))
-                self.inputs["limit"] = max(model.sinks) + self.rise * spread(rng, *far)
+                self.inputs["limit"] = min(max(model.sinks) + self.rise * spread(rng, *far), HIGHEST_LIMIT)
         if self.chance(0.4):
             self.inputs["probe"] = model.inner + model.thickness * rng.uniform(0.002, 0.998)
 
