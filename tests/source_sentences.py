@@ -39,8 +39,8 @@ CASES: list[Row] = [
     (WIRE, {"left contact [mΩ]": 1.0, "inner radius [mm]": 1.0}, "Left contact [mΩ] in this row belongs to a bar, not to a cylinder; "
      "leave it blank"),
     (WALL, {"side film [W/(m²·K)]": 5.0}, "Side film [W/(m²·K)] in this row belongs to a bar, not to a wall; leave it blank"),
-    (BAR, {CURRENT: GONE, RHO: GONE, Q: 1.0, "right contact [mΩ]": 1.0}, "Right contact [mΩ] in this row is of a current, and the bar "
-     "carries none; fill in 'current [A]' or leave it blank"),
+    (BAR, {CURRENT: GONE, RHO: GONE, Q: 1.0, "right contact [mΩ]": 1.0}, "Right contact [mΩ] in this row is of a current, and the "
+     "bar carries none; fill in 'current [A]' or leave it blank"),
     (BAR, {"conductivity 2 [W/(m·K)]": 1.0}, "Conductivity 2 [W/(m·K)] in this row is of layer 2, and a bar has one layer; leave it "
      "blank"),
     (BAR, {LENGTH: None}, "Length [mm] in this row is blank; type a value"),
@@ -50,21 +50,21 @@ CASES: list[Row] = [
     (BAR, {"side film [W/(m²·K)]": 9.0, "side fluid [°C]": 20.0}, "Side film [W/(m²·K)] in this row needs the perimeter of the bar's "
      "section; fill in 'perimeter [mm]'"),
     (BAR, {SECTION: GONE, WIDTH: 9.0}, "This row has no thickness, and no heading for it; add a column 'thickness [mm]'"),
-    (BAR, {SECTION: GONE, WIDTH: 9.0, "thickness [mm]": None}, "Thickness [mm] in this row is blank; a bar's section needs both width "
-     "and thickness"),
+    (BAR, {SECTION: GONE, WIDTH: 9.0, "thickness [mm]": None}, "Thickness [mm] in this row is blank; a bar's section needs both "
+     "width and thickness"),
     # No state.
     (WIRE, {**HOT_WIRE, CURRENT: 2000.0}, "The source in this row runs away: it grows with temperature faster than the body can shed "
      "it, so there is no steady state; lower the source or cool the body more"),
     (BAR, {CURRENT: GONE, RHO: GONE, Q: 1e12}, "The body in this row would pass 10,000 °C, where nothing stays solid; check the "
      "source, its unit and the cooling"),
     (BAR, {CURRENT: GONE, RHO: GONE, Q: 1.0, LENGTH: 1e9, "perimeter [mm]": 1e3, "side film [W/(m²·K)]": 1e6, "side fluid [°C]": 20.0,
-           "conductivity slope [1/K]": 0.001}, "The temperature in this row changes within too small a part of a layer to be resolved; "
-     "shorten the body or check its sizes and slopes"),
+           "conductivity slope [1/K]": 0.001}, "The temperature in this row changes within too small a part of a layer to be "
+     "resolved; shorten the body or check its sizes and slopes"),
     # Cautions.
     (WALL, {Q: "20:3e5"}, "Generation [W/m³] in this row has a table that does not reach the body's temperatures; its end value is "
      "held there, so extend it"),
-    (WIRE, {RHO: "0:1.6e-8; 20.01:1.7e-8"}, "Resistivity [Ω·m] in this row has a table that does not reach the body's temperatures; "
-     "its end value is held there, so extend it"),
+    (WIRE, {RHO: "0:1.6e-8; 20.0001:1.7e-8"}, "Resistivity [Ω·m] in this row has a table that does not reach the body's "
+     "temperatures; its end value is held there, so extend it"),
     (WALL, {SLOPE: 0.001, Q: -3e5}, "Generation [W/m³] in this row is negative, so the body takes heat up; make it positive if it "
      "heats itself"),
 ]  # fmt: skip
@@ -81,9 +81,6 @@ ASKED: list[tuple[str, dict[str, object], dict[str, object], str]] = [
      "Resistance [Ω]: the current in this row needs the winding's number of turns; fill in 'turns'"),
     ("resistance [Ω]", WALL, {Q: GONE, VOLTAGE: 1.0, RHO: 2e-8, LENGTH: 1.0},
      "Resistance [Ω]: the current in this row needs the wall's width across it; fill in 'width [mm]'"),
-    ("allowable generation [W/m³]", WALL, {Q: "20:3e5; 90:4e5", LIMIT: 50.0}, "Allowable generation [W/m³]: the source in this row is "
-     "a text table, which is not one value; ask for 'utilisation [%]'"),
-    ("limited by", WIRE, {**HOT_WIRE, CURRENT: 0.0, "right limit [°C]": 50.0, "right held [°C]": 20.0, "right film [W/(m²·K)]": GONE,
-                          "right fluid [°C]": GONE, LIMIT: None},
-     "No source reaches the limit in this row: that face is held, or the sources cool the body; give a limit for the peak"),
+    ("allowable generation [W/m³]", WALL, {Q: "20:3e5; 90:4e5", LIMIT: 50.0}, "Allowable generation [W/m³]: the source in this "
+     "row is a text table, which is not one value; ask for 'utilisation [%]'"),
 ]  # fmt: skip

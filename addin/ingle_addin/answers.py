@@ -33,7 +33,7 @@ def ready(asked: Asked, plan: Plan, recipe: Recipe) -> Ready | Fault:
     if quantity.startswith("allowable "):
         return limit_answers.allowable(asked, plan, recipe)
     if quantity == "limited by":
-        return limit_answers.limited_by(asked, plan, recipe)
+        return limit_answers.limited_by(plan, recipe)
     if recipe.no_source is not None:
         return recipe.no_source
     if quantity == "why":

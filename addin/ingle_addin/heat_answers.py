@@ -2,7 +2,6 @@
 
 from __future__ import annotations
 
-import numpy as np
 from ingle import Shape
 from ingle.shapes import Array
 
@@ -76,7 +75,7 @@ def electrical(asked: Asked, recipe: Recipe) -> Ready | Fault:
     if lacking:
         what, heading = lacking
         return Fault(CellError.NA, f"{asked.label}: the current in {ROW} needs {what}; fill in '{heading}'")
-    return plain(f"{asked.item.quantity} {layer.number}", _unknown)
+    return plain(f"{asked.item.quantity} {layer.number}")
 
 
 def _lacking(asked: Asked, recipe: Recipe, layer: LayerRecipe) -> tuple[str, str] | None:
@@ -89,8 +88,3 @@ def _lacking(asked: Asked, recipe: Recipe, layer: LayerRecipe) -> tuple[str, str
     if recipe.body == "wall" and "width" not in filled and (wound or asked.item.quantity == "resistance"):
         return "the wall's width across it", "width [mm]"
     return None
-
-
-def _unknown(value: Array) -> list[tuple[np.ndarray, Fault]]:
-    sentence = f"the current in {ROW} has no finite resistance; check its resistivity and sizes"
-    return [(~np.isfinite(value), Fault(CellError.NUM, sentence))]

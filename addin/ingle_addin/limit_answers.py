@@ -5,6 +5,7 @@ from __future__ import annotations
 from collections.abc import Mapping
 
 import numpy as np
+from ingle import Status
 from ingle.shapes import Array
 
 from ingle_addin.cells import CellError
@@ -14,6 +15,7 @@ from ingle_addin.headings import CURRENTS
 from ingle_addin.ready import Faults, Ready, Solved, Worked, plain
 from ingle_addin.recipe import Recipe
 from ingle_addin.slots import base_name
+from ingle_addin.status_faults import STATUS_FAULTS
 
 _ALLOWED = ("allowable_multiple", "first_broken", "lacking")
 # A limit is passed when the temperature is this much above it: less is rounding, at an allowable source put back.
@@ -66,12 +68,11 @@ def _limit_faults(solved: Solved, recipe: Recipe) -> Faults:
     lacking = solved.values["lacking"]
     sentence = f"no source reaches the limit in {ROW}: that face is held, or the sources cool the body; give a limit for the peak"
     conductivity = f"the conductivity in {ROW} falls to zero before a limit is reached; check the slope or give a table"
-    not_found = f"no source was found that brings {ROW} to a limit; check the limits, slopes and sizes for a slip"
     return [
         *broken_faults(solved.values["first_broken"], recipe),
         (lacking == 3, Fault(CellError.NUM, sentence)),
         (lacking == 4, Fault(CellError.NUM, conductivity)),
-        (lacking == 5, Fault(CellError.NUM, not_found)),
+        (lacking == 5, STATUS_FAULTS[Status.NOT_BALANCED]),
     ]
 
 
@@ -113,7 +114,7 @@ def _all_zero(mask: np.ndarray) -> tuple[np.ndarray, Fault]:
     return mask, Fault(CellError.NUM, f"the sources in {ROW} are all 0, so they do not say how they scale together; give them")
 
 
-def limited_by(asked: Asked, plan: Plan, recipe: Recipe) -> Ready | Fault:
+def limited_by(plan: Plan, recipe: Recipe) -> Ready | Fault:
     """The limit that the source reaches first, or `runaway`."""
     if not recipe.limits:
         return no_limit(plan)
@@ -126,14 +127,12 @@ def limited_by(asked: Asked, plan: Plan, recipe: Recipe) -> Ready | Fault:
         governs = solved.values["governs"]
         none = np.isnan(governs) | (governs == 0.0)
         found: np.ndarray = names[np.where(none, 0, governs).astype(np.intp)]  # −1 is the last
-        sentence = f"{asked.label}: no limit governs in {ROW}, for no source was found that reaches one; check its limits"
-        return found, [*(_limit_faults_where(none, solved, recipe)), (none, Fault(CellError.NUM, sentence))]
+        return found, [
+            *((none & each, fault) for each, fault in _limit_faults(solved, recipe)),
+            (none, STATUS_FAULTS[Status.NOT_BALANCED]),
+        ]
 
     return Ready(("governs", *_ALLOWED), work, beyond=True)
-
-
-def _limit_faults_where(mask: np.ndarray, solved: Solved, recipe: Recipe) -> Faults:
-    return [(mask & each, fault) for each, fault in _limit_faults(solved, recipe)]
 
 
 def headroom(plan: Plan, recipe: Recipe) -> Ready | Fault:
