@@ -206,7 +206,12 @@ class Ready:
         known = border.multiples(network, state)
         self.known = [mu if owner is None else None for mu, owner in zip(known, self.owners, strict=True)]
         if bounds is None:
-            bounds = [None if mu is None else port.bound(mu) for mu, port in zip(self.known, self.ports, strict=True)]
+            # A held temperature is read inside the layers, which a bound port fills in only at the end.
+            read = border.control is not None
+            bounds = [
+                None if mu is None or (read and port.start() is not None) else port.bound(mu)
+                for mu, port in zip(self.known, self.ports, strict=True)
+            ]
         self.bounds = bounds
 
     def take(self, rows: np.ndarray, state: State) -> Ready:
