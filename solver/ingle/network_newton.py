@@ -381,6 +381,9 @@ def _step(
         move[2 * e], move[2 * e + 1] = _along(a, moves), _along(b, moves)
     after = faces + move
     biggest, size = np.maximum.reduce(np.abs(move), axis=0), np.maximum.reduce(np.abs(after), axis=0)
+    if border.target is not None:
+        # Held faces do not move, while the multiple still does.
+        size = np.maximum(size, np.abs(border.target))
     theta: list[Array | None] = []
     # The part of the step that no source grows too much over; None where it is whole in every case.
     part: Array | None = None

@@ -366,7 +366,7 @@ def build(cells: Cells) -> Model:
         cells.errors.append(IMPOSSIBLE)
     cells.fail()
     layers = tuple(
-        Layer(one.start, one.thickness, one.conductivity, sources.get(i), cells.number(f"turns {i + 1}"))
+        Layer(one.start, one.thickness, one.conductivity, sources.get(i), cells.maybe(f"turns {i + 1}") or 0.0)
         for i, one in enumerate(layers)
     )
     return Model(shape, bore, layers, joints, left, right, side, section, perimeter)

@@ -19,7 +19,7 @@ from .solution import NothingError, RunawayError, Solution
 
 Inputs = dict[str, Value]
 COLDEST, HOTTEST = 20.0, 4000.0
-HIGHEST_LIMIT = 9e4  # what a heading takes
+HIGHEST_LIMIT = 9e3  # beyond it nothing stays solid
 LEAST_PART = 0.15  # conductivities and resistivities keep this part of their base up to the highest limit
 RUNAWAY_SHARE = 0.13
 
