@@ -148,7 +148,10 @@ ASKED = {
     ("why", TYPED + "; limit [°C] = 23"): [
         "why  Limit [°C] in this row is 23, and the peak is above it; lower the source or cool the body more"
     ],
-    ("peak [°C]", "shape = ; thickness [mm] = 3"): ["peak [°C]  #N/A", "Shape in this row is blank; write wall, cylinder, sphere or bar"],
+    ("peak [°C]", "shape = ; thickness [mm] = 3"): [
+        "peak [°C]  #N/A",
+        "Shape in this row is blank; write wall, cylinder, sphere or bar",
+    ],
     ("peak [°C]", TYPED.replace("= 3", "= -3")): ["peak [°C]  16.25", "Generation [W/m³] in this row is negative, so the body takes "
                                                  "heat up; make it positive if it heats itself"],
     ("peek [°C]", TYPED): ["peek [°C]  #VALUE!", "Heading 'peek [°C]': no answer has this name; did you mean 'peak'?"],
