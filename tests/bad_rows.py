@@ -81,8 +81,8 @@ CELLS = Table(
          "their units"),
         ({"shape": "cube"}, VALUE, "Shape in {row} is 'cube', which is not known; write wall, cylinder, sphere or bar"),
         ({"shape": 5.0}, VALUE, "Shape in {row} is a number; a text belongs here: wall, cylinder, sphere or bar"),
-        ({"shape": None}, NA, "Shape in {row} is blank; write wall, cylinder or sphere"),
-        ({"shape": "bar"}, NA, "Shape 'bar' in {row} is not available yet; bars along their length need a later version"),
+        ({"shape": None}, NA, "Shape in {row} is blank; write wall, cylinder, sphere or bar"),
+        ({"shape": "bar"}, NA, "{Row} has no length, and no heading for it; add a column 'length [mm]'"),
         ({"shape": ERRORS[NA]}, NA, "Shape in {row} holds the error #N/A; correct that cell"),
         *(({D: ERRORS[error]}, error, f"Thickness [mm] in {{row}} holds the error {error}; correct that cell") for error in ERRORS),
         # An error goes before every other fault of its row, wherever it stands.
@@ -130,17 +130,24 @@ SOURCES = Table(
          "{row} are blank; write 0 for no source"),
         ({"material": "copper"}, NA, f"Material in {{row}} {LATER}"),
         ({"material": 7.0}, VALUE, "Material in {row} is a number; a text belongs here"),
-        ({"current [A]": 90.0}, NA, f"Current [A] in {{row}} {LATER}"),
-        ({"resistivity [Ω·m]": 1e-6}, NA, f"Resistivity [Ω·m] in {{row}} {LATER}"),
-        ({"generation slope [1/K]": 0.004}, NA, f"Generation slope [1/K] in {{row}} {LATER}"),
+        ({"current [A]": 90.0}, VALUE, "Generation [W/m³] and current [A] in {row} are two sources in one layer; leave one blank"),
+        ({Q: None, "current [A]": 90.0}, NA, "Resistivity [Ω·m] in {row} is blank; a current needs it"),
+        ({Q: None, "current [A]": 90.0, "resistivity [Ω·m]": 1e-6}, NA, "Current [A] in {row} needs the wall's width across the "
+         "current; fill in 'width [mm]'"),
+        ({"resistivity [Ω·m]": 1e-6}, VALUE, "Resistivity [Ω·m] in {row} is of a current, and its layer carries none; fill in "
+         "'current [A]' or leave it blank"),
+        ({Q: None, SPECIFIC: None, P: 5.0, "generation slope [1/K]": 0.004}, NA,
+         "Power [W] in {row} needs the wall's area; fill in 'area [m²]'"),
+        ({Q: 1e12, "generation slope [1/K]": 0.004}, NUM, "The source in {row} runs away: it grows with temperature faster than the "
+         "body can shed it, so there is no steady state; lower the source or cool the body more"),
         ({"material": "copper"}, NA, f"Material in {{row}} {LATER}"),
         ({"left film law": "flat"}, VALUE, "Left film law in {row} is 'flat', which is not known; write vertical plate, horizontal "
          "cylinder, sphere, hot face up, hot face down, cylinder in cross flow, plate in flow or tube flow"),
         ({"± thickness [mm]": 0.1}, NA, f"± thickness [mm] in {{row}} {LATER}"),
         ({"conductivity 2 [W/(m·K)]": 9.0}, NA,
          "{Row} has no thickness 2, and no heading for it; add a column 'thickness 2 [mm]'"),
-        ({Q: "20:3e5; 500:2e5"}, NA,
-         "Generation [W/m³] in {row} is a text table, which is not available yet; give one number"),
+        ({Q: "20:3e5; 500"}, VALUE,
+         "Generation [W/m³] in {row} has '500' in its table; write points as temperature:value, 20:16.2"),
     ],
 )  # fmt: skip
 
@@ -161,7 +168,7 @@ ROUND = Table(
          "Inner film [W/(m²·K)] in {row} lies on an inner face, and this cylinder is solid; give an inner radius or leave it blank"),
         ({R_IN: 0.0, FILM: None, FLUID: None, "inner film [W/(m²·K)]": 9.0, "inner fluid [°C]": 20.0}, VALUE,
          "Inner film [W/(m²·K)] in {row} lies on an inner face, and the bore is 0; give an inner radius or leave it blank"),
-        ({"width [mm]": 5.0}, VALUE, "Width [mm] in {row} belongs to a wall, not to a cylinder; leave it blank"),
+        ({"width [mm]": 5.0}, VALUE, "Width [mm] in {row} belongs to a wall or a bar, not to a cylinder; leave it blank"),
         ({"shape": "sphere", Q: None, LINE: 5.0}, VALUE,
          "Line power [W/m] in {row} has no meaning for a sphere; give 'power [W]'"),
         ({Q: None, P: 5.0}, NA, "Power [W] in {row} needs the cylinder's length; fill in 'length [mm]'"),
@@ -204,8 +211,8 @@ LAYERS = Table(
         ({JOINT: -1e-4}, NUM, f"Joint 1 [m²·K/W] in {{row}} is -0.0001; {RANGE} 1e20; {HEADING_UNIT}"),
         ({JOINT2: 1e-4, "joint 2 [W/(m²·K)]": 1e4}, VALUE, both("Joint 2 [m²·K/W]", "joint 2 [W/(m²·K)]", "joint 2")),
         ({"joint 2 [W/(m²·K)]": 0.0}, NUM, "Joint 2 [W/(m²·K)] in {row} is 0; a conductance is above 0"),
-        ({SLOPE: -1.0, Q: 3e8}, NUM, "The conductivity in {row} falls to zero within the body at its temperature; check the slope or "
-         "give a table"),
+        ({SLOPE: -1.0, Q: 3e8}, NUM, "A conductivity or resistivity in {row} falls to zero on the way to its temperature; check the "
+         "slope or give a table"),
         ({Q: None}, NA, "Generation [W/m³] and generation 2 [W/m³] in {row} are blank; write 0 for no source"),
         ({R_OUT: 20.0}, VALUE, "Outer radius [mm] in {row} belongs to a cylinder or a sphere, not to a wall; leave it blank"),
     ],

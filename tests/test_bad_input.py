@@ -209,7 +209,8 @@ OTHERS = {
     "INGLE.ALLOW(A1:G1,A2:G2)": (NUM, "Limit [°C] in this row is 15, passed even with no source; raise it or cool the body more"),
     'INGLE.ASK("allowable power [W]",A1:G1,A2:G2)': (NA, "Allowable power [W]: the source in this row is its generation; ask for "
                                                      "'allowable generation'"),
-    'INGLE.ASK("allowable current [A]",A1:G1,A2:G2)': (NA, f"Allowable current [A] {NOT_YET}"),
+    'INGLE.ASK("allowable current [A]",A1:G1,A2:G2)': (NA, "Allowable current [A]: the source in this row is its generation; ask for "
+                                                       "'allowable generation'"),
     'INGLE.ASK("settling time [s]",A1:G1,A2:G2)': (NA, f"Settling time [s] {NOT_YET}"),
     'INGLE.ASK("thickness [mm]",A1:G1,A2:G2)': (VALUE, "Heading 'thickness [mm]': this is an input; it cannot be asked as an answer"),
     'INGLE.FACE("top",A1:G1,A2:G2)': (VALUE, "The side 'top' is not known; write left, right, inner or outer"),

@@ -10,6 +10,7 @@ from collections.abc import Iterator
 
 import law_sentences
 import pytest
+import source_sentences
 from ingle_addin import ask
 from ingle_addin.batch import solve_calls
 from ingle_addin.cells import CellError
@@ -26,7 +27,7 @@ R1, D2, K2 = "outer radius 1 [mm]", "thickness 2 [mm]", "conductivity 2 [W/(m·K
 WALL = {"shape": "wall", D: 10.0, K: 15.0, Q: 3e5, HELD: 20.0}
 ROD = {"shape": "cylinder", R_OUT: 12.0, K: 15.0, Q: 3e5, "right held [°C]": 20.0}
 BALL = {**ROD, "shape": "sphere"}
-GONE = object()  # a heading of the good case that is left out
+GONE = source_sentences.GONE  # a heading of the good case that is left out
 TWO = {D2: 5.0, K2: 2.0}
 COOLED = {HELD: GONE, FILM: 10.0, FLUID: 20.0}
 
@@ -94,7 +95,6 @@ MESSAGES: list[tuple[Call, str]] = [
     (wall({D: "1,250"}), "Thickness [mm] in this row is '1,250', a text; its comma may part thousands or decimals, so type it as a "
      "number of your spreadsheet"),
     (wall({D: "1,25"}), "Thickness [mm] in this row is '1,25', a text with a decimal comma; type it as a number of your spreadsheet"),
-    (wall({Q: "20:3e5"}), f"Generation [W/m³] in this row is a text table, which {LATER}; give one number"),
     (wall({K: "20:16; 500"}),
      "Conductivity [W/(m·K)] in this row has '500' in its table; write points as temperature:value, 20:16.2"),
     (wall({K: "20 kg:16"}), "Conductivity [W/(m·K)] in this row has '20 kg:16' in its table: 'kg' is a mass, but a temperature "
@@ -120,9 +120,8 @@ MESSAGES: list[tuple[Call, str]] = [
      f"belongs here; {UNIT}"),
     # Rows: what is missing, doubled or contradictory.
     (wall({"material": "copper"}), f"Material in this row {LATER}; leave it blank or wait for a later version"),
-    (wall({"shape": None}), "Shape in this row is blank; write wall, cylinder or sphere"),
+    (wall({"shape": None}), "Shape in this row is blank; write wall, cylinder, sphere or bar"),
     (wall({"shape": GONE}), "This row has no shape, and no heading for it; add a column 'shape'"),
-    (wall({"shape": "bar"}), f"Shape 'bar' in this row {LATER}; bars along their length need a later version"),
     (wall({R_IN: 1.0}), "Inner radius [mm] in this row belongs to a cylinder or a sphere, not to a wall; leave it blank"),
     (wall({D: None}), "Thickness [mm] in this row is blank; type a value"),
     (wall({K: GONE}), "This row has no conductivity, and no heading for it; add a column 'conductivity [W/(m·K)]'"),
@@ -177,7 +176,7 @@ MESSAGES: list[tuple[Call, str]] = [
     (rod({R_OUT: GONE, R1: 9.0, "outer radius 2 [mm]": 9.0, K2: 1.0}), "Outer radius 2 [mm] in this row is 9, not beyond layer 1; "
      "layers go from the inside out"),
     # No state.
-    (wall({"conductivity slope [1/K]": -0.1, Q: 3e7}), "The conductivity in this row falls to zero within the body at its "
+    (wall({"conductivity slope [1/K]": -0.1, Q: 3e7}), "A conductivity or resistivity in this row falls to zero on the way to its "
      "temperature; check the slope or give a table"),
     (wall({HELD: GONE, "left emissivity": 0.9, "left surroundings [°C]": 9.0, Q: -1e6}),
      "No temperature was found at which the heats "
@@ -295,6 +294,9 @@ MESSAGES += [
 MESSAGES += [(row_call("INGLE.WHY", law_sentences.BASE, changes), text) for changes, text in law_sentences.CASES]
 MESSAGES += [(row_call("INGLE.ASK", law_sentences.BASE, changes, asked), text) for asked, changes, text in law_sentences.ASKED]
 
+MESSAGES += [(row_call("INGLE.WHY", base, changes), text) for base, changes, text in source_sentences.CASES]
+MESSAGES += [(row_call("INGLE.ASK", base, changes, asked), text) for asked, base, changes, text in source_sentences.ASKED]
+
 
 @pytest.mark.parametrize(("call", "sentence"), MESSAGES, ids=[sentence[:50] for _, sentence in MESSAGES])
 def test_sentence(call: Call, sentence: str) -> None:
@@ -302,7 +304,8 @@ def test_sentence(call: Call, sentence: str) -> None:
 
 
 # The evaluator's modules; what is wrong with a unit is worded in `units`, whose own tests hold those sentences.
-MODULES = ("checks", "recipe", "answers", "evaluate", "tables", "batch", "more_functions", "heading_reader", "asking", "cautions",
+MODULES = ("checks", "recipe", "slots", "face_recipe", "source_recipe", "bar_recipe", "answers", "limit_answers", "heat_answers",
+           "status_faults", "tables", "batch", "more_functions", "heading_reader", "asking", "cautions",
            "case_builder", "film_headings", "text_tables")  # fmt: skip
 # Two words in a row that no sentence is made of: names of headings and answers, and patterns.
 NAMES = {
@@ -355,7 +358,7 @@ def test_the_search_for_sentences_finds_what_it_should() -> None:
     """A sentence in a Fault, in a variable, in one piece of many, and in a helper's argument."""
     found = {module: [text for _, text in texts_of(module)] for module in MODULES}
     assert any("is not known; write left, right, inner or outer" in text.replace("\\", "") for text in found["batch"])
-    assert any("passed even with no source" in text.replace("\\", "") for text in found["answers"])
+    assert any("passed even with no source" in text.replace("\\", "") for text in found["limit_answers"])
     assert any("colder than" in text.replace("\\", "") for text in found["checks"])
     assert any("layers are counted from 1" in text.replace("\\", "") for text in found["heading_reader"])
     assert sum(map(len, found.values())) > 100

@@ -55,7 +55,7 @@ SLIPS: dict[str, tuple[CellError, Slip]] = {
     "no shape": (CellError.NA, {"shape": None}),
     "unknown shape": (CellError.VALUE, lambda draw: {"shape": "".join(draw.choice(list("qxyz=+'\n"), draw.integers(1, 400)))}),
     "number as shape": (CellError.VALUE, lambda draw: {"shape": float(draw.integers(0, 9))}),
-    "bar": (CellError.NA, {"shape": "bar"}),
+    "bar": (CellError.VALUE, {"shape": "bar"}),
     "text": (CellError.VALUE, lambda draw: {number_heading(draw): "about " + "five " * int(draw.integers(1, 99))}),
     "number as text": (CellError.VALUE, lambda draw: {number_heading(draw): f"{draw.uniform(1, 9):.3f}"}),
     "decimal comma": (CellError.VALUE, lambda draw: {number_heading(draw): "4,75"}),

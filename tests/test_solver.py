@@ -221,8 +221,8 @@ def test_the_allowable_source_brings_the_body_to_its_limit(shape: Shape, bored: 
     limits[1][::2] = np.nan
     limits[2][1::2] = np.nan
     limited = replaced(cases, cases.layers[0].generation, *limits)
-    found = steady(limited, ("allowable_generation", "governs", "lacking")).values
-    q = found["allowable_generation"]
+    found = steady(limited, ("allowable_multiple", "governs", "lacking")).values
+    q = found["allowable_multiple"]
     good = ~np.isnan(q)
     assert good.sum() >= 0.6 * ROWS
     assert (found["lacking"][good] == 0).all()
@@ -252,11 +252,11 @@ def test_why_there_is_no_allowable_source() -> None:
     held = Face(held=like(limit, 50.0))
     layer = Layer(like(limit, 0.1), like(limit, 3.0), like(limit, 0.0))
     cases = Cases(Shape.WALL, (layer,), Face(), held, limit=limit, right_limit=right)
-    found = steady(cases, ("lacking", "governs", "allowable_generation", "first_broken")).values
+    found = steady(cases, ("lacking", "governs", "allowable_multiple", "first_broken")).values
     assert found["lacking"].tolist() == [1, 2, 3, 0]
     assert found["first_broken"].tolist() == [0, 1, 0, 0]
-    assert np.isnan(found["allowable_generation"][:3]).all()
-    assert found["allowable_generation"][3] == pytest.approx(2 * 3.0 * 30.0 / 0.1**2, rel=1e-14)
+    assert np.isnan(found["allowable_multiple"][:3]).all()
+    assert found["allowable_multiple"][3] == pytest.approx(2 * 3.0 * 30.0 / 0.1**2, rel=1e-14)
     assert found["governs"][3] == 1
 
 

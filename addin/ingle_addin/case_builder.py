@@ -3,17 +3,20 @@
 from __future__ import annotations
 
 from collections.abc import Callable, Mapping
-from dataclasses import dataclass
+from dataclasses import dataclass, field, replace
+from math import pi
 
 import numpy as np
-from ingle import Cases, Face, Layer, Shape
+from ingle import Bar, Cases, Face, Layer, Shape
 from ingle.conductivities import Conductivity, Table
 from ingle.film_laws import FilmLaw, FluidKind
 from ingle.shapes import MEASURE, Array, solid_volume, volume
 
 from ingle_addin.cells import CellError
 from ingle_addin.faults import HERE, ROW, THERE, Fault
-from ingle_addin.recipe import LayerRecipe, Recipe, base_name
+from ingle_addin.recipe import LayerRecipe, Recipe
+from ingle_addin.slots import base_name
+from ingle_addin.source_builder import Pattern, Sources
 from ingle_addin.units import Kind
 
 Get = Callable[[str], Array]
@@ -25,23 +28,33 @@ _SLOPE_REFERENCE = 20.0  # °C, where the reference of a slope is blank
 
 @dataclass(frozen=True)
 class Built:
-    """Cases, and what turns the solver's numbers into the row's own: ``area`` and ``length``.
+    """Cases, and what turns the solver's numbers into the row's own: ``area`` (of a wall, or a bar's section) and ``length``.
 
-    ``single`` is True where one layer's source scales, so that a multiple is the source itself. ``table_ends`` [°C] are the
-    last temperatures of the layers' text tables.
+    ``table_ends`` [°C] are the last temperatures of the text tables, by slot.
     """
 
     cases: Cases
     area: Array | None
     length: Array | None
-    single: bool
-    table_ends: Mapping[int, Array]
+    table_ends: Mapping[str, Array]
+    sources: Sources
+    patterns: dict[str, Pattern] = field(default_factory=dict)
+
+    def pattern(self, kind: str) -> Pattern:
+        """What scales for a kind of source."""
+        if kind not in self.patterns:
+            self.patterns[kind] = self.sources.pattern(kind)
+        return self.patterns[kind]
+
+    def scaling(self, kind: str) -> Cases:
+        """The cases with that pattern."""
+        return replace(self.cases, pattern=self.pattern(kind).layers)
 
 
 class _Builder:
     def __init__(self, recipe: Recipe, get: Get, tables: GetTable, flag: Flag) -> None:
         self.recipe, self.get, self.tables, self.flag = recipe, get, tables, flag
-        self.table_ends: dict[int, Array] = {}
+        self.table_ends: dict[str, Array] = {}
         self.inner: Array | None = None  # places, for the sizes of film laws
         self.outside: Array = np.zeros(0)
 
@@ -88,29 +101,22 @@ class _Builder:
             sentence = f"{label} in {ROW} is {HERE}, not beyond layer {layer.number - 1}; layers go from the inside out"
             self.fault(d <= 0.0, CellError.NUM, sentence, layer.outside)
 
+    def in_temperature(self, slot: str, slope: str, reference: str) -> tuple[Array | None, Array | None, Array | None, Table | None]:
+        """A property as number, slope and reference, or as a table."""
+        if slot in self.recipe.tabled:
+            table, self.table_ends[slot] = self.tables(slot)
+            return None, None, None, table
+        value, sloped = self.get(slot), self.maybe(slope)
+        if sloped is None:
+            return value, None, None, None
+        known = self.maybe(reference)
+        return value, sloped, np.full_like(sloped, _SLOPE_REFERENCE) if known is None else known, None
+
     def conductivity(self, layer: LayerRecipe) -> Array | Conductivity:
         """A number, a slope or a table."""
-        slot, slope = layer.slot("conductivity"), self.maybe(layer.slot("conductivity slope"))
-        if slot in self.recipe.tabled:
-            table, self.table_ends[layer.number] = self.tables(slot)
-            return Conductivity(None, None, None, table)
-        k = self.get(slot)
-        if slope is None:
-            return k
-        reference = self.maybe(layer.slot("conductivity reference"))
-        return Conductivity(k, slope, np.full_like(k, _SLOPE_REFERENCE) if reference is None else reference, None)
-
-    def scale(self, slot: str, layer: LayerRecipe, V: Array) -> Array | None:
-        """Generation made by one base unit of a source heading; None is 1."""
-        name, shape = base_name(slot), self.recipe.shape
-        if name == "generation":
-            return None
-        if name == "specific generation":
-            return self.get(layer.slot("density"))
-        if name == "line power":
-            return 1.0 / V
-        along = {Shape.WALL: self.maybe("area"), Shape.CYLINDER: self.maybe("length"), Shape.SPHERE: None}[shape]
-        return 1.0 / (V if along is None else V * along)
+        slots = (layer.slot(name) for name in ("conductivity", "conductivity slope", "conductivity reference"))
+        k, slope, reference, table = self.in_temperature(*slots)
+        return k if k is not None and slope is None else Conductivity(k, slope, reference, table)
 
     def resistance(self, slot: str) -> Array | None:
         """An area resistance, given as one or as a conductance by its unit."""
@@ -133,10 +139,30 @@ class _Builder:
             return Face(held, film, None if film is None else fluid, flux, emissivity, surroundings, resistance)
         size, speed = self.maybe(f"{side} size"), self.maybe(f"{side} speed")
         if size is None:  # a round law's own diameter
-            size = 2.0 * (self.outside if side == "right" or self.inner is None else self.inner)
+            size = self.diameter(side)
         of = FluidKind[self.recipe.words.get(f"{side} fluid kind", "air").upper()]
         which = FilmLaw[law.upper().replace(" ", "_")]
         return Face(held, None, fluid, flux, emissivity, surroundings, resistance, which, of, size, speed)
+
+    def diameter(self, side: str) -> Array:
+        """The body's own at a face, or of a bar."""
+        if self.recipe.bar:
+            return self.get("diameter")
+        return 2.0 * (self.outside if side == "right" or self.inner is None else self.inner)
+
+    def bar(self) -> Bar:
+        """Section, perimeter and what cools the sides."""
+        way = self.recipe.section
+        first = self.get(way[0])
+        if way[0] == "section":
+            section, perimeter = first, self.maybe("perimeter")
+        elif way[0] == "width":
+            thick = self.get("thickness")
+            section, perimeter = first * thick, 2.0 * (first + thick)
+        else:
+            section, perimeter = pi * first * first / 4.0, pi * first
+        cooled = any(slot.startswith("side ") for slot in self.recipe.filled)
+        return Bar(section, perimeter, self.face("side") if cooled else None, self.maybe("left contact"), self.maybe("right contact"))
 
 
 def build_cases(recipe: Recipe, get: Get, tables: GetTable, flag: Flag) -> Built:
@@ -150,10 +176,8 @@ def build_cases(recipe: Recipe, get: Get, tables: GetTable, flag: Flag) -> Built
     if inner is not None:
         _flag_solid_left(recipe, inner, flag)
     place = inner
-    layers, patterns = [], []
-    scaled_layers = [layer.number for layer in recipe.layers if layer.source in recipe.scaled_slots]
-    single = len(scaled_layers) <= 1
-    for layer, d in zip(recipe.layers, thicknesses, strict=True):
+    volumes = []
+    for d in thicknesses:
         if shape == Shape.WALL:
             V = d
         elif place is None:
@@ -161,19 +185,12 @@ def build_cases(recipe: Recipe, get: Get, tables: GetTable, flag: Flag) -> Built
         else:
             V = volume(shape, place, d)
         place = d if place is None else place + d
-        V = V * MEASURE[shape]
-        blank_scaled = not scaled_layers and recipe.scaled and layer.number == recipe.scaled_layer
-        slot = layer.source or (layer.slot(recipe.scaled) if blank_scaled else "")
-        scale = make.scale(slot, layer, V) if slot else None
-        q = get(layer.source) if layer.source else np.zeros_like(d)
-        if layer.source and scale is not None:
-            q = q * scale
-        layers.append(Layer(d, make.conductivity(layer), q))
-        if not single:
-            patterns.append(q if layer.number in scaled_layers else np.zeros_like(d))
-        else:
-            here = layer.number == recipe.scaled_layer
-            patterns.append((np.ones_like(d) if scale is None else scale) if here else np.zeros_like(d))
+        volumes.append(V * MEASURE[shape])
+    bar = make.bar() if recipe.bar else None
+    sources = Sources(recipe, make.maybe, make.in_temperature, volumes, None if bar is None else bar.section)
+    layers = tuple(
+        Layer(d, make.conductivity(layer), sources.now(layer)) for layer, d in zip(recipe.layers, thicknesses, strict=True)
+    )
     assert place is not None
     make.inner, make.outside = inner, place
     _check_probe(recipe, get, flag, inner, thicknesses)
@@ -183,7 +200,7 @@ def build_cases(recipe: Recipe, get: Get, tables: GetTable, flag: Flag) -> Built
     joints = tuple(make.resistance(f"joint {number}") for number in range(1, len(layers)))
     cases = Cases(
         shape,
-        tuple(layers),
+        layers,
         make.face("left"),
         make.face("right"),
         inner,
@@ -193,9 +210,11 @@ def build_cases(recipe: Recipe, get: Get, tables: GetTable, flag: Flag) -> Built
         make.maybe("probe"),
         joints,
         tuple(make.maybe(f"limit {layer.number}") for layer in recipe.layers),
-        tuple(patterns),
+        length=make.maybe("length"),
+        width=make.maybe("width"),
+        bar=bar,
     )
-    return Built(cases, make.maybe("area"), make.maybe("length"), single, make.table_ends)
+    return Built(cases, make.maybe("area") if bar is None else bar.section, make.maybe("length"), make.table_ends, sources)
 
 
 def _check_probe(recipe: Recipe, get: Get, flag: Flag, inner: Array | None, thicknesses: list[Array]) -> None:

@@ -5,7 +5,8 @@ from __future__ import annotations
 from collections.abc import Iterator, Mapping
 
 import numpy as np
-from ingle.conductivities import Conductivity
+from ingle import Conductor, Generation, Layer
+from ingle.conductivities import Conductivity, Table
 from ingle.film_laws import Doubt
 
 from ingle_addin.case_builder import Built
@@ -22,21 +23,32 @@ def caution_masks(recipe: Recipe, built: Built, values: Mapping[str, np.ndarray]
     """Masks of a recipe's rows and the caution each has; the first that holds is the one shown."""
     yield from law_cautions(recipe, values)
     for layer, case in zip(recipe.layers, built.cases.layers, strict=True):
-        if layer.source:
-            label, q = recipe.label(layer.source), case.generation
+        q = case.generation.scale if isinstance(case.generation, Generation) else case.generation
+        if isinstance(q, np.ndarray) and layer.source and layer.source not in recipe.tabled:
+            label = recipe.label(layer.source)
             yield _where(q < 0.0, f"{label} in {ROW} is negative, so the body takes heat up; make it positive if it heats itself")
             sentence = f"{label} in {ROW} is {HERE}, which makes over 1e13 W/m³, more than a fusing wire; check its unit"
             column = recipe.filled[layer.source].index
             yield np.abs(q) > IMPLAUSIBLE_GENERATION, Fault(CellError.NA, sentence, (column,))
-        slot = layer.slot("conductivity")
-        if slot in recipe.tabled and isinstance(case.conductivity, Conductivity) and case.conductivity.table is not None:
-            T = case.conductivity.table.T
+        for name, table in _tables(case):
+            slot = layer.slot(name)
             low, high = values[f"layer_low {layer.number}"], values[f"layer_peak {layer.number}"]
             sentence = f"{recipe.label(slot)} in {ROW} has a table that does not reach the body's temperatures"
             held = f"{sentence}; its end value is held there, so extend it"
-            yield _where((low < T[:, 0]) | (high > built.table_ends[layer.number]), held)
+            yield _where((low < table.T[:, 0]) | (high > built.table_ends[slot]), held)
         sentence = f"{recipe.label(layer.outside)} in {ROW} makes the body over 100 m thick; check its unit"
         yield _where(case.thickness > IMPLAUSIBLE_SIZE, sentence)
+
+
+def _tables(layer: Layer) -> Iterator[tuple[str, Table]]:
+    """The text tables of a layer, by their headings."""
+    k, source = layer.conductivity, layer.generation
+    found = (
+        ("conductivity", k.table if isinstance(k, Conductivity) else None),
+        ("generation", source.table if isinstance(source, Generation) else None),
+        ("resistivity", source.resistivity.table if isinstance(source, Conductor) else None),
+    )
+    return ((name, table) for name, table in found if table is not None)
 
 
 _DOUBTS = (
@@ -54,7 +66,7 @@ _DOUBTS = (
 
 def law_cautions(recipe: Recipe, values: Mapping[str, np.ndarray]) -> Iterator[tuple[np.ndarray, Fault]]:
     """The doubts of the film laws at the faces."""
-    for side in ("left", "right"):
+    for side in ("left", "right", "side"):
         doubts = values.get(f"{side}_doubt")
         if doubts is None or np.isnan(doubts).all():
             continue

@@ -30,8 +30,6 @@ def text_fault(column: Column, cell: str) -> Fault:
         return Fault(CellError.VALUE, f"{where} is {shown}, a text; {remedy}")
     if _DECIMAL_COMMA.fullmatch(text):
         return Fault(CellError.VALUE, f"{where} is {shown}, a text with a decimal comma; type it as a number of your spreadsheet")
-    if column.item.table and is_table(text):
-        return Fault(CellError.NA, f"{where} is a text table, which is not available yet; give one number")
     return Fault(CellError.VALUE, f"{where} is the text {shown}; a number belongs here")
 
 

@@ -11,38 +11,23 @@ from __future__ import annotations
 from collections.abc import Sequence
 
 import numpy as np
-from ingle import Status, steady
+from ingle import Answers, Status, steady
 from ingle.conductivities import Table
-from ingle.steady import BLOCK
+from ingle.steady import BLOCK, OF_SCALING
 
-from ingle_addin import answers, checks, columns, recipe
-from ingle_addin.case_builder import build_cases
+from ingle_addin import answers, checks, columns, limit_answers, recipe
+from ingle_addin.case_builder import Built, build_cases
 from ingle_addin.cautions import caution_masks
 from ingle_addin.cells import CellError
 from ingle_addin.columns import Values
 from ingle_addin.evaluation import Evaluation, judge
-from ingle_addin.faults import ROW, Fault
+from ingle_addin.faults import Fault
 from ingle_addin.heading_reader import Asked, Column, Plan, clean
+from ingle_addin.ready import Ready, Solved
 from ingle_addin.recipe import Recipe
+from ingle_addin.status_faults import BEYOND, STATUS_FAULTS
 from ingle_addin.text_tables import TextTables, read_table
 from ingle_addin.units import Kind
-
-_STATUS_FAULTS = {
-    Status.NO_OUTLET: Fault(
-        CellError.NUM, f"no heat can leave the body in {ROW}, so it has no steady state; give a face a film above 0 with its "
-        "fluid, or hold it at a temperature"),
-    Status.BELOW_ABSOLUTE_ZERO: Fault(
-        CellError.NUM, f"the answer in {ROW} would lie below absolute zero; check the signs of the generation and the fluxes"),
-    Status.NO_CONDUCTIVITY: Fault(
-        CellError.NUM,
-        f"the conductivity in {ROW} falls to zero within the body at its temperature; check the slope or give a table",
-    ),
-    Status.NOT_BALANCED: Fault(
-        CellError.NUM, f"no temperature was found at which the heats of {ROW} balance; check that its values belong together"
-    ),
-    Status.OVERFLOW: Fault(
-        CellError.NUM, f"the values in {ROW} are so far apart that the answer is beyond the range of numbers; check their units"),
-}  # fmt: skip
 
 
 def evaluate(
@@ -171,7 +156,7 @@ class _Block:
         assert values.cells is not None
         odd = np.flatnonzero(values.kinds >= columns.TEXT)
         seen: dict[object, list[int]] = {}
-        tables = TextTables.none(self.n) if column.item.table and column.item.name == "conductivity" else None
+        tables = TextTables.none(self.n) if column.item.table else None
         for row in odd:  # reading: a fault is worded from the cell itself, a text table read from it
             seen.setdefault(columns.key(values.cells[row]), []).append(int(row))
         for rows in seen.values():
@@ -270,12 +255,11 @@ class _Block:
                 self._put_fault(j, rows, made)
             return
         ready = [_ready(a, self.plan, made) if isinstance(a, Asked) else a for a in result.asked]
-        wanted = dict.fromkeys(name for r in ready if isinstance(r, answers.Ready) for name in r.quantities)
         for j, r in enumerate(ready):
             if isinstance(r, Fault):
                 self._put_fault(j, rows, r)
         judged = any(isinstance(a, Asked) and a.item.quantity in ("why", "verdict") for a in result.asked)
-        if not wanted:
+        if not any(isinstance(r, Ready) for r in ready):
             return
         cache: dict[str, np.ndarray] = {}
 
@@ -290,17 +274,29 @@ class _Block:
         )
         if result.keep_cases:
             result.cases.append(built.cases)
-        solved = steady(built.cases, wanted)
-        failed = [(solved.status == code, fault) for code, fault in _STATUS_FAULTS.items()] if solved.status.any() else []
-        whole = [(mask, fault) for mask, fault in (*faults, *failed) if mask.any()]
+        solved = {kind: self._solve(made, built, kind, ready) for kind in dict.fromkeys(_scalings(ready))}
+        whole = [(mask, fault) for mask, fault in faults if mask.any()]
         if judged:
-            for mask, caution in (*answers.passed_limits(made, solved.values), *caution_masks(made, built, solved.values)):
+            known = solved[""].values
+            for mask, caution in (*limit_answers.passed_limits(made, known), *caution_masks(made, built, known)):
                 self._put_caution(rows, mask, caution)
-        context = answers.Solved(solved.values, built, get)
         for j, r in enumerate(ready):
-            if isinstance(r, answers.Ready):
-                values, own = r.work(context)
-                self._put(j, rows, values, [*whole, *((mask, fault) for mask, fault in own if mask.any())])
+            if isinstance(r, Ready):
+                found = solved[r.scaling]
+                failed = [
+                    (found.status == code, fault)
+                    for code, fault in STATUS_FAULTS.items()
+                    if found.status.any() and not (r.beyond and code in BEYOND)
+                ]
+                values, own = r.work(Solved(found.values, built, get))
+                self._put(j, rows, values, [(mask, fault) for mask, fault in (*whole, *failed, *own) if mask.any()])
+
+    @staticmethod
+    def _solve(made: Recipe, built: Built, kind: str, ready: list[Ready | Fault]) -> Answers:
+        """The solver's quantities where that kind of source scales, the recipe's own if empty."""
+        wanted = dict.fromkeys(name for r in ready if isinstance(r, Ready) and r.scaling == kind for name in r.quantities)
+        scales = (kind or made.scaled) and not OF_SCALING.isdisjoint(wanted)
+        return steady(built.scaling(kind or made.scaled) if scales else built.cases, wanted)
 
     def _table(self, index: int, rows: np.ndarray | slice) -> tuple[Table, np.ndarray]:
         tables = self.tables[index]
@@ -323,7 +319,7 @@ class _Block:
             values = asked.unit.from_base(values) + 0.0  # + 0.0: no cell shows −0
             empty = np.isnan(values)
             if empty.any():  # a number that is none never leaves without a fault
-                faults = [*faults, (empty, _STATUS_FAULTS[Status.OVERFLOW])]
+                faults = [*faults, (empty, STATUS_FAULTS[Status.OVERFLOW])]
         if faults:
             number = np.full(len(values), -1, np.intp)
             for mask, fault in faults:
@@ -333,6 +329,11 @@ class _Block:
             values = values.copy()
             values[bad] = None if values.dtype == object else np.nan
         self.result.values[j][self.rows][rows] = values
+
+
+def _scalings(ready: list[Ready | Fault]) -> list[str]:
+    """The kinds of source that the answers scale, the recipe's own first: judging needs it."""
+    return ["", *(r.scaling for r in ready if isinstance(r, Ready))]
 
 
 def _compact(keys: np.ndarray) -> np.ndarray:
@@ -353,7 +354,7 @@ def _recipe(plan: Plan, key: _Key) -> Recipe | Fault:
     return made
 
 
-def _ready(asked: Asked, plan: Plan, made: Recipe) -> answers.Ready | Fault:
+def _ready(asked: Asked, plan: Plan, made: Recipe) -> Ready | Fault:
     found = made.answers.get(asked)
     if found is None:
         found = answers.ready(asked, plan, made)

@@ -78,7 +78,8 @@ def judge(result: Evaluation, table: Sequence[Values], numbers: np.ndarray | Non
         texts = np.where(result.blank, "", result.values[j])
         if name == "verdict":
             doubtful = (result.caution >= 0) & (found < 0) & (texts != "over limit")
-            texts = np.where(found >= 0, "no answer", np.where(doubtful, "caution", texts))
+            verdicts = np.array([fault.verdict for fault in result.faults] + [""], dtype=object)
+            texts = np.where(found >= 0, verdicts[found], np.where(doubtful, "caution", texts))
         else:
             texts = np.where(result.blank, "", "ok").astype(object)
             for row in np.flatnonzero((found >= 0) | (result.caution >= 0)):  # writing: a sentence is worded for its cell

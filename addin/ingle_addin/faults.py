@@ -14,11 +14,15 @@ LONGEST = 255
 
 @dataclass(frozen=True)
 class Fault:
-    """``error`` is the cell's; ``sentence`` may hold ROW, HERE and THERE; ``columns`` hold the values of the last two."""
+    """``error`` is the cell's; ``sentence`` may hold ROW, HERE and THERE; ``columns`` hold the values of the last two.
+
+    ``verdict`` is what the answer of that name says of the row.
+    """
 
     error: CellError
     sentence: str
     columns: tuple[int, ...] = ()
+    verdict: str = "no answer"
 
 
 def quoted(text: str) -> str:

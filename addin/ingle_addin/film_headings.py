@@ -30,7 +30,8 @@ def law_fault(filled: Mapping[str, Column], words: Mapping[str, str], side: str,
         return None
     name = words[f"{side} film law"]
     whose = _whose(law, side)
-    if size is None and (name not in _ROUND or shape == "wall"):
+    flat = shape == "wall" or (shape == "bar" and (side != "side" or "diameter" not in filled))
+    if size is None and (name not in _ROUND or flat):
         return Fault(CellError.NA, f"{law.label} in {ROW} is '{name}' and needs a size; fill in '{whose} size [mm]'")
     if name in _OF_FLOW and speed is None:
         return Fault(CellError.NA, f"{law.label} in {ROW} is '{name}' and needs a speed; fill in '{whose} speed [m/s]'")

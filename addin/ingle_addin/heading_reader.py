@@ -191,8 +191,7 @@ def read_input(text: str, index: int) -> Column | Fault | None:
     except UnitError as error:
         return _bad(text, str(error))
     layer = number or (1 if item.where in (Where.LAYER, Where.JOINT) else 0)
-    available = item.available and known.side != "side"
-    return Column(index, item, _slots(item, known.side, layer), layer, unit, clean(text), available, bool(number))
+    return Column(index, item, _slots(item, known.side, layer), layer, unit, clean(text), item.available, bool(number))
 
 
 def _slots(item: Input, side: str, layer: int) -> tuple[str, ...]:

@@ -90,32 +90,35 @@ INPUTS: tuple[Input, ...] = (
     Input("length", _L, "along a cylinder's axis or a bar's heat path", available=True),
     Input("width", _L, "of a wall, across the current", available=True),
     Input("area", (Kind.AREA,), "of a wall's face", highest=1e12, available=True),
-    Input("section", (Kind.AREA,), "of a bar", highest=1e12),
-    Input("perimeter", _L, "of a bar's section"),
+    Input("section", (Kind.AREA,), "of a bar", highest=1e12, available=True),
+    Input("perimeter", _L, "of a bar's section", available=True),
     Input("conductivity", (Kind.CONDUCTIVITY,), "a number, or a text table in temperature", _LAYER, table=True, available=True),
     Input("conductivity slope", _PER_K, "k = k₀[1 + slope (T − reference)]", _LAYER, -1e3, 1e3, above=False, available=True),
     _temperature("conductivity reference", "of the slope; 20 °C if blank", _LAYER, available=True),
     Input("material", _TEXT, "a row of the bundled materials table", _LAYER),
-    Input("generation", (Kind.GENERATION,), "heat per volume; a number or a text table", _LAYER, -1e25, 1e25, above=False,
+    Input("generation", (Kind.GENERATION,), "heat per volume; a number or a text table", _LAYER, -1e30, 1e30, above=False,
           table=True, available=True),
-    Input("specific generation", (Kind.SPECIFIC_GENERATION,), "heat per mass, with density", _LAYER, -1e22, 1e22,
+    Input("specific generation", (Kind.SPECIFIC_GENERATION,), "heat per mass, with density", _LAYER, -1e27, 1e27,
           above=False, available=True),
     Input("power", (Kind.POWER,), "spread evenly over the layer's volume; needs the area of a wall or the length of a "
           "cylinder", _LAYER, -1e15, 1e15, above=False, available=True),
     Input("line power", (Kind.LINE_POWER,), "spread evenly over each metre of a cylinder", _LAYER,
           -1e15, 1e15, above=False, available=True),
-    Input("current", (Kind.CURRENT,), "along the layer of a wall or cylinder, or along a bar", _LAYER, -1e12, 1e12, False),
-    Input("voltage", (Kind.VOLTAGE,), "along the length, instead of a current", _LAYER, -1e12, 1e12, False),
-    Input("current density", (Kind.CURRENT_DENSITY,), "in the conductor", _LAYER, -1e15, 1e15, False),
-    Input("turns", _N, "of a winding", _LAYER, 0.0, 1e9),
-    Input("fill factor", _N, "share of a winding's section that is conductor; 1 if blank", _LAYER, 0.0, 1.0),
-    Input("resistivity", (Kind.RESISTIVITY,), "a number, or a text table in temperature", _LAYER, table=True),
-    Input("resistivity slope", _PER_K, "ρ = ρ₀[1 + slope (T − reference)]", _LAYER, -1e3, 1e3, False),
-    _temperature("resistivity reference", "of the slope; 20 °C if blank", _LAYER),
-    Input("ac ratio", _N, "AC to DC resistance ratio; 1 if blank", _LAYER),
-    Input("contact", (Kind.RESISTANCE,), "of a bar's joint: its I²R enters at that end", _FACE, 0.0, 1e6, False),
-    Input("generation slope", _PER_K, "q = q₀[1 + slope (T − reference)]", _LAYER, -1e3, 1e3, False),
-    _temperature("generation reference", "of the slope (20 °C if blank) or of the activation energy", _LAYER),
+    Input("current", (Kind.CURRENT,), "along the layer of a wall or cylinder, or along a bar", _LAYER, -1e12, 1e12, False,
+          available=True),
+    Input("voltage", (Kind.VOLTAGE,), "along the length, instead of a current", _LAYER, -1e12, 1e12, False, available=True),
+    Input("current density", (Kind.CURRENT_DENSITY,), "in the conductor: of a solid one the mean over its section", _LAYER, -1e15,
+          1e15, False, available=True),
+    Input("turns", _N, "of a winding", _LAYER, 0.0, 1e9, available=True),
+    Input("fill factor", _N, "share of a winding's section that is conductor; 1 if blank", _LAYER, 0.0, 1.0, available=True),
+    Input("resistivity", (Kind.RESISTIVITY,), "a number, or a text table in temperature", _LAYER, table=True, available=True),
+    Input("resistivity slope", _PER_K, "ρ = ρ₀[1 + slope (T − reference)]", _LAYER, -1e3, 1e3, False, available=True),
+    _temperature("resistivity reference", "of the slope; 20 °C if blank", _LAYER, available=True),
+    Input("ac ratio", _N, "AC to DC resistance ratio, at least 1; 1 if blank", _LAYER, 1.0, 1e6, False, available=True),
+    Input("contact", (Kind.RESISTANCE,), "of a bar's joint: its I²R enters at that end", _FACE, 0.0, 1e6, False,
+          available=True),
+    Input("generation slope", _PER_K, "q = q₀[1 + slope (T − reference)]", _LAYER, -1e3, 1e3, False, available=True),
+    _temperature("generation reference", "of the slope (20 °C if blank) or of the activation energy", _LAYER, available=True),
     Input("activation energy", (Kind.MOLAR_ENERGY,), "q = q₀ exp[−E/R (1/T − 1/T_ref)], kelvin", _LAYER, 0.0, 1e8, False),
     Input("beam flux", (Kind.HEAT_FLUX,), "walls: q = μ Φ e^(−μ s)", Where.BODY, 0.0, 1e15, False),
     Input("absorption coefficient", (Kind.ATTENUATION,), "of a beam, or of a generation that decays", _LAYER, 0.0, 1e12, False),
@@ -151,7 +154,8 @@ INPUTS: tuple[Input, ...] = (
 )  # fmt: skip
 
 # The headings of which a layer takes one, and the answer that turns the question round.
-SOURCES = ("generation", "specific generation", "power", "line power", "current", "voltage", "current density")
+CURRENTS = ("current", "voltage", "current density")
+SOURCES = ("generation", "specific generation", "power", "line power", *CURRENTS)
 _HEATS = (Kind.HEAT_FLUX, Kind.LINE_POWER, Kind.POWER)
 _DIFFERENCE, _PERCENT = (Kind.TEMPERATURE_DIFFERENCE,), (Kind.PERCENT,)
 _SOURCE_KINDS = {
@@ -174,19 +178,24 @@ ANSWERS: tuple[Answer, ...] = (
     Answer("joint left", _T, "temperature on the left of a joint: joint 1 left", Where.JOINT, "joint_left"),
     Answer("joint right", _T, "temperature on the right of a joint: joint 1 right", Where.JOINT, "joint_right"),
     Answer("heat out", _HEATS, "net heat leaving through a face: W/m² of that face, W/m or W by the unit", _FACE, "heat out"),
-    Answer("side heat out", _HEATS, "heat leaving through a bar's sides"),
+    Answer("side heat out", _HEATS, "heat leaving through a bar's sides", quantity="side heat out"),
     Answer("heat made", _HEATS, "heat generated: W/m² of a wall, W/m or W by the unit", quantity="heat made"),
     Answer("left share", _PERCENT, "of all heat leaving, what leaves on the left", quantity="left_share"),
     Answer("balance", _PERCENT, "imbalance over the largest of heat made, taken in and passing through", quantity="balance"),
     Answer("film used", (Kind.FILM,), "film coefficient that a law gave", _FACE, "film used"),
-    Answer("voltage", (Kind.VOLTAGE,), "along the length, of the row's current"),
-    Answer("resistance", (Kind.RESISTANCE,), "along the length"),
+    Answer("voltage", (Kind.VOLTAGE,), "along the length, or of all turns, of the row's current", quantity="voltage"),
+    Answer(
+        "resistance",
+        (Kind.RESISTANCE,),
+        "along the length, or of all turns, at the row's temperatures; with its AC ratio",
+        quantity="resistance",
+    ),
     *(
         Answer(
             f"allowable {source}",
             (kind,),
             f"{source} at which the first limit is reached",
-            quantity=f"allowable {source}" if source in SOURCES[:4] else "",
+            quantity=f"allowable {source}",
         )
         for source, kind in _SOURCE_KINDS.items()
     ),

@@ -11,13 +11,17 @@ from typing import Any
 
 from ingle import Shape
 
+from ingle_addin import bar_recipe
 from ingle_addin.cells import CellError
+from ingle_addin.face_recipe import check_face
 from ingle_addin.faults import ROW, Fault
 from ingle_addin.film_headings import law_fault
-from ingle_addin.heading_reader import INPUT_NAMES, Column, Plan
-from ingle_addin.headings import SOURCES, Where
+from ingle_addin.heading_reader import Column, Plan
+from ingle_addin.headings import Where
+from ingle_addin.slots import Stop, base_name, missing, one, slope_fault, slot_of
+from ingle_addin.source_recipe import layer_source, scaled_source
 
-_SHAPES = {"wall": Shape.WALL, "cylinder": Shape.CYLINDER, "sphere": Shape.SPHERE}
+_SHAPES = {"wall": Shape.WALL, "cylinder": Shape.CYLINDER, "sphere": Shape.SPHERE, "bar": Shape.WALL}
 _ROUND = ("cylinder", "sphere")
 # Headings of some shapes only: a value under one of them in another shape's row is a slip of column.
 _BELONGS = {
@@ -26,10 +30,16 @@ _BELONGS = {
     "outer radius": _ROUND,
     "outer diameter": _ROUND,
     "radius": _ROUND,
-    "diameter": _ROUND,
-    "length": ("wall", "cylinder"),
-    "width": ("wall",),
+    "diameter": (*_ROUND, "bar"),
+    "length": ("wall", "cylinder", "bar"),
+    "width": ("wall", "bar"),
     "area": ("wall",),
+    "section": ("bar",),
+    "perimeter": ("bar",),
+    "turns": ("wall", "cylinder"),
+    "fill factor": ("wall", "cylinder"),
+    "left contact": ("bar",),
+    "right contact": ("bar",),
 }
 _OUTSIDES = ("outer radius", "outer diameter", "radius", "diameter")
 
@@ -52,6 +62,7 @@ class Recipe:
     """How rows of one pattern become cases. ``filled`` maps a slot to the column that fills it; ``words`` to its text."""
 
     shape: Shape
+    body: str  # the shape's own word
     filled: dict[str, Column]
     words: Mapping[str, str]
     tabled: frozenset[str]  # slots whose cells are text tables
@@ -61,6 +72,7 @@ class Recipe:
     scaled_layer: int  # the first layer of that kind, also where its cell is blank
     no_source: Fault | None
     limits: tuple[str, ...]
+    section: tuple[str, ...] = ()  # the slots that give a bar's section
     answers: dict[Any, Any] = field(default_factory=dict, compare=False, repr=False)  # what each answer needs, kept
 
     def label(self, slot: str) -> str:
@@ -68,28 +80,19 @@ class Recipe:
         return self.filled[slot].label if slot in self.filled else slot
 
     @property
-    def scaled_slots(self) -> tuple[str, ...]:
-        """The filled source slots of the scaled kind."""
-        return tuple(layer.source for layer in self.layers if layer.source and base_name(layer.source) == self.scaled)
+    def bar(self) -> bool:
+        """Whether the body is a bar, conducting along its length."""
+        return self.body == "bar"
 
+    @property
+    def kinds(self) -> tuple[str, ...]:
+        """The kinds of source in the row, the scaled one first; that of a blank source too."""
+        given = [base_name(layer.source) for layer in self.layers if layer.source]
+        return tuple(dict.fromkeys([*given, *([self.scaled] if self.scaled else [])]))
 
-class Stop(Exception):  # noqa: N818 - it carries a fault to the one place that returns it
-    """A row's pattern has no answer."""
-
-    def __init__(self, error: CellError, sentence: str) -> None:
-        super().__init__(sentence)
-        self.fault = Fault(error, sentence)
-
-
-def slot_of(name: str, layer: int) -> str:
-    """The slot of a layer's heading: a bare name is layer 1."""
-    return name if layer == 1 else f"{name} {layer}"
-
-
-def base_name(slot: str) -> str:
-    """A slot's heading without its layer."""
-    name, _, number = slot.rpartition(" ")
-    return name if number.isdigit() else slot
+    def slots_of(self, kind: str) -> tuple[str, ...]:
+        """The filled source slots of a kind."""
+        return tuple(layer.source for layer in self.layers if layer.source and base_name(layer.source) == kind)
 
 
 def build(plan: Plan, columns: tuple[Column, ...], words: Mapping[str, str], tabled: frozenset[str] = frozenset()) -> Recipe | Fault:
@@ -106,49 +109,37 @@ def _build(plan: Plan, columns: tuple[Column, ...], words: Mapping[str, str], ta
             raise Stop(CellError.NA, f"{column.label} in {ROW} is not available yet; leave it blank or wait for a later version")
     shape_text = words.get("shape")
     if shape_text is None:
-        raise missing(plan, "shape", "write wall, cylinder or sphere")
-    if shape_text == "bar":
-        raise Stop(CellError.NA, f"shape 'bar' in {ROW} is not available yet; bars along their length need a later version")
+        raise missing(plan, "shape", "write wall, cylinder, sphere or bar")
     shape = _SHAPES[shape_text]
     bored = any(slot in ("inner radius", "inner diameter") for column in columns for slot in column.slots)
     solid = shape != Shape.WALL and not bored
     filled = _by_slot(columns, solid, shape_text)
     words = {slot: word for slot, word in words.items() if slot in filled}
     for slot, column in filled.items():
-        shapes = _BELONGS.get(base_name(slot), (shape_text,))
+        shapes = ("bar",) if slot.startswith("side ") else _BELONGS.get(base_name(slot), (shape_text,))
         if shape_text not in shapes:
-            belongs = " or a ".join(shapes)
+            belongs = ", a ".join(shapes[:-1]) + (" or a " if len(shapes) > 1 else "") + shapes[-1]
             raise Stop(CellError.VALUE, f"{column.label} in {ROW} belongs to a {belongs}, not to a {shape_text}; leave it blank")
+    if shape_text == "bar":
+        bar_recipe.check_layers(columns)
     inner = one(filled, ("inner radius", "inner diameter"), "the bore")
     count = max((column.layer for column in columns if column.item.where is Where.LAYER), default=1)
     _check_numbers(columns, count)
     outsides = [_outside(plan, filled, shape_text, number, count) for number in range(1, count + 1)]
+    section = bar_recipe.section_of(plan, filled) if shape_text == "bar" else ()
     for number in range(1, count + 1):
         _check_conductivity(plan, filled, tabled, number)
-    sources = [_layer_source(filled, number) for number in range(1, count + 1)]
-    scaled, scaled_layer, no_source = _scaled(plan, filled, shape_text, sources)
-    for side in ("left", "right"):
-        _check_face(plan, filled, side)
+    sources = [layer_source(filled, number) for number in range(1, count + 1)]
+    scaled, scaled_layer, no_source = scaled_source(plan, filled, tabled, shape_text, sources)
+    for side in ("left", "right", "side") if shape_text == "bar" else ("left", "right"):
+        check_face(plan, filled, side)
         fault = law_fault(filled, words, side, shape_text)
         if fault is not None:
             raise Stop(fault.error, fault.sentence)
     limits = ("limit", "left limit", "right limit", *(f"limit {n}" for n in range(1, count + 1)))
     layers = tuple(LayerRecipe(n, outside, source) for n, (outside, source) in enumerate(zip(outsides, sources, strict=True), 1))
     given = tuple(slot for slot in limits if slot in filled)
-    return Recipe(shape, filled, words, tabled, inner, layers, scaled, scaled_layer, no_source, given)
-
-
-def missing(plan: Plan, slot: str, remedy: str) -> Stop:
-    """A needed heading is blank, or not there at all."""
-    if plan.has(slot):
-        return Stop(CellError.NA, f"{plan.label(slot)} in {ROW} is blank; {remedy}")
-    return Stop(CellError.NA, f"{ROW} has no {slot}, and no heading for it; add a column '{suggested(slot)}'")
-
-
-def suggested(slot: str) -> str:
-    """A heading as it may be typed."""
-    unit = INPUT_NAMES[base_name(slot)].item.kinds[0].example
-    return f"{slot} [{unit}]" if unit else slot
+    return Recipe(shape, shape_text, filled, words, tabled, inner, layers, scaled, scaled_layer, no_source, given, section)
 
 
 def _by_slot(columns: tuple[Column, ...], solid: bool, shape_text: str) -> dict[str, Column]:
@@ -169,15 +160,6 @@ def _by_slot(columns: tuple[Column, ...], solid: bool, shape_text: str) -> dict[
     return filled
 
 
-def one(filled: Mapping[str, Column], slots: tuple[str, ...], what: str) -> str:
-    """The one of these slots that is filled, empty if none is."""
-    given = [slot for slot in slots if slot in filled]
-    if len(given) > 1:
-        labels = " and ".join(filled[slot].label for slot in given[:2])
-        raise Stop(CellError.VALUE, f"{labels} in {ROW} both give {what}; leave one blank")
-    return given[0] if given else ""
-
-
 def _check_numbers(columns: tuple[Column, ...], count: int) -> None:
     """Numbered headings of layers and joints that the row's body has not, and bare ones where a number is compulsory."""
     for column in columns:
@@ -196,6 +178,10 @@ def _check_numbers(columns: tuple[Column, ...], count: int) -> None:
 
 def _outside(plan: Plan, filled: Mapping[str, Column], shape_text: str, number: int, count: int) -> str:
     thickness = slot_of("thickness", number)
+    if shape_text == "bar":
+        if "length" not in filled:
+            raise missing(plan, "length", "type a value")
+        return "length"
     if shape_text == "wall":
         if thickness not in filled:
             raise missing(plan, thickness, "type a value")
@@ -215,107 +201,9 @@ def _outside(plan: Plan, filled: Mapping[str, Column], shape_text: str, number: 
 
 def _check_conductivity(plan: Plan, filled: Mapping[str, Column], tabled: frozenset[str], number: int) -> None:
     slot = slot_of("conductivity", number)
-    slope, reference = (filled.get(slot_of(f"conductivity {name}", number)) for name in ("slope", "reference"))
     if slot not in filled:
         raise missing(plan, slot, "type a value")
-    for other in (slope, reference):
-        if slot in tabled and other:
-            sentence = f"{filled[slot].label} in {ROW} is a text table, beside which {other.label} has no meaning"
-            raise Stop(CellError.VALUE, f"{sentence}; leave one blank")
-    if reference and not slope:
-        sentence = f"{reference.label} in {ROW} needs a slope"
-        raise Stop(CellError.NA, f"{sentence}; fill in '{slot_of('conductivity slope', number)} [1/K]' or leave it blank")
-
-
-def _layer_source(filled: Mapping[str, Column], number: int) -> str:
-    given = [slot for slot in (slot_of(name, number) for name in SOURCES) if slot in filled]
-    if len(given) > 1:
-        labels = " and ".join(filled[slot].label for slot in given[:2])
-        raise Stop(CellError.VALUE, f"{labels} in {ROW} are two sources in one layer; leave one blank")
-    return given[0] if given else ""
-
-
-def _scaled(plan: Plan, filled: Mapping[str, Column], shape_text: str, sources: list[str]) -> tuple[str, int, Fault | None]:
-    """The kind of source that an allowable scales, its first layer, and the fault of a row without any source."""
-    headed = [slot for column in plan.columns for slot in column.slots if base_name(slot) in SOURCES]
-    given = [slot for slot in sources if slot]
-    for slot in given:
-        need = _source_needs(slot, filled, shape_text)
-        if need is not None:
-            raise need
-    if given:
-        return base_name(given[0]), _number_of(given[0]), None
-    if not headed:
-        sentence = f"{ROW} has no source, and no heading for one; add a column 'generation [W/m³]', 0 for none"
-        return "", 1, Fault(CellError.NA, sentence)
-    words = " and ".join(plan.label(slot) for slot in headed)
-    blank = Fault(CellError.NA, f"{words} in {ROW} {'is' if len(headed) == 1 else 'are'} blank; write 0 for no source")
-    if len(headed) > 1:
-        return "", 1, blank
-    need = _source_needs(headed[0], filled, shape_text)
-    if need is not None and need.fault.error is CellError.VALUE:
-        raise need
-    number = _number_of(headed[0])
-    if need is not None or number > len(sources):
-        return "", 1, blank if need is None else need.fault
-    return base_name(headed[0]), number, blank
-
-
-def _number_of(slot: str) -> int:
-    number = slot.rpartition(" ")[2]
-    return int(number) if number.isdigit() else 1
-
-
-def _source_needs(slot: str, filled: Mapping[str, Column], shape_text: str) -> Stop | None:
-    label = filled[slot].label if slot in filled else slot
-    name, number = base_name(slot), _number_of(slot)
-    density = slot_of("density", number)
-    if name == "specific generation" and density not in filled:
-        return Stop(CellError.NA, f"{label} in {ROW} needs a density; fill in '{density} [kg/m³]'")
-    if name == "power" and shape_text == "cylinder" and "length" not in filled:
-        return Stop(CellError.NA, f"{label} in {ROW} needs the cylinder's length; fill in 'length [mm]'")
-    if name == "power" and shape_text == "wall" and "area" not in filled:
-        return Stop(CellError.NA, f"{label} in {ROW} needs the wall's area; fill in 'area [m²]'")
-    if name == "line power" and shape_text == "wall":
-        return Stop(CellError.NA, f"{label} in {ROW} has no meaning for a wall; give 'power [W]' with 'area [m²]'")
-    if name == "line power" and shape_text == "sphere":
-        return Stop(CellError.VALUE, f"{label} in {ROW} has no meaning for a sphere; give 'power [W]'")
-    return None
-
-
-def _check_face(plan: Plan, filled: Mapping[str, Column], side: str) -> None:
-    held, film, law, fluid, emissivity, surroundings, resistance, flux = (
-        filled.get(f"{side} {name}")
-        for name in ("held", "film", "film law", "fluid", "emissivity", "surroundings", "resistance", "flux in")
-    )
-    if held:
-        for other in (film, law, fluid, emissivity, surroundings, flux):
-            if other:
-                sentence = f"{held.label} and {other.label} in {ROW} contradict each other"
-                raise Stop(CellError.VALUE, f"{sentence}: a held face takes no film, fluid, radiation or flux; leave one blank")
-    if film and law:
-        sentence = f"{film.label} and {law.label} in {ROW} both give the film coefficient"
-        raise Stop(CellError.VALUE, f"{sentence}; leave one blank")
-    for given in (film, law):
-        if given and not fluid:
-            raise _face_missing(plan, filled, given, "fluid", "the temperature of its fluid")
-    alone = resistance and not (emissivity or flux)  # with a fluid and nothing else the resistance is the path
-    if fluid and not (film or law or alone):
-        raise _face_missing(plan, filled, fluid, "film", "a film")
-    if surroundings and not emissivity:
-        raise _face_missing(plan, filled, surroundings, "emissivity", "an emissivity")
-    if emissivity and not surroundings and not fluid:
-        raise _face_missing(plan, filled, emissivity, "surroundings", "the temperature of its surroundings")
-    if resistance and not (held or fluid or emissivity):
-        raise _face_missing(plan, filled, resistance, "fluid", "a fluid, surroundings or a held temperature beyond it")
-
-
-def _face_missing(plan: Plan, filled: Mapping[str, Column], given: Column, name: str, what: str) -> Stop:
-    """What a face's heading lacks: the heading named covers just the faces that lack it."""
-    sides = [slot.split(" ", 1)[0] for slot in given.slots if filled.get(slot) is given]
-    lacking = [f"{side} {name}" for side in sides if f"{side} {name}" not in filled]
-    both = len(given.slots) == 2 and len(lacking) == len(sides)
-    wanted = [f"left {name}", f"right {name}"] if both else lacking  # on a solid body `both` is the outer face
-    blank = [column.label for column in plan.columns if column.item.name == name and list(column.slots) == wanted]
-    known = blank[0] if blank else suggested(f"both {name}" if both else lacking[0])
-    return Stop(CellError.NA, f"{given.label} in {ROW} needs {what}; fill in '{known}'")
+    slope, reference = slot_of("conductivity slope", number), slot_of("conductivity reference", number)
+    fault = slope_fault(filled, tabled, slot, slope, reference)
+    if fault is not None:
+        raise fault

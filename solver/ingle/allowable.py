@@ -24,7 +24,7 @@ _MOST_STEPS = 200
 # Which limit governs; 0 is none, layer n's own limit is LAYER_LIMIT + n.
 PEAK_LIMIT, LEFT_LIMIT, RIGHT_LIMIT, LAYER_LIMIT = 1, 2, 3, 3
 # Why there is no allowable source.
-NO_LIMIT, BROKEN_WITHOUT_SOURCE, NEVER_REACHED, NO_STATE = 1, 2, 3, 4
+NO_LIMIT, BROKEN_WITHOUT_SOURCE, NEVER_REACHED, NO_STATE, NOT_FOUND = 1, 2, 3, 4, 5
 
 
 @dataclass(frozen=True)

@@ -16,16 +16,20 @@ from ingle.shapes import Array
 # cubic = Σ (−z)ⁿ (2n + 2)/(2n + 3)!; for |z| ≤ 1 the terms left out are below 1e-17.
 _CUBIC = tuple((-1.0) ** n * (2 * n + 2) / factorial(2 * n + 3) for n in range(8, -1, -1))
 
+# Keeps 0/0 away and leaves every other x as it is.
+_TINY = 1e-150
+
 
 def sine(z: Array) -> Array:
     """sin x/x for z = x², sinh x/x for z = −x²."""
-    x = np.sqrt(np.abs(z))
-    x = np.where(x == 0.0, 1e-150, x)
-    if (z >= 0.0).all():
-        return np.sin(x) / x
-    if (z <= 0.0).all():
-        return np.sinh(x) / x
-    return np.where(z >= 0.0, np.sin(x), np.sinh(x)) / x
+    x = np.sqrt(np.abs(z)) + _TINY
+    shrinks = z < 0.0
+    count = np.count_nonzero(shrinks)
+    if not count:
+        return np.asarray(np.sin(x) / x)
+    if count == shrinks.size:
+        return np.asarray(np.sinh(x) / x)
+    return np.where(shrinks, np.sinh(x), np.sin(x)) / x
 
 
 def cosine(z: Array) -> Array:
@@ -47,21 +51,11 @@ def cubic(z: Array) -> Array:
 
 def half_tangent(z: Array) -> Array:
     """t = tan(x/2)/(x/2) for z = x², tanh(x/2)/(x/2) for z = −x²."""
-    y = np.sqrt(np.abs(z)) / 2.0
-    y = np.where(y == 0.0, 1e-150, y)
-    if (z >= 0.0).all():
-        return np.tan(y) / y
-    if (z <= 0.0).all():
-        return np.tanh(y) / y
-    return np.where(z >= 0.0, np.tan(y), np.tanh(y)) / y
-
-
-def cubic_slope(z: Array) -> Array:
-    """d/dz of ``cubic``."""
-    near = np.abs(z) <= 1.0
-    w = np.where(near, z, 0.0)
-    series = np.full_like(w, 8 * _CUBIC[0])
-    for power, coefficient in zip(range(7, 0, -1), _CUBIC[1:-1], strict=True):
-        series = series * w + power * coefficient
-    far = np.where(near, 4.0, z)
-    return np.where(near, series, (sine(far) - 3.0 * cubic(far)) / (2.0 * far))
+    y = np.sqrt(np.abs(z)) * 0.5 + _TINY
+    shrinks = z < 0.0
+    count = np.count_nonzero(shrinks)
+    if not count:
+        return np.asarray(np.tan(y) / y)
+    if count == shrinks.size:
+        return np.asarray(np.tanh(y) / y)
+    return np.where(shrinks, np.tanh(y), np.tan(y)) / y

@@ -11,6 +11,7 @@ import numpy as np
 from ingle.conductivities import Conductivity
 from ingle.film_laws import FilmLaw, FluidKind
 from ingle.shapes import Array, Shape
+from ingle.sources import Conductor, Generation, Source
 
 Rows = np.ndarray | slice
 Part = TypeVar("Part")
@@ -95,14 +96,35 @@ def _where(mask: np.ndarray, kind: FaceKind, other: FaceKind | np.ndarray) -> Fa
 
 @dataclass(frozen=True)
 class Layer:
-    """One layer: ``thickness`` d [m] (the radius of a solid body), ``conductivity`` k [W/(m·K)], ``generation`` q [W/m³]."""
+    """One layer: ``thickness`` d [m] (the radius of a solid body), ``conductivity`` k [W/(m·K)], and its source.
+
+    ``generation`` is q [W/m³] as an array, or a source that depends on temperature, or a conductor with its current.
+    """
 
     thickness: Array
     conductivity: Array | Conductivity
-    generation: Array
+    generation: Source
 
     def take(self, rows: Rows) -> Layer:
         """The same layer for some of the cases."""
+        return take(self, rows)
+
+
+@dataclass(frozen=True)
+class Bar:
+    """A bar between terminals, which loses heat from its sides: ``section`` [m²], ``perimeter`` [m], what cools the sides.
+
+    ``left_contact`` and ``right_contact`` [Ω] are the joints' own resistances: the heat of its current enters at that end.
+    """
+
+    section: Array
+    perimeter: Array | None = None
+    side: Face | None = None
+    left_contact: Array | None = None
+    right_contact: Array | None = None
+
+    def take(self, rows: Rows) -> Bar:
+        """The same bars for some of the cases."""
         return take(self, rows)
 
 
@@ -113,8 +135,9 @@ class Cases:
     ``layers`` go from the left face, or the inside, outward; ``joints`` [m²·K/W] lie between them, per area where they
     meet (None: none). The left face of a round body is its bore. Limits [°C] are optional (NaN or None: none): ``limit``
     anywhere in the body, ``layer_limits`` one a layer, ``left_limit`` and ``right_limit`` at the faces. ``probe`` [m] is
-    a place: from the left face, or a radius. ``pattern`` [W/m³ in each layer] are the sources that scale together for an
-    allowable multiple, the first layer's by 1 W/m³ if not given; a layer where it is 0 keeps its generation.
+    a place: from the left face, or a radius. ``pattern`` are the sources that scale together for an allowable multiple of
+    their heat, the first layer's 1 W/m³ if not given; a layer where it is None or 0 keeps its generation. ``length`` [m]
+    along a current (of a bar: its one layer's thickness is that), ``width`` [m] of a wall across it. A ``bar`` is a wall.
     """
 
     shape: Shape | np.ndarray
@@ -128,16 +151,29 @@ class Cases:
     probe: Array | None = None
     joints: tuple[Array | None, ...] = ()
     layer_limits: tuple[Array | None, ...] = ()
-    pattern: tuple[Array, ...] = ()
+    pattern: tuple[Source | None, ...] = ()
+    length: Array | None = None
+    width: Array | None = None
+    bar: Bar | None = None
 
     def __post_init__(self) -> None:
         if not self.layers:
             raise ValueError("a body has at least one layer")
         if len(self.joints) not in (0, len(self.layers) - 1) or len(self.layer_limits) not in (0, len(self.layers)):
             raise ValueError("there is a joint between each two layers and a limit for each layer")
+        if self.bar is not None and (len(self.layers) > 1 or np.any(self.shape != Shape.WALL)):
+            raise ValueError("a bar is a wall of one layer, its length")
 
     def __len__(self) -> int:
         return len(self.layers[0].thickness)
+
+    @property
+    def in_temperature(self) -> bool:
+        """Whether a source depends on temperature, or heat leaves from the sides: the network of two-ports is for those."""
+        sources = [layer.generation for layer in self.layers]
+        if self.bar is not None or any(isinstance(source, Generation) for source in sources):
+            return True
+        return any(isinstance(source, Conductor) and not source.resistivity.constant for source in sources)
 
     def take(self, rows: Rows) -> Cases:
         """Some of the cases."""
@@ -152,11 +188,12 @@ class Structure:
     solid: bool
     left: FaceKind
     right: FaceKind
+    side: FaceKind = FaceKind.FLUX  # of a bar
 
     @property
     def settles(self) -> bool:
         """Whether heat can leave at all."""
-        return not (self.left == FaceKind.FLUX and self.right == FaceKind.FLUX)
+        return not (self.left == self.right == self.side == FaceKind.FLUX)
 
 
 def structure_codes(cases: Cases) -> Structure | np.ndarray:
@@ -167,21 +204,25 @@ def structure_codes(cases: Cases) -> Structure | np.ndarray:
         bored = cases.inner > 0.0
         solid = False if bored.all() else (True if not bored.any() else ~bored)
     shape = cases.shape
-    if isinstance(shape, Shape) and isinstance(left, FaceKind) and isinstance(right, FaceKind):
+    side: FaceKind | np.ndarray = FaceKind.FLUX
+    if cases.bar is not None and cases.bar.side is not None:
+        side = cases.bar.side.kinds()
+    if isinstance(shape, Shape) and isinstance(left, FaceKind) and isinstance(right, FaceKind) and isinstance(side, FaceKind):
         if shape == Shape.WALL:
-            return Structure(shape, False, left, right)
+            return Structure(shape, False, left, right, side)
         if isinstance(solid, bool):
             return Structure(shape, solid, FaceKind.FLUX if solid else left, right)
     codes = np.zeros(len(cases), dtype=np.intp)
     solid_round = np.logical_and(solid, np.not_equal(shape, Shape.WALL))
     left = np.where(solid_round, FaceKind.FLUX, left)
-    codes += shape * 32 + solid_round * 16 + left * 4 + right
+    codes += shape * 128 + solid_round * 64 + side * 16 + left * 4 + right
     return codes
 
 
 def decode(code: int) -> Structure:
     """The structure a code stands for."""
-    shape, rest = divmod(code, 32)
-    solid, rest = divmod(rest, 16)
+    shape, rest = divmod(code, 128)
+    solid, rest = divmod(rest, 64)
+    side, rest = divmod(rest, 16)
     left, right = divmod(rest, 4)
-    return Structure(Shape(shape), bool(solid), FaceKind(left), FaceKind(right))
+    return Structure(Shape(shape), bool(solid), FaceKind(left), FaceKind(right), FaceKind(side))

@@ -12,6 +12,9 @@ from ingle.shapes import Array
 
 # Up to this many cases a running sum costs fewer calls than a loop over the nodes; both add in the same order.
 _FEW = 16
+# σ of a layer's first mode: θ″ = −σθ between held faces, sθ″ + (m + 1)/2 θ′ = −σθ in a solid body with its face held.
+# 2.404825557695773: first zero of J₀, Abramowitz & Stegun table 9.5.
+_FIRST_MODE = {None: np.pi * np.pi, 1: 2.404825557695773**2 / 4.0, 2: np.pi * np.pi / 4.0}
 
 
 @dataclass(frozen=True)
@@ -20,7 +23,9 @@ class Rule:
 
     ``x``: nodes in η or s; ``ends``: nodes with both ends; ``D``: derivative at those; ``bary``: barycentric weights
     (``bary_solid`` without the centre); ``weights``: of ∫ q r^m dr; ``toward_a``, ``toward_b``: of the heats; ``tail``: gives
-    the last two coefficients of f; ``centre``: weights of θ at a solid body's centre.
+    the last two coefficients of f; ``centre``: weights of θ at a solid body's centre. ``turned`` −Green, ``lines``: Green with
+    the rows of the heats below it (of a solid body the heat outward and the centre); ``toward``: α and β as columns.
+    ``safe``: while σ stays below, no mode of the layer grows with both faces held.
     """
 
     x: Array
@@ -36,6 +41,10 @@ class Rule:
     bary_solid: Array
     tail: Array
     centre: Array
+    turned: Array
+    lines: Array
+    toward: tuple[Array, Array]
+    safe: float
 
 
 @cache
@@ -82,7 +91,12 @@ def rule(N: int, solid_shape: int | None) -> Rule:
     D = bary / bary[:, None] / gaps
     np.fill_diagonal(D, 0.0)
     np.fill_diagonal(D, -D.sum(axis=1))
-    return Rule(x, w, Green, alpha, beta, w * (1.0 - x), w * x, ends, D, bary, bary_solid, to_coefficients[-2:], centre)
+    toward_a, toward_b = w * (1.0 - x), w * x
+    heats = [toward_a, toward_b] if solid_shape is None else [w, centre]
+    return Rule(
+        x, w, Green, alpha, beta, toward_a, toward_b, ends, D, bary, bary_solid, to_coefficients[-2:], centre, -Green,
+        np.ascontiguousarray(np.vstack([Green, *heats])), (alpha[:, None], beta[:, None]), 0.9 * _FIRST_MODE[solid_shape],
+    )  # fmt: skip
 
 
 def _polynomials(x: Array, N: int, p: float) -> Array:
@@ -101,16 +115,20 @@ def combine(matrix: Array, values: Array) -> Array:
     return total
 
 
+def added(products: Array) -> Array:
+    """The sum over the last axis but one, the nodes, in their order."""
+    if products.shape[-1] <= _FEW:
+        few: Array = np.add.accumulate(products, axis=-2)[..., -1, :]
+        return few
+    total: Array = products[..., 0, :].copy()
+    for j in range(1, products.shape[-2]):
+        total += products[..., j, :]
+    return total
+
+
 def weigh(weights: Array, values: Array) -> Array:
     """Σ weights · values over the nodes; weights one a node, or nodes × cases."""
-    products = (weights[:, None] if weights.ndim == 1 else weights) * values
-    if values.shape[1] <= _FEW:
-        few: Array = np.add.accumulate(products, axis=0)[-1]
-        return few
-    total: Array = products[0].copy()
-    for row in products[1:]:
-        total += row
-    return total
+    return added((weights[:, None] if weights.ndim == 1 else weights) * values)
 
 
 def barycentric(places: Array, weights: Array, x: Array) -> Array:

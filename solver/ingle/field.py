@@ -9,24 +9,14 @@ import numpy as np
 from ingle.conductivities import Conductivity
 from ingle.march import LayerSteps, State
 from ingle.shapes import (
-    MEASURE,
     Array,
-    Shape,
     depth_of_volume,
     path,
     solid_source_square,
     source_path,
     source_square,
 )
-
-# Gauss-Legendre nodes for means where T is no polynomial of place; see mean_rise.
-_SMOOTH = np.polynomial.legendre.leggauss(32)
-# A text table has corners, which Gauss nodes do not see: 128 panels of 4, about 1e-7 of the rise.
-_PANELS, _FOUR = 128, np.polynomial.legendre.leggauss(4)
-_CORNERED = (
-    np.concatenate([(_FOUR[0] + 1.0 + 2.0 * panel) / _PANELS - 1.0 for panel in range(_PANELS)]),
-    np.tile(_FOUR[1] / _PANELS, _PANELS),
-)
+from ingle.volume_nodes import nodes
 
 
 @dataclass(frozen=True)
@@ -112,16 +102,15 @@ def layer_mean(state: State, number: int) -> Array:
     """Mean rise over a layer's volume.
 
     With constant k, T̄ = T₀ − [Q₀ ∫W dV + q (V₁D₁ − U)]/(k V₁), where ∫W dV = V₁W₁ − D₁. With k(T) the
-    rise is integrated over the volume at Gauss-Legendre nodes.
+    rise is integrated over the volume at Gauss-Legendre nodes, apart at the corners of a table.
     """
     layer, ends, q = state.problem.layers[number], state.ends[number], state.q[number]
     shape = state.problem.structure.shape
     if isinstance(layer.k, Conductivity):
         total = np.zeros_like(ends.T0)
-        nodes = _SMOOTH if layer.k.table is None else _CORNERED
-        for node, weight in zip(*nodes, strict=True):
-            s, share = _spot(shape, layer, (1.0 + node) / 2.0)
-            total = total + (weight / 2.0) * share * (layer_rise(state, number, s) - ends.T0)
+        T0, solid = state.sink + ends.T0, layer.W is None
+        for s, dV in nodes(shape, layer.a, layer.d, solid, layer.k, T0, ends.Q0, q):
+            total = total + (dV / layer.V) * (layer_rise(state, number, s) - ends.T0)
         return ends.T0 + total
     if layer.W is None:
         U = solid_source_square(shape, layer.d)
@@ -129,21 +118,6 @@ def layer_mean(state: State, number: int) -> Array:
     U = source_square(shape, layer.a, layer.d)
     conducted = ends.Q0 * (layer.V * layer.W - layer.D)
     return ends.T0 - (conducted + q * (layer.V * layer.D - U)) / (layer.k * layer.V)
-
-
-def _spot(shape: Shape, layer: LayerSteps, x: float) -> tuple[Array, Array | float]:
-    """A place s at a share x of a layer, and dV/dx over V there: even in V of a solid body, in ln r of a hollow one.
-
-    A thick shell's temperature changes most near its bore, which has little of the volume.
-    """
-    if layer.W is None:
-        return layer.d * (np.sqrt(x) if shape == Shape.CYLINDER else np.cbrt(x)), 1.0
-    if shape == Shape.WALL:
-        return layer.d * x, 1.0
-    log = np.log1p(layer.d / layer.a)
-    s = np.minimum(layer.a * np.expm1(log * x), layer.d)
-    r = layer.a + s
-    return s, log * r * (r if shape == Shape.CYLINDER else r * r) / layer.V
 
 
 def mean_rise(state: State) -> Array:
@@ -157,59 +131,23 @@ def mean_rise(state: State) -> Array:
     return total / V
 
 
-def left_flux(state: State) -> Array:
-    """Net heat leaving through the left face, W/m² of that face; 0 at the centre of a solid body."""
-    if state.problem.layers[0].W is None:
-        return np.zeros_like(state.Q_left)
-    return (0.0 - state.Q_left) / state.problem.area_left
-
-
-def right_flux(state: State) -> Array:
-    """Net heat leaving through the right face, W/m² of that face."""
-    return state.Q_right / state.problem.area_right
-
-
-def left_heat(state: State) -> Array:
-    """Net heat leaving on the left: W/m² of a wall, W/m of a cylinder, W of a sphere."""
-    return (0.0 - state.Q_left) * MEASURE[state.problem.structure.shape]
-
-
-def right_heat(state: State) -> Array:
-    """Net heat leaving on the right, measured as ``left_heat``."""
-    return state.Q_right * MEASURE[state.problem.structure.shape]
-
-
-def _made(state: State) -> Array:
-    made = state.q[0] * state.problem.layers[0].V
+def made(state: State) -> Array:
+    """Heat generated in the body, in the measure of Q."""
+    total = state.q[0] * state.problem.layers[0].V
     for q, layer in zip(state.q[1:], state.problem.layers[1:], strict=True):
-        made = made + q * layer.V
-    return made
+        total = total + q * layer.V
+    return total
 
 
-def heat_made(state: State) -> Array:
-    """Heat generated in the body, measured as ``left_heat``."""
-    return _made(state) * MEASURE[state.problem.structure.shape]
-
-
-def left_share(state: State) -> Array:
-    """Share of all heat that leaves which leaves on the left, 0 to 1; NaN where none leaves beyond rounding."""
-    left, right = np.maximum(-state.Q_left, 0.0), np.maximum(state.Q_right, 0.0)
-    total = left + right
-    leaves = total > 1e-13 * largest_heat(state)
-    return np.where(leaves, left / np.where(leaves, total, 1.0), np.nan)
-
-
-def balance(state: State) -> Array:
-    """What the heats are out of balance by, over the largest of heat made, taken in and passing through (a self-check)."""
+def short(state: State) -> Array:
+    """What the heats are out of balance by, in the measure of Q (a self-check)."""
     # Q₁ − Q₀ = made by the march itself; what can be wrong is the far face's law, and the sum in floating point.
-    short = np.abs(state.imbalance) + np.abs(state.Q_right - state.Q_left - _made(state))
-    scale = largest_heat(state)
-    return np.where(scale > 0.0, short / np.where(scale > 0.0, scale, 1.0), short)
+    return np.abs(state.imbalance) + np.abs(state.Q_right - state.Q_left - made(state))
 
 
 def largest_heat(state: State) -> Array:
-    """Largest of heat made, put in, and crossing a layer's face."""
-    scale = np.abs(_made(state))
+    """Largest of heat made, put in, and crossing a layer's face, in the measure of Q."""
+    scale = np.abs(made(state))
     for ends in state.ends:
         scale = np.maximum(scale, np.maximum(np.abs(ends.Q0), np.abs(ends.Q1)))
     for side, A in ((state.problem.left, state.problem.area_left), (state.problem.right, state.problem.area_right)):

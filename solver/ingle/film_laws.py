@@ -263,7 +263,7 @@ class _Evaluated:
 
 
 def film(law: FilmLaw, fluid_kind: FluidKind, size: Array, speed: Array | None, T_face: Array, T_fluid: Array) -> Film:
-    """The film coefficient of one law and fluid for one-dimensional arrays of cases: metres, m/s, °C.
+    """The film coefficient of one law and fluid, cases along the last axis: metres, m/s, °C.
 
     ``speed`` is that of the undisturbed fluid, in a tube its mean over the section; its sign is ignored, and a law of natural
     convection needs none. h is not negative, and h and slope are finite, for any size from 1e-9 to 1e3 m and any temperatures an

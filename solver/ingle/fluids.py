@@ -87,7 +87,7 @@ def properties(kind: FluidKind, temperature: Array) -> Properties:
     place = (np.minimum(np.maximum(temperature, low), high) - low) / step
     interval = np.fmin(np.fmax(place, 0.0), last).astype(np.intp)
     t = place - interval
-    c0, c1, c2, c3 = table.take(interval, axis=1).reshape(4, 5, -1)
+    c0, c1, c2, c3 = table.take(interval, axis=1).reshape(4, 5, *np.shape(temperature))
     values = ((c3 * t + c2) * t + c1) * t + c0
     slopes = ((3.0 * c3 * t + 2.0 * c2) * t + c1) * (np.where(outside, 0.0, 1.0) / step)
     density, viscosity, conductivity, heat, expansion = (Curve(value, slope) for value, slope in zip(values, slopes, strict=True))

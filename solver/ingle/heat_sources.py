@@ -65,22 +65,22 @@ class HeatSource:
     kelvin: Array | float = KELVIN
 
     def __post_init__(self) -> None:
-        needs = {
-            SourceLaw.SLOPED: (self.slope, self.reference),
-            SourceLaw.PER_SLOPED: (self.slope, self.reference),
-            SourceLaw.TABLE: (self.table,),
-            SourceLaw.PER_TABLE: (self.table,),
-            SourceLaw.ARRHENIUS: (self.activation, self.reference),
-        }
-        if any(part is None for part in needs.get(self.law, ())):
-            raise ValueError(f"a source of law {self.law.name} lacks one of its parts")
+        law = self.law
+        if law in (SourceLaw.TABLE, SourceLaw.PER_TABLE):
+            lacking = self.table is None
+        elif law == SourceLaw.ARRHENIUS:
+            lacking = self.activation is None or self.reference is None
+        else:
+            lacking = law != SourceLaw.EVEN and (self.slope is None or self.reference is None)
+        if lacking:
+            raise ValueError(f"a source of law {law.name} lacks one of its parts")
         if (self.group is None) != (self.weight is None):
             raise ValueError("a source that belongs to a group needs its weight, and only such a source takes one")
 
     def at(self, T: Array) -> tuple[Array, Array]:
-        """g and dg/dT at T."""
+        """g and dg/dT at T; a slope that is the same everywhere has the shape of one case each."""
         if self.law == SourceLaw.EVEN:
-            return np.ones_like(T), np.zeros_like(T)
+            return np.ones(T.shape), np.zeros(T.shape[-1:])
         if self.table is not None:
             y, slope = self.table.at(T), self.table.slope(T)
             return (y, slope) if self.law == SourceLaw.TABLE else (1.0 / y, -slope / (y * y))
@@ -90,10 +90,12 @@ class HeatSource:
         assert self.slope is not None
         y = 1.0 + self.slope * (T - self.reference)
         if self.law == SourceLaw.SLOPED:
-            return y, self.slope + np.zeros_like(T)
-        floored = y < FLOOR
-        y = np.where(floored, FLOOR, y)
-        return 1.0 / y, np.where(floored, 0.0, -self.slope / (y * y))
+            return y, self.slope
+        g = 1.0 / y
+        held = y >= FLOOR
+        if np.count_nonzero(held) == held.size:
+            return g, -self.slope * (g * g)
+        return np.where(held, g, 1.0 / FLOOR), np.where(held, -self.slope * (g * g), 0.0)
 
     def _arrhenius(self, T: Array) -> tuple[Array, Array]:
         assert self.activation is not None
@@ -119,6 +121,13 @@ class HeatSource:
         assert self.activation is not None
         kelvin = np.maximum(T + self.kelvin, 1.0)
         return 2.0 * kelvin * kelvin / np.maximum(self.activation, 1e-300)
+
+    def linear_in_rise(self) -> tuple[Array, Array]:
+        """A and S of s g(T) = A + S T, where g is no more than linear."""
+        if self.slope is None or self.reference is None:
+            return self.scale, np.zeros_like(self.scale)
+        S = self.scale * self.slope
+        return self.scale * (1.0 - self.slope * self.reference), S
 
     def take(self, rows: np.ndarray | slice) -> HeatSource:
         """The same source for some of the cases."""
@@ -167,9 +176,7 @@ class SideLoss:
 
     def at(self, T: Array) -> tuple[Array, Array]:
         """Loss [W/m³] at T and its derivative."""
-        flux, slope = np.zeros_like(T), np.zeros_like(T)
-        if self.film is not None and self.fluid is not None:
-            flux, slope = flux + self.film * (T - self.fluid), slope + self.film
+        flux, slope = (0.0 * T, 0.0 * T) if self.film is None or self.fluid is None else (self.film * (T - self.fluid), self.film)
         if self.emissivity is not None and self.surroundings is not None:
             radiated, change = radiation(T + (KELVIN + self.zero), self.surroundings + (KELVIN + self.zero))
             flux, slope = flux + self.emissivity * radiated, slope + self.emissivity * change
@@ -196,7 +203,9 @@ class SideLoss:
 
 def radiation(T: Array, T_s: Array) -> tuple[Array, Array]:
     """σ(T⁴ − T_s⁴) of a black surface and its derivative, T in kelvin; below 0 K, in trials, continued rising by T|T|³."""
-    size = np.abs(T)
-    warm = (T - T_s) * (T + T_s) * (T * T + T_s * T_s)
-    flux = np.where(T >= 0.0, warm, T * (size * size * size) - (T_s * T_s) * (T_s * T_s))
-    return STEFAN_BOLTZMANN * flux, 4.0 * STEFAN_BOLTZMANN * (size * size * size)
+    cube = np.abs(T * (T * T))
+    flux = (T - T_s) * (T + T_s) * (T * T + T_s * T_s)
+    frozen = T < 0.0
+    if np.count_nonzero(frozen):
+        flux = np.where(frozen, T * cube - (T_s * T_s) * (T_s * T_s), flux)
+    return STEFAN_BOLTZMANN * flux, 4.0 * STEFAN_BOLTZMANN * cube

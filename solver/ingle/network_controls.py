@@ -19,9 +19,9 @@ def middle(network: Network, state: State, multiples: list[Array], models: list[
         readings[e] = port.typical(state.Ta[e], state.Tb[e], multiples[e], state.theta[e], models[e])
     share = 1.0 / max(len(driven), 1)
     T = np.zeros_like(network.zero)
-    a: list[Array | None] = [None] * len(network.elements)
-    b: list[Array | None] = [None] * len(network.elements)
-    l: list[Array | None] = [None] * len(network.elements)  # noqa: E741 - λ
+    a: list[Array | float | None] = [None] * len(network.elements)
+    b: list[Array | float | None] = [None] * len(network.elements)
+    l: list[Array | float | None] = [None] * len(network.elements)  # noqa: E741 - λ
     for e, reading in readings.items():
         T = T + share * (reading.T + reading.move)
         a[e], b[e], l[e] = share * reading.a, share * reading.b, share * reading.l
@@ -34,7 +34,7 @@ def face(side: int) -> Control:
     def hold(network: Network, state: State, multiples: list[Array], models: list[PortModel]) -> Hold:
         del multiples, models
         last = len(network.elements) - 1
-        none: list[Array | None] = [None] * (last + 1)
+        none: list[Array | float | None] = [None] * (last + 1)
         one = np.ones_like(network.zero)
         if side == 0:
             return Hold(state.Ta[0], [one, *none[1:]], none, none)
@@ -57,9 +57,9 @@ def hottest(layer: int | None) -> Control:
         for e, reading in readings.items():
             higher = reading.T > T
             T, which = np.where(higher, reading.T, T), np.where(higher, e, which)
-        a: list[Array | None] = [None] * count
-        b: list[Array | None] = [None] * count
-        l: list[Array | None] = [None] * count  # noqa: E741 - λ
+        a: list[Array | float | None] = [None] * count
+        b: list[Array | float | None] = [None] * count
+        l: list[Array | float | None] = [None] * count  # noqa: E741 - λ
         for e, reading in readings.items():
             here = (which == e).astype(np.float64)
             T = T + here * reading.move

@@ -7,19 +7,22 @@ held at its target. Held temperatures make the path regular through its turning 
 from __future__ import annotations
 
 from collections.abc import Callable
-from dataclasses import dataclass, replace
+from dataclasses import dataclass
 from enum import IntEnum
 
 import numpy as np
 
 from ingle.network_sweep import Network, Sweep, sweep
-from ingle.ports import PortModel
+from ingle.ports import Bound, PortModel
 from ingle.shapes import Array
 
 MOST_STEPS = 40
 
 # Stands for the move of a step that was shortened, which is no sign of nearness.
 SHORTENED = 1e300
+
+# A state that is this share of its rise from a known one is taken for it: Newton's steps shrink as squares.
+_NEAR = 0.02
 
 
 class Status(IntEnum):
@@ -36,28 +39,48 @@ class Status(IntEnum):
 
 @dataclass
 class State:
-    """Rises at the elements' faces, their insides, the ends' outermost surfaces, and the unknown multiples."""
+    """Rises at the elements' faces, their insides, the ends' outermost surfaces, and the unknown multiples.
 
-    Ta: list[Array]
-    Tb: list[Array]
+    ``faces``: Ta, Tb of the first element, of the second and so on, by cases. ``surfaces`` count where a resistance lies before.
+    """
+
+    faces: Array
     theta: list[Array | None]
     surfaces: list[Array]
     mu: list[Array]
 
+    @property
+    def Ta(self) -> Array:
+        """Rises at the left faces: elements × cases."""
+        return self.faces[0::2]
+
+    @property
+    def Tb(self) -> Array:
+        """Rises at the right faces: elements × cases."""
+        return self.faces[1::2]
+
     def take(self, rows: np.ndarray) -> State:
         """The state of some of the cases."""
         theta = [None if x is None else x[:, rows] for x in self.theta]
-        Ta, Tb, surfaces, mu = ([x[rows] for x in part] for part in (self.Ta, self.Tb, self.surfaces, self.mu))
-        return State(Ta, Tb, theta, surfaces, mu)
-
-    def arrays(self) -> list[Array]:
-        """Every array of the state, cases along the last axis."""
-        return [*self.Ta, *self.Tb, *(x for x in self.theta if x is not None), *self.surfaces, *self.mu]
+        return State(self.faces[:, rows], theta, [x[rows] for x in self.surfaces], [x[rows] for x in self.mu])
 
     def put(self, rows: np.ndarray, other: State) -> None:
         """Write another state into some of the cases."""
-        for mine, theirs in zip(self.arrays(), other.arrays(), strict=True):
+        self.faces[:, rows] = other.faces
+        for mine, theirs in zip(self._lists(), other._lists(), strict=True):
             mine[..., rows] = theirs
+
+    def follow(self, other: State, where: np.ndarray | None) -> None:
+        """Become another state, where asked."""
+        if where is None:
+            self.faces, self.theta, self.surfaces, self.mu = other.faces, other.theta, other.surfaces, other.mu
+            return
+        np.copyto(self.faces, other.faces, where=where)
+        for mine, theirs in zip(self._lists(), other._lists(), strict=True):
+            np.copyto(mine, theirs, where=where)
+
+    def _lists(self) -> list[Array]:
+        return [*(x for x in self.theta if x is not None), *self.surfaces, *self.mu]
 
 
 @dataclass(frozen=True)
@@ -65,9 +88,9 @@ class Hold:
     """A temperature that is held: its rise, and derivatives to each element's Ta, Tb and μ (None where it has none)."""
 
     T: Array
-    a: list[Array | None]
-    b: list[Array | None]
-    l: list[Array | None]  # noqa: E741 - λ
+    a: list[Array | float | None]
+    b: list[Array | float | None]
+    l: list[Array | float | None]  # noqa: E741 - λ
 
 
 Control = Callable[[Network, State, list[Array], list[PortModel]], Hold]
@@ -98,7 +121,7 @@ class Border:
     @property
     def nodes(self) -> bool:
         """Whether plane layers are collocated."""
-        return self.by_nodes or self.count > 0
+        return self.by_nodes or len(self.given) > 0
 
     def take(self, rows: np.ndarray) -> Border:
         """The border of some of the cases."""
@@ -136,157 +159,284 @@ class Outcome:
 def cold(network: Network, border: Border) -> State:
     """Every temperature at the case's zero."""
     elements = network.elements
-    zero = np.zeros_like(network.zero)
+    n = len(network.zero)
+    zero = np.zeros(n)
     state = State(
-        [zero.copy() for _ in elements], [zero.copy() for _ in elements], [e.port.start() for e in elements],
-        [zero.copy(), zero.copy()], [zero.copy() for _ in range(border.count)],
+        np.zeros((2 * len(elements), n)), [e.port.start() for e in elements], [np.zeros(n), np.zeros(n)],
+        [np.zeros(n) for _ in range(border.count)],
     )  # fmt: skip
     if border.given:
-        sums = [zero] * len(border.given)
-        for e, element in enumerate(elements):
-            group = element.port.source.group
-            if group is not None and element.port.source.weight is not None:
-                F = element.port.model(zero, zero, zero, state.theta[e], True).F
-                assert F is not None
-                sums[group] = sums[group] + element.port.source.weight * F
+        sums: list[Array | float] = [0.0] * len(border.given)
+        for element in elements:
+            group, weight = element.port.source.group, element.port.source.weight
+            if group is not None and weight is not None:
+                sums[group] = sums[group] + weight * (element.port.source.at(zero)[0] * element.port.volume())
         for g, total in enumerate(sums):
             state.mu[g] = border.scale * (border.given[g] / total) ** 2
     return state
 
 
-def usable(network: Network, state: State) -> np.ndarray:
-    """False where a conductivity or resistivity lies on its floor."""
-    held = np.ones(len(network.zero), dtype=bool)
+def usable(network: Network, state: State) -> np.ndarray | None:
+    """False where a conductivity or resistivity lies on its floor; None where that cannot be."""
+    held: np.ndarray | None = None
     for e, element in enumerate(network.elements):
-        port = element.port
-        Ta = state.Tb[e] if port.solid else state.Ta[e]
-        low, high = np.minimum(Ta, state.Tb[e]), np.maximum(Ta, state.Tb[e])
+        port, Tb = element.port, state.faces[2 * e + 1]
+        if not port.floors:
+            continue
+        Ta = Tb if port.solid else state.faces[2 * e]
+        low, high = np.minimum(Ta, Tb), np.maximum(Ta, Tb)
         inside = port.span(state.theta[e])
         if inside is not None:
             low, high = np.minimum(low, inside[0]), np.maximum(high, inside[1])
-        held &= port.conductivity_usable(low, high)
+        here = port.conductivity_usable(low, high)
+        if here is not None:
+            held = here if held is None else held & here
     return held
 
 
-def newton(network: Network, border: Border, state: State) -> Outcome:
-    """From ``state``, which is changed, to the steady state of every case."""
+class Ready:
+    """A network and border made ready for steps: what stays the same from step to step is worked out once.
+
+    ``bounds``: the ports that are linear in their faces while their multiple is known.
+    """
+
+    def __init__(self, network: Network, border: Border, state: State, bounds: list[Bound | None] | None = None) -> None:
+        self.network, self.border, self.owners = network, border, border.of(network)
+        self.ports = [element.port for element in network.elements]
+        known = border.multiples(network, state)
+        self.known = [mu if owner is None else None for mu, owner in zip(known, self.owners, strict=True)]
+        if bounds is None:
+            # A held temperature is read inside the layers, which a bound port fills in only at the end.
+            read = border.control is not None
+            bounds = [
+                None if mu is None or (read and port.start() is not None) else port.bound(mu)
+                for mu, port in zip(self.known, self.ports, strict=True)
+            ]
+        self.bounds = bounds
+
+    def take(self, rows: np.ndarray, state: State) -> Ready:
+        """The same for some of the cases, whose state is given."""
+        bounds = [None if bound is None else bound.take(rows) for bound in self.bounds]
+        return Ready(self.network.take(rows), self.border.take(rows), state, bounds)
+
+    def multiples(self, state: State) -> list[Array]:
+        """μ of each element."""
+        values: list[Array] = []
+        for mu, owner in zip(self.known, self.owners, strict=True):
+            if mu is None:
+                assert owner is not None
+                mu = state.mu[owner]
+            values.append(mu)
+        return values
+
+    def settle(self, state: State) -> None:
+        """Fill in the insides of bound ports."""
+        for e, bound in enumerate(self.bounds):
+            if bound is not None and bound.inside is not None:
+                state.theta[e] = bound.settled(state.faces[2 * e], state.faces[2 * e + 1])
+
+
+def newton(network: Network, border: Border, state: State, near: State | None = None) -> Outcome:
+    """From ``state``, which is changed, to the steady state of every case; or, where given, until it is surely at ``near``."""
     n = len(network.zero)
     status = np.full(n, Status.NOT_CONVERGED, dtype=np.int8)
     steps = np.zeros(n, dtype=np.int8)
+    sought = border.control is not None
     rising = np.full(n, np.nan)
-    live = np.arange(n)
-    part, here, edge = network, state, border
-    before = np.zeros(n)
-    open_rows = np.ones(n, dtype=bool)
+    live: np.ndarray | None = None  # None: everyone
+    everyone = ready = Ready(network, border, state)
+    here = state
+    before: Array = np.zeros(n)
+    open_rows: np.ndarray | None = None  # None: all that live
     for step in range(MOST_STEPS):
-        first = step == 0 and border.opening is not None
-        moved, moved_by, size, bad, slope = _step(part, replace(edge, control=border.opening) if first else edge, here)
-        absolute = np.abs(part.zero) + size
-        settled = moved_by * (moved_by / before) ** 2 <= 1e-14 * size + 1e-16 * absolute
-        settled &= moved_by <= 1e-6 * size
-        settled |= moved_by <= 2e-13 * size + 4e-16 * absolute
-        settled |= (moved_by >= 0.5 * before) & (moved_by <= 1e-9 * size)
-        lost = ~np.isfinite(moved_by)
-        done = open_rows & (settled | bad | lost)
-        for mine, theirs in zip(here.arrays(), moved.arrays(), strict=True):
-            np.copyto(mine, theirs, where=open_rows & ~lost & ~bad)
-        rows = live[done]
-        status[rows] = np.where(bad, Status.RUNAWAY, np.where(lost, Status.NOT_CONVERGED, Status.SOLVED))[done]
-        steps[rows] = step + 1
-        rising[rows] = slope[done]
-        open_rows &= ~done
+        control = border.opening if step == 0 and border.opening is not None else border.control
+        moved, moved_by, size, bad, slope = _step(ready, control, here)
+        settled = _settled(moved_by, size, before, ready.network.zero)
+        if near is not None:
+            arrived = _arrived(ready, moved, near if live is None else near.take(live), size)
+            settled = arrived if settled is None else settled | arrived
+        finite = np.isfinite(moved_by)
+        lost = None if np.count_nonzero(finite) == finite.size else ~finite
+        if step == 0 and border.opening is not None:
+            _ease(ready, moved)
+        done = settled
+        for ended in (bad, lost):
+            if ended is not None:
+                done = ended if done is None else done | ended
+        if done is None:
+            here.follow(moved, open_rows)
+        else:
+            keep = open_rows
+            for ended in (bad, lost):
+                if ended is not None:
+                    keep = ~ended if keep is None else keep & ~ended
+            here.follow(moved, keep)
+            if open_rows is not None:
+                done = done & open_rows
+            count = int(np.count_nonzero(done))
+            if count:
+                ends = np.full(len(done), Status.SOLVED, dtype=np.int8)
+                if lost is not None:
+                    ends[lost] = Status.NOT_CONVERGED
+                if bad is not None:
+                    ends[bad] = Status.RUNAWAY
+                rows = np.flatnonzero(done)
+                mine = rows if live is None else live[rows]
+                status[mine], steps[mine] = ends[rows], step + 1
+                if sought and slope is not None:
+                    rising[mine] = slope[rows]
+                open_rows = ~done if open_rows is None else open_rows & ~done
+                left = int(np.count_nonzero(open_rows))
+                if left == 0:
+                    break
+                if left < 0.7 * len(open_rows):
+                    if live is not None:
+                        state.put(live, here)
+                    keep = np.flatnonzero(open_rows)
+                    live = keep if live is None else live[keep]
+                    here = here.take(keep)
+                    ready, moved_by = ready.take(keep, here), moved_by[keep]
+                    open_rows = None
         before = np.where(moved_by < SHORTENED, moved_by, 0.0)
-        left = int(open_rows.sum())
-        if left == 0:
-            break
-        if left < 0.7 * len(open_rows):
-            if here is not state:
-                state.put(live, here)
-            live, keep = live[open_rows], np.flatnonzero(open_rows)
-            part, edge, here, before = part.take(keep), edge.take(keep), here.take(keep), before[keep]
-            open_rows = np.ones(left, dtype=bool)
-    if here is not state:
+    if live is not None:
         state.put(live, here)
+    everyone.settle(state)
     return Outcome(state, status, steps, rising)
 
 
-def _step(network: Network, border: Border, state: State) -> tuple[State, Array, Array, np.ndarray, Array]:
-    """One step: the moved state, the largest move [K], the largest rise, where there is runaway, and dλ/dT."""
-    elements, count, owners = network.elements, border.count, border.of(network)
-    multiples = border.multiples(network, state)
-    models = [
-        element.port.model(state.Ta[e], state.Tb[e], multiples[e], state.theta[e], owners[e] is not None)
-        for e, element in enumerate(elements)
-    ]
-    left = None if network.left is None else network.left.relation(state.Ta[0], state.surfaces[0])
-    right = network.right.relation(state.Tb[-1], state.surfaces[1])
-    swept = sweep(network, models, owners, count, state.Ta, state.Tb, (left, right))
-    unstable = swept.negatives > 0
-    slope = np.full_like(network.zero, np.nan)
+def _arrived(ready: Ready, state: State, near: State, size: Array) -> np.ndarray:
+    """Where a state is at another one, but for steps that are then certain."""
+    off = np.maximum.reduce(np.abs(state.faces - near.faces), axis=0)
+    for port, bound, theta, other in zip(ready.ports, ready.bounds, state.theta, near.theta, strict=True):
+        if bound is None and theta is not None and other is not None:
+            off = np.maximum(off, port.apart(theta, other))
+    arrived: np.ndarray = off <= _NEAR * size
+    return arrived
+
+
+def _ease(ready: Ready, state: State) -> None:
+    """Take back from λ what warm sources give more than the cold ones of the first step, so that the next one starts closer."""
+    target = ready.border.target
+    assert target is not None
+    cold: Array | float = 0.0
+    warm: Array | float = 0.0
+    for e, port in enumerate(ready.ports):
+        source = port.source
+        if not source.driven or source.group is not None:
+            continue
+        Tb = state.faces[2 * e + 1]
+        T = Tb if port.solid else (state.faces[2 * e] + Tb) / 2.0
+        T = T + 0.6 * np.maximum(target - T, 0.0)
+        size = source.scale * port.volume()
+        cold = cold + size * source.at(np.zeros_like(T))[0]
+        warm = warm + size * source.at(T)[0]
+    if isinstance(cold, float) or isinstance(warm, float):
+        return
+    share = cold / warm
+    state.mu[-1] = np.where((share > 0.02) & (share < 1.5), state.mu[-1] * share, state.mu[-1])
+
+
+def _settled(moved_by: Array, size: Array, before: Array, zero: Array) -> np.ndarray | None:
+    """Where a step was the last one needed; None where it was nowhere."""
+    absolute = 4e-16 * np.abs(zero)
+    close = moved_by <= 1e-6 * size
+    last = moved_by <= 2e-13 * size + absolute
+    if np.count_nonzero(close):
+        # Newton's steps shrink as squares: the next one would be moved³/before² at most.
+        ratio = moved_by / before
+        small = moved_by * (ratio * ratio) <= 1e-14 * size + 0.25 * absolute
+        last |= close & (small | ((ratio >= 0.5) & (moved_by <= 1e-9 * size)))
+    elif not np.count_nonzero(last):
+        return None
+    return last
+
+
+def _step(
+    ready: Ready, control: Control | None, state: State
+) -> tuple[State, Array, Array, np.ndarray | None, Array | None]:  # fmt: skip
+    """One step: the moved state, the largest move [K], the largest rise, where there is runaway (or None), and dλ/dT."""
+    network, border, owners = ready.network, ready.border, ready.owners
+    count, faces = border.count, state.faces
+    multiples = ready.multiples(state)
+    models: list[PortModel] = []
+    for e, (port, bound) in enumerate(zip(ready.ports, ready.bounds, strict=True)):
+        Ta, Tb = faces[2 * e], faces[2 * e + 1]
+        models.append(
+            port.model(Ta, Tb, multiples[e], state.theta[e], owners[e] is not None) if bound is None else bound.model(Ta, Tb)
+        )
+    outside = network.seen_from_outside(models, multiples, owners)
+    left = None if network.left is None else network.left.relation(faces[0], state.surfaces[0])
+    right = network.right.relation(faces[-1], state.surfaces[1])
+    swept = sweep(network, outside, owners, count, faces, (left, right))
+    bad, slope = swept.negatives, None
     moves: list[Array] = []
     if count:
-        M, short = _border_rows(network, border, state, multiples, models, swept, owners)
+        M, short = _border_rows(network, border, control, state, multiples, models, swept, owners)
         moves = _small_solve(M, short)
-        unstable, slope = _judged(M, swept.negatives, len(border.given), border.control is not None)
-    da = [_along(swept.a[e], moves) for e in range(len(elements))]
-    db = [_along(swept.b[e], moves) for e in range(len(elements))]
-    shift = [None if owner is None else moves[owner] for owner in owners]
+        bad, slope = _judged(M, swept.negatives, len(border.given), border.control is not None)
+    elif bad is not None:
+        bad = bad > 0
+    move = np.empty(faces.shape)
+    for e, (a, b) in enumerate(zip(swept.a, swept.b, strict=True)):
+        move[2 * e], move[2 * e + 1] = _along(a, moves), _along(b, moves)
+    after = faces + move
+    biggest, size = np.maximum.reduce(np.abs(move), axis=0), np.maximum.reduce(np.abs(after), axis=0)
+    if border.target is not None:
+        # Held faces do not move, while the multiple still does.
+        size = np.maximum(size, np.abs(border.target))
     theta: list[Array | None] = []
-    biggest = size = np.zeros_like(network.zero)
     # The part of the step that no source grows too much over; None where it is whole in every case.
     part: Array | None = None
-    for e, element in enumerate(elements):
-        port = element.port
-        inside = port.moved(state.theta[e], models[e], da[e], db[e], shift[e])
+    for e, (port, model) in enumerate(zip(ready.ports, models, strict=True)):
+        if model.hottest is not None:
+            size = np.maximum(size, model.hottest)
+        if ready.bounds[e] is not None:
+            theta.append(state.theta[e])
+            continue
+        owner = owners[e]
+        inside, largest = port.moved(state.theta[e], model, move[2 * e], move[2 * e + 1], None if owner is None else moves[owner])
         theta.append(inside)
-        largest = np.maximum(np.abs(da[e]), np.abs(db[e]))
-        size = np.maximum(size, np.maximum(np.abs(state.Ta[e] + da[e]), np.abs(state.Tb[e] + db[e])))
-        before, after = port.span(state.theta[e]), port.span(inside)
-        coolest = np.minimum(state.Ta[e], state.Tb[e])
-        if before is not None and after is not None:
-            largest = np.maximum(largest, np.maximum(np.abs(after[0] - before[0]), np.abs(after[1] - before[1])))
-            size = np.maximum(size, np.maximum(np.abs(after[0]), np.abs(after[1])))
-            coolest = np.minimum(coolest, before[0])
-        reach = port.source.reach(coolest)
+        if largest is None:
+            continue
+        biggest = np.maximum(biggest, largest)
+        reach = port.reach(faces[2 * e], faces[2 * e + 1], state.theta[e])
         if reach is not None:
+            largest = np.maximum(largest, np.maximum(np.abs(move[2 * e]), np.abs(move[2 * e + 1])))
             share = np.where(multiples[e] * port.source.scale > 0.0, np.minimum(reach / np.maximum(largest, 1e-300), 1.0), 1.0)
             part = share if part is None else np.minimum(part, share)
-        biggest = np.maximum(biggest, largest)
-    for multiple, move in zip(state.mu, moves, strict=True):
-        biggest = np.maximum(biggest, np.abs(move) / np.maximum(np.abs(multiple + move), 1e-300) * size)
-    if part is not None and (part >= 1.0).all():
-        part = None
-
-    def along(old: Array, move: Array) -> Array:
-        return old + move if part is None else old + part * move
-
-    Ta = [along(x, y) for x, y in zip(state.Ta, da, strict=True)]
-    Tb = [along(x, y) for x, y in zip(state.Tb, db, strict=True)]
-    if part is not None:
-        theta = [
-            None if new is None or old is None else np.where(part >= 1.0, new, old + part * (new - old))
-            for new, old in zip(theta, state.theta, strict=True)
-        ]
-    surfaces = []
-    for end, relation, T, move, surface in (
-        (network.left, left, state.Ta[0], da[0], state.surfaces[0]),
-        (network.right, right, state.Tb[-1], db[-1], state.surfaces[1]),
+    mu: list[Array] = []
+    for multiple, shift in zip(state.mu, moves, strict=True):
+        new = multiple + shift
+        mu.append(new)
+        biggest = np.maximum(biggest, np.abs(shift) / np.maximum(np.abs(new), 1e-300) * size)
+    surfaces = list(state.surfaces)
+    for side, (end, relation, T, dT) in enumerate(
+        ((network.left, left, faces[0], move[0]), (network.right, right, faces[-1], move[-1]))
     ):
-        if end is None or relation is None or end.law is None:
-            surfaces.append(surface)
+        if end is None or relation is None or end.law is None or end.R is None:
             continue
         P, B, A = relation
-        shift_out = T + move - end.R * ((B * move + A) / P) - surface
-        biggest = np.maximum(biggest, np.abs(shift_out))
-        surfaces.append(along(surface, shift_out))
-    mu = [along(x, y) for x, y in zip(state.mu, moves, strict=True)]
-    total = biggest
-    for x in (*Ta, *Tb, *mu):
-        total = total + x
-    finite = np.isfinite(total)
-    if part is not None:
-        biggest = np.where(part >= 1.0, biggest, SHORTENED)
-    return State(Ta, Tb, theta, surfaces, mu), np.where(finite, biggest, np.nan), size, unstable & finite, slope
+        shift = T + dT - end.R * ((B * dT + A) / P) - surfaces[side]
+        biggest = np.maximum(biggest, np.abs(shift))
+        surfaces[side] = surfaces[side] + shift
+    if part is not None and np.count_nonzero(part < 1.0):
+        biggest = _shorten(part, state, after, theta, surfaces, mu, biggest)
+    for x in mu:
+        biggest = biggest + 0.0 * x
+    return State(after, theta, surfaces, mu), biggest, size, bad, slope
+
+
+def _shorten(
+    part: Array, state: State, faces: Array, theta: list[Array | None], surfaces: list[Array], mu: list[Array], biggest: Array
+) -> Array:  # fmt: skip
+    """Take back all but a part of a step, in place, and say so instead of how far it moved."""
+    whole = part >= 1.0
+    faces[:] = np.where(whole, faces, state.faces + part * (faces - state.faces))
+    for new, old in ((theta, state.theta), (surfaces, state.surfaces), (mu, state.mu)):
+        for index, (after, before) in enumerate(zip(new, old, strict=True)):
+            if after is not None and before is not None and after is not before:
+                new[index] = np.where(whole, after, before + part * (after - before))
+    return np.where(whole | ~np.isfinite(biggest), biggest, SHORTENED)
 
 
 def _along(columns: list[Array], moves: list[Array]) -> Array:
@@ -297,8 +447,8 @@ def _along(columns: list[Array], moves: list[Array]) -> Array:
 
 
 def _border_rows(
-    network: Network, border: Border, state: State, multiples: list[Array], models: list[PortModel], swept: Sweep,
-    owners: list[int | None],
+    network: Network, border: Border, control: Control | None, state: State, multiples: list[Array], models: list[PortModel],
+    swept: Sweep, owners: list[int | None],
 ) -> tuple[list[list[Array]], list[Array]]:  # fmt: skip
     """M and what is short: Σ M δμ = short, a row for each supply and one for the held temperature."""
     count, groups = border.count, len(border.given)
@@ -328,8 +478,8 @@ def _border_rows(
             row[groups] = row[groups] - per
         M.append(row)
         short.append(aim - state.mu[g] - 2.0 * aim / F * move)
-    if border.control is not None and border.target is not None:
-        hold = border.control(network, state, multiples, models)
+    if control is not None and border.target is not None:
+        hold = control(network, state, multiples, models)
         T, row = hold.T, [zero] * count
         for e, owner in enumerate(owners):
             for derivative, columns in ((hold.a[e], swept.a[e]), (hold.b[e], swept.b[e])):
@@ -370,16 +520,20 @@ def _determinant(M: list[list[Array]], size: int) -> Array | float:
     return np.asarray(np.linalg.det(np.nan_to_num(matrix)))
 
 
-def _judged(M: list[list[Array]], negatives: np.ndarray, groups: int, sought: bool) -> tuple[np.ndarray, Array]:
-    """Where the state is unstable at its fixed inputs, and dλ/dT where λ is sought.
+def _judged(
+    M: list[list[Array]], negatives: np.ndarray | None, groups: int, sought: bool
+) -> tuple[np.ndarray | None, Array | None]:  # fmt: skip
+    """Where the state is unstable at its fixed inputs (None for nowhere), and dλ/dT where λ is sought.
 
     A supply that is fixed can make one otherwise unstable mode stable (and the reverse): the sign of its border counts.
     """
-    sign = np.where(negatives % 2 == 0, 1.0, -1.0)
     inner = _determinant(M, groups)
-    unstable = (negatives > groups) | ~(sign * inner > 0.0)
+    if negatives is None:
+        stable = np.asarray(inner > 0.0)
+    else:
+        stable = (negatives <= groups) & (np.where(negatives % 2 == 0, inner, -inner) > 0.0)
     if not sought:
-        return unstable, np.full(len(negatives), np.nan)
+        return (None if np.count_nonzero(stable) == stable.size else ~stable), None
     slope = inner / _determinant(M, groups + 1)
     # While a temperature is held nothing runs away; an unstable state is told by a falling scale.
-    return np.zeros(len(negatives), dtype=bool), np.where(unstable, -np.abs(slope), slope)
+    return None, np.where(stable, slope, -np.abs(slope))

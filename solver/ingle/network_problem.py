@@ -16,13 +16,15 @@ class NetworkFace:
     """One face of the body: held, or under a surface law, or a prescribed flux; none of them is insulated.
 
     ``held`` [°C] lies, and ``law`` acts, at the far side of ``resistance`` [m²·K/W of the face's own area; None is 0].
-    ``flux`` [W/m²] is put into the body.
+    ``flux`` [W/m²] is put into the body. ``contact`` [W/m²]: heat set free at the body's own face, inside the resistance, which
+    goes with the source of the layer there: by its multiple.
     """
 
     held: Array | None = None
     law: SurfaceLaw | None = None
     flux: Array | None = None
     resistance: Array | None = None
+    contact: Array | None = None
 
     def __post_init__(self) -> None:
         if sum(part is not None for part in (self.held, self.law, self.flux)) > 1:
@@ -35,8 +37,10 @@ class NetworkFace:
 
     def take(self, rows: np.ndarray | slice) -> NetworkFace:
         """The same face for some of the cases; its law is told their numbers at each call."""
-        held, flux, resistance = (None if x is None else x[rows] for x in (self.held, self.flux, self.resistance))
-        return NetworkFace(held, self.law, flux, resistance)
+        held, flux, resistance, contact = (
+            None if x is None else x[rows] for x in (self.held, self.flux, self.resistance, self.contact)
+        )
+        return NetworkFace(held, self.law, flux, resistance, contact)
 
 
 @dataclass(frozen=True)

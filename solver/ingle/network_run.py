@@ -8,21 +8,24 @@ cutting again at the new crossings is enough. What stays unresolved gets more no
 from __future__ import annotations
 
 from dataclasses import dataclass, replace
+from functools import cached_property
 
 import numpy as np
 
 from ingle.collocation import CollocatedPort
 from ingle.conductivities import Table
+from ingle.fluids import KELVIN
 from ingle.network_newton import Border, Outcome, State, Status, cold, newton, usable
 from ingle.network_problem import NetworkProblem
-from ingle.network_sweep import Network, build, collocated
+from ingle.network_sweep import Network, build, collocated, with_nodes
 from ingle.shapes import Array, Shape
 
 BLOCK = 2048
 # Nodes of a slice and into how many a slice is split, by turns until a case is resolved.
-LEVELS = ((12, 1), (24, 1), (48, 1), (48, 2), (48, 4), (48, 8))
-# Up to how many decay lengths a slice may span at each level; beyond the last the finest is used.
-_SPANS = (8.0, 20.0, 45.0, 90.0, 180.0)
+LEVELS = ((6, 1), (12, 1), (24, 1), (48, 1), (48, 2), (48, 4), (48, 8), (48, 16), (48, 32))
+# Up to how many decay lengths a slice may span at each level; beyond the last the finest is used. Solid bodies alone are smooth
+# enough for the first.
+_SPANS = (0.7, 8.0, 20.0, 45.0, 90.0, 180.0, 360.0, 720.0)
 # The largest radius ratio of a slice of a cylinder or sphere.
 RATIO = {Shape.CYLINDER: 3.0, Shape.SPHERE: 1.6}
 # A case is resolved where its estimated error is below these shares of its rise and of its coldest temperature in kelvin.
@@ -42,6 +45,11 @@ class Part:
     status: np.ndarray
     steps: np.ndarray
     rising: Array
+
+    @cached_property
+    def multiples(self) -> list[Array]:
+        """μ of each element."""
+        return self.border.multiples(self.network, self.state)
 
 
 def run(problem: NetworkProblem, border: Border, seeds: list[Part] | None = None) -> list[Part]:
@@ -120,35 +128,50 @@ def _sliced(problem: NetworkProblem, by_nodes: bool) -> list[tuple[np.ndarray, t
 def _resolve(
     problem: NetworkProblem, border: Border, cuts: tuple[Array, ...], level: int, rounds: int, seed: Seed | None
 ) -> list[Part]:  # fmt: skip
-    N, split = LEVELS[level]
-    finer = tuple(_split(cut, layer.thickness, split) for cut, layer in zip(cuts, problem.layers, strict=True))
-    network = build(problem, N, finer, border.nodes)
-    if seed is None:
-        state = cold(network, border)
-        needed = _level_needed(network, border, state) if level == 0 else np.zeros(len(problem), dtype=np.intp)
-        if needed.any():
+    if seed is not None:
+        N, split = LEVELS[level]
+        finer = tuple(_split(cut, layer.thickness, split) for cut, layer in zip(cuts, problem.layers, strict=True))
+        network = build(problem, N, finer, border.nodes)
+        return _from(problem, replace(border, opening=None), cuts, level, rounds, network, transferred(*seed, network))
+    network = build(problem, 0, cuts, border.nodes)
+    if level == 0 and any(isinstance(e.port, CollocatedPort) for e in network.elements):
+        needed = _level_needed(network, border, cold(network, border))
+        level = int(needed[0])
+        if np.count_nonzero(needed != level):
             parts = []
             for start in np.unique(needed).tolist():
                 rows = np.flatnonzero(needed == start)
                 same = tuple(cut[:, rows] for cut in cuts)
-                if start:
-                    found = _resolve(problem.take(rows), border.take(rows), same, start, rounds, None)
-                else:
-                    found = _from(problem.take(rows), border.take(rows), same, level, rounds, network.take(rows), state.take(rows))
+                found = _cold_start(problem.take(rows), border.take(rows), same, start, rounds, network.take(rows))
                 parts += [_renumbered(p, rows) for p in found]
             return parts
+    return _cold_start(problem, border, cuts, level, rounds, network)
+
+
+def _cold_start(
+    problem: NetworkProblem, border: Border, cuts: tuple[Array, ...], level: int, rounds: int, network: Network
+) -> list[Part]:  # fmt: skip
+    """From cold on the meshes of a level; ``network`` has no nodes yet."""
+    N, split = LEVELS[level]
+    if split > 1:
+        finer = tuple(_split(cut, layer.thickness, split) for cut, layer in zip(cuts, problem.layers, strict=True))
+        network = build(problem, N, finer, border.nodes)
     else:
-        state, border = transferred(*seed, network), replace(border, opening=None)
-    return _from(problem, border, cuts, level, rounds, network, state)
+        with_nodes(network, N)
+    return _from(problem, border, cuts, level, rounds, network, cold(network, border))
 
 
 def _level_needed(network: Network, border: Border, state: State) -> np.ndarray:
     """The level that each case's decay lengths call for: too few nodes would look like instability."""
-    x = np.zeros_like(network.zero)
+    x: Array | None = None
+    least = 0
     for element, mu in zip(network.elements, border.multiples(network, state), strict=True):
         if isinstance(element.port, CollocatedPort):
-            x = np.maximum(x, element.port.stiffness(mu))
-    return np.searchsorted(_SPANS, x).astype(np.intp)
+            here = element.port.stiffness(mu)
+            x = here if x is None else np.maximum(x, here)
+            least = least if element.port.solid else 1
+    assert x is not None
+    return np.maximum(np.searchsorted(_SPANS, x), least)
 
 
 def _from(
@@ -158,12 +181,18 @@ def _from(
     outcome: Outcome = newton(network, border, state)
     everyone = np.arange(len(problem))
     solved = outcome.status == Status.SOLVED
-    if not solved.any() or not any(isinstance(e.port, CollocatedPort) for e in network.elements):
+    if not np.count_nonzero(solved) or not any(isinstance(e.port, CollocatedPort) for e in network.elements):
         return [Part(everyone, network, border, state, outcome.status, outcome.steps, outcome.rising)]
+    whole = Part(everyone, network, border, state, outcome.status, outcome.steps, outcome.rising)
     parts: list[Part] = []
     crossed = _crossings(problem, network, state, cuts, border.nodes) if rounds < _CUT_ROUNDS else None
     # On a floor there is no answer to refine.
-    rough = solved & _unresolved(network, border, state) & usable(network, state)
+    rough = solved & _unresolved(whole)
+    if np.count_nonzero(rough):
+        held = usable(network, state)
+        rough = rough if held is None else rough & held
+    if crossed is None and not np.count_nonzero(rough):
+        return [whole]
     recut = np.zeros(len(problem), dtype=bool)
     if crossed is not None:
         for rows, new_cuts in crossed:
@@ -211,17 +240,19 @@ def _split(cuts: Array, thickness: Array, pieces: int) -> Array:
     return np.stack(between, axis=1).reshape(-1, len(thickness))[1:]
 
 
-def _unresolved(network: Network, border: Border, state: State) -> np.ndarray:
-    size = np.zeros_like(network.zero)
-    error = np.zeros_like(network.zero)
-    for e, (element, mu) in enumerate(zip(network.elements, border.multiples(network, state), strict=True)):
-        size = np.maximum(size, np.maximum(np.abs(state.Ta[e]), np.abs(state.Tb[e])))
-        theta = state.theta[e]
-        if isinstance(element.port, CollocatedPort) and theta is not None:
-            low, high = element.port.span(theta)
-            size = np.maximum(size, np.maximum(np.abs(low), np.abs(high)))
-            error = np.maximum(error, element.port.unresolved(mu, theta))
-    return error > OF_RISE * size + OF_KELVIN * np.abs(network.zero + 273.15)
+def _unresolved(part: Part) -> np.ndarray:
+    """Where the nodes are too few for the accuracy asked."""
+    network, state = part.network, part.state
+    size = np.abs(state.faces).max(axis=0)
+    error: Array | float = 0.0
+    for element, mu, theta in zip(network.elements, part.multiples, state.theta, strict=True):
+        port = element.port
+        if isinstance(port, CollocatedPort) and theta is not None:
+            port.hold(mu, theta)
+            low, high = port.span(theta)
+            size = np.maximum(size, np.maximum(-low, high))
+            error = np.maximum(error, port.unresolved(mu, theta))
+    return np.asarray(error > OF_RISE * size + OF_KELVIN * np.abs(network.zero + KELVIN))
 
 
 def _crossings(
@@ -306,8 +337,7 @@ def _crossed(port: CollocatedPort, table: Table, Ta: Array, Tb: Array, theta: Ar
 def transferred(old: Network, state: State, new: Network) -> State:
     """The same temperatures on another network of the same cases."""
     elements = old.elements
-    Ta: list[Array] = []
-    Tb: list[Array] = []
+    faces: list[Array] = []
     insides: list[Array | None] = []
     # Multiples do not matter to where the insides are.
     one = np.ones_like(old.zero)
@@ -330,11 +360,10 @@ def transferred(old: Network, state: State, new: Network) -> State:
     for element in new.elements:
         port = element.port
         start, end = element.offset, element.offset + port.d
-        Ta.append(read(element.layer, start))
-        Tb.append(read(element.layer, end))
+        faces += [read(element.layer, start), read(element.layer, end)]
         if isinstance(port, CollocatedPort):
             T = np.stack([read(element.layer, start + s) for s in port.node_distances()])
-            insides.append(port.k.integral(np.zeros_like(T), T))
+            insides.append(port.map.lift(T)[0])
         else:
             insides.append(None)
-    return State(Ta, Tb, insides, [x.copy() for x in state.surfaces], [x.copy() for x in state.mu])
+    return State(np.stack(faces), insides, [x.copy() for x in state.surfaces], [x.copy() for x in state.mu])

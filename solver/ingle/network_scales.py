@@ -10,12 +10,15 @@ from dataclasses import dataclass, replace
 
 import numpy as np
 
-from ingle.network import peak, solve_network
+from ingle.network import NetworkState, peak, solve_network
 from ingle.network_controls import face, hottest, middle
-from ingle.network_newton import Border, Control, Status, newton, usable
+from ingle.network_newton import Border, Control, State, Status, cold, newton, usable
 from ingle.network_problem import NetworkProblem
 from ingle.network_run import Part, run
-from ingle.network_trace import FAR, _some, follow, held_border, is_linear, refollowing, start_of_path
+from ingle.network_sweep import collocated
+from ingle.network_trace import FAR, follow, held_border, is_linear, refollowing, some, start_of_path
+from ingle.network_unique import strides
+from ingle.network_walk import walked
 from ingle.shapes import Array
 
 RUNAWAY = -1  # governs: the turning point, not a limit
@@ -78,31 +81,48 @@ def allowable_scale(problem: NetworkProblem, limits: tuple[Limit, ...]) -> Allow
     with np.errstate(all="ignore"):
         beyond = np.zeros(n, dtype=bool)
         unsure = np.zeros(n, dtype=bool)
+        held: list[tuple[int, Part]] = []
         for number, limit in enumerate(limits):
-            rows = np.flatnonzero(~np.isnan(limit.value))
-            if not len(rows):
+            given = ~np.isnan(limit.value)
+            count = np.count_nonzero(given)
+            if not count:
                 continue
-            found, rising, good = _held(problem.take(rows), limit, limit.value[rows])
-            unsure[rows] |= ~good | (found < 0.0)
-            beyond[rows] |= good & (found >= 0.0) & ~(rising > 0.0)
-            lower = good & (found >= 0.0) & (rising > 0.0) & (found < scale[rows])
-            scale[rows[lower]], governs[rows[lower]] = found[lower], number
+            for part in _held(problem, limit, None if count == n else np.flatnonzero(given)):
+                rows, found = part.rows, part.state.mu[-1]
+                good = (part.status == Status.SOLVED) & (found >= 0.0)
+                rises = good & (part.rising > 0.0)
+                # A limit below the source-free state may be met on a far branch, where λ falls.
+                unsure[rows] |= ~rises
+                beyond[rows] |= good & ~rises
+                lower = rises & (found < scale[rows])
+                scale[rows[lower]], governs[rows[lower]] = found[lower], number
+                held.append((number, part))
         doubt = np.flatnonzero(unsure)
         if len(doubt):
             _check_sourceless(problem, limits, doubt, broken)
-            never_sure = doubt[broken[doubt] < 0]
-            beyond[never_sure] |= True
+            beyond[doubt[broken[doubt] < 0]] = True
         scale[broken >= 0] = np.nan
         governs[broken >= 0] = -2
         beyond &= broken < 0
-        beyond |= _doubted(problem, scale, limits, governs)
+        if not is_linear(problem):
+            # A limit found on a branch beyond a turning point is none.
+            elsewhere = _doubted(problem, _unlike_cold(held, governs), scale, limits, governs)
+            scale[elsewhere], governs[elsewhere] = np.inf, -2
+            unsure[elsewhere] = True
+            beyond[elsewhere] = True
         rows = np.flatnonzero(beyond)
         if len(rows):
             most = turning_scale(problem.take(rows))
             sooner = ~(most.scale > scale[rows]) | (governs[rows] < 0)
-            # A limit found on the far side of a turning point does not count.
+            # A limit found on the far side of a turning point does not count, but it may also be passed on this side.
             take = rows[sooner]
             scale[take], governs[take] = most.scale[sooner], RUNAWAY
+            again = np.flatnonzero(unsure[take] & ~np.isnan(scale[take]))
+            if len(again):
+                take = take[again]
+                found, which = walked(problem.take(take), [(limit.value[take], limit.control()) for limit in limits])
+                hit = which >= 0
+                scale[take[hit]], governs[take[hit]] = found[hit], which[hit]
     never = np.isinf(scale) & (governs == RUNAWAY)
     governs[never] = -2
     governs[broken >= 0] = broken[broken >= 0]
@@ -110,18 +130,49 @@ def allowable_scale(problem: NetworkProblem, limits: tuple[Limit, ...]) -> Allow
     return AllowableScale(scale, governs, broken, never)
 
 
-def _held(problem: NetworkProblem, limit: Limit, value: Array) -> tuple[Array, Array, np.ndarray]:
-    """λ at which a limit's temperature is its value, dλ/dT there, and whether it was found."""
-    n = len(problem)
-    scale, rising, good = np.full(n, np.nan), np.full(n, np.nan), np.zeros(n, dtype=bool)
-    base = held_border(problem, n)
-    target = value - problem.coldest
+def _held(problem: NetworkProblem, limit: Limit, rows: np.ndarray | None) -> list[Part]:
+    """The states at which a limit's temperature is its value, of some cases or all; λ is their last multiple."""
+    part = problem if rows is None else problem.take(rows)
+    value = limit.value if rows is None else limit.value[rows]
     # The hottest place of a body without source may be a held face, which no source warms: hence the opening.
-    for part in run(problem, replace(base, control=limit.control(), target=target, opening=middle)):
-        rows = part.rows
-        scale[rows], rising[rows] = part.state.mu[-1], part.rising
-        good[rows] = part.status == Status.SOLVED
-    return scale, rising, good
+    border = replace(
+        held_border(part, len(part)), control=limit.control(), target=value - part.coldest, opening=middle, by_nodes=False
+    )  # fmt: skip
+    parts = run(part, border)
+    if not border.nodes and any(collocated(part.shape, layer, True) != collocated(part.shape, layer, False) for layer in part.layers):
+        # Closed forms that were led astray: nodes hold on to the mode of the cold state.
+        parts = [piece for each in parts for piece in _by_nodes_where_lost(part, border, each)]
+    return parts if rows is None else [replace(p, rows=rows[p.rows]) for p in parts]
+
+
+def _by_nodes_where_lost(problem: NetworkProblem, border: Border, part: Part) -> list[Part]:
+    good = (part.status == Status.SOLVED) & (part.state.mu[-1] >= 0.0) & (part.rising > 0.0)
+    if np.count_nonzero(good) == len(good):
+        return [part]
+    lost = part.rows[~good]
+    again = run(problem.take(lost), replace(border.take(lost), by_nodes=True))
+    return [*([some(part, good)] if good.any() else []), *(replace(p, rows=lost[p.rows]) for p in again)]
+
+
+def _unlike_cold(held: list[tuple[int, Part]], governs: np.ndarray) -> np.ndarray:
+    """Cases whose state at their limit is not soon reached from cold at that scale."""
+    unlike: list[np.ndarray] = []
+    for number, part in held:
+        mine = governs[part.rows] == number
+        if not np.count_nonzero(mine):
+            continue
+        here = part if np.count_nonzero(mine) == len(mine) else some(part, mine)
+        state, groups = here.state, len(here.border.given)
+        border = Border(here.border.given, [False] * groups, state.mu[-1], by_nodes=here.border.by_nodes)
+        border = replace(border, given=[
+            x * np.sqrt(state.mu[-1]) if driven else x for x, driven in zip(here.border.given, here.border.driven, strict=True)
+        ])  # fmt: skip
+        near = State(state.faces, state.theta, state.surfaces, state.mu[:groups])
+        outcome = newton(here.network, border, cold(here.network, border), near)
+        off = np.abs(outcome.state.faces - state.faces).max(axis=0) > 0.05 * np.abs(state.faces).max(axis=0)
+        bad = (outcome.status != Status.SOLVED) | off
+        unlike.append(here.rows[bad])
+    return np.concatenate(unlike) if unlike else np.zeros(0, dtype=np.intp)
 
 
 def _check_sourceless(problem: NetworkProblem, limits: tuple[Limit, ...], rows: np.ndarray, broken: np.ndarray) -> None:
@@ -129,19 +180,23 @@ def _check_sourceless(problem: NetworkProblem, limits: tuple[Limit, ...], rows: 
     part = problem.take(rows)
     state = solve_network(part, np.zeros(len(rows)))
     for number, limit in reversed(list(enumerate(limits))):
-        if isinstance(limit.where, str):
-            T = state.left[0] if limit.where == "left" else state.right[-1]
-        else:
-            T = peak(state, limit.where).T
+        T = temperature_of(state, limit.where)
         broken[rows[limit.value[rows] < T]] = number
 
 
-def _doubted(problem: NetworkProblem, scale: Array, limits: tuple[Limit, ...], governs: np.ndarray) -> np.ndarray:
-    """Where the state at the scale found is not the one reached from cold."""
+def temperature_of(state: NetworkState, where: int | str | None) -> Array:
+    """The temperature a limit is about: the peak of the body (None) or of a layer (from 0), or the body's left or right face."""
+    if isinstance(where, str):
+        ends: Array = state.left[0] if where == "left" else state.right[-1]
+        return ends
+    return peak(state, where).T
+
+
+def _doubted(
+    problem: NetworkProblem, rows: np.ndarray, scale: Array, limits: tuple[Limit, ...], governs: np.ndarray
+) -> np.ndarray:  # fmt: skip
+    """Which of some cases have another state at the scale found than the one reached from cold."""
     doubted = np.zeros(len(scale), dtype=bool)
-    if is_linear(problem):
-        return doubted
-    rows = np.flatnonzero(governs >= 0)
     if not len(rows):
         return doubted
     state = solve_network(problem.take(rows), scale[rows] * (1.0 - 1e-9))
@@ -149,10 +204,7 @@ def _doubted(problem: NetworkProblem, scale: Array, limits: tuple[Limit, ...], g
         mine = governs[rows] == number
         if not mine.any():
             continue
-        if isinstance(limit.where, str):
-            T = state.left[0] if limit.where == "left" else state.right[-1]
-        else:
-            T = peak(state, limit.where).T
+        T = temperature_of(state, limit.where)
         rise = np.abs(limit.value[rows] - problem.coldest[rows])
         off = ~(np.abs(T - limit.value[rows]) <= 1e-3 * rise + 1e-6)
         doubted[rows[mine & off & (state.status != Status.TOO_HOT)]] = True
@@ -173,14 +225,14 @@ def turning_scale(problem: NetworkProblem) -> TurningScale:
             good = base.status == Status.SOLVED
             if not good.any():
                 continue
-            part = _some(base, good)
+            part = some(base, good)
             here = problem.take(part.rows)
             border = held_border(here, len(part.rows))
             if is_linear(problem):
                 scale[part.rows] = _eigenvalue(part, border)
                 rise[part.rows] = np.inf
                 continue
-            turn = follow(part.network, border, part.state, None)
+            turn = follow(part.network, border, part.state, None, strides(here))
             value, tau = turn.scale.copy(), turn.tau.copy()
             endless = ~turn.turned & (turn.tau >= FAR)
             value[~turn.turned] = np.nan
@@ -195,7 +247,7 @@ def turning_scale(problem: NetworkProblem) -> TurningScale:
                 value[rows], tau[rows], again[rows] = _refined(here.take(rows), seed, turn.T0[rows], tau[rows], value[rows])
             rows = np.flatnonzero(again)
             if len(rows):
-                value[rows] = _followed_again(here.take(rows), _some(part, again), turn.T0[rows], turn.tau[rows], turn.scale[rows])
+                value[rows] = _followed_again(here.take(rows), some(part, again), turn.T0[rows], turn.tau[rows], turn.scale[rows])
             value[endless] = np.inf
             scale[part.rows], rise[part.rows] = value, tau
     return TurningScale(scale, rise, status)
@@ -224,7 +276,9 @@ def _refined(problem: NetworkProblem, seed: Part, T0: Array, tau: Array, scale: 
             outcome = newton(part.network, replace(edge, target=T0[rows] + trial), state)
             state = outcome.state
             D_new = outcome.rising * trial / state.mu[-1]
-            fine = open_rows & (outcome.status == Status.SOLVED) & np.isfinite(D_new) & usable(part.network, state)
+            held = usable(part.network, state)
+            fine = open_rows & (outcome.status == Status.SOLVED) & np.isfinite(D_new)
+            fine = fine if held is None else fine & held
             change = (D_new - D) / np.where(step == 0.0, 1.0, step)
             slope = np.where(fine & (change < 0.0), change, slope)
             best = np.where(fine, state.mu[-1], best)

@@ -18,6 +18,7 @@ from ingle.network_newton import Border, State, Status, newton, usable
 from ingle.network_problem import NetworkProblem, Supply
 from ingle.network_run import Part, run, transferred
 from ingle.network_sweep import Network
+from ingle.network_unique import Strides, maybe_another, strides
 from ingle.shapes import Array
 
 _MOST_TURNS = 60
@@ -77,7 +78,7 @@ def all_driven(problem: NetworkProblem) -> NetworkProblem:
 def held_border(problem: NetworkProblem, n: int) -> Border:
     """The border with the scale sought and the middle held, before a target is set."""
     given = [supply.given for supply in problem.supplies]
-    return Border(given, [supply.driven for supply in problem.supplies], np.ones(n), middle, np.zeros(n))
+    return Border(given, [supply.driven for supply in problem.supplies], np.ones(n), middle, np.zeros(n), by_nodes=True)
 
 
 def start_of_path(network: Network, border: Border, state: State) -> tuple[State, Array]:
@@ -85,7 +86,7 @@ def start_of_path(network: Network, border: Border, state: State) -> tuple[State
     zero = np.zeros_like(network.zero)
     groups = len(border.given)
     mu = [x.copy() for x in state.mu[:groups]] + [zero.copy()]
-    opened = State(state.Ta, state.Tb, state.theta, state.surfaces, mu)
+    opened = State(state.faces, state.theta, state.surfaces, mu)
     multiples = border.multiples(network, opened)
     owners = border.of(network)
     models = [
@@ -95,11 +96,16 @@ def start_of_path(network: Network, border: Border, state: State) -> tuple[State
     return opened, middle(network, opened, multiples, models).T
 
 
-def follow(network: Network, border: Border, base: State, goal: Array | None) -> Turn:
-    """Follow every case's path from its source-free state until λ is ``goal`` or turns."""
+def follow(network: Network, border: Border, base: State, goal: Array | None, strides: Strides | None = None) -> Turn:
+    """Follow every case's path from its source-free state until λ is ``goal`` or turns.
+
+    ``strides``: no step is longer, for behind a table's point λ may turn and rise again at once.
+    """
     state, T0 = start_of_path(network, border, base)
     n = len(T0)
     tau = _FIRST * (network.zero + 273.15 + T0)
+    if strides is not None:
+        tau = np.minimum(tau, strides.length)
     one, zero = np.ones(n), np.zeros(n)
     tries = _Tries(*(x.copy() for x in (zero, zero + np.inf, one, one, tau, one, zero, zero, one)))
     kept, final = state.take(np.arange(n)), state.take(np.arange(n))  # where the next try starts; the last usable one
@@ -110,7 +116,8 @@ def follow(network: Network, border: Border, base: State, goal: Array | None) ->
         outcome = newton(network.take(live), replace(border.take(live), target=T0[live] + tau[live]), here)
         scale = here.mu[-1]
         D = outcome.rising * tau[live] / scale
-        held = usable(network.take(live), here)
+        free = usable(network.take(live), here)
+        held = np.ones(len(live), dtype=bool) if free is None else free
         sound = (outcome.status == Status.SOLVED) & np.isfinite(D) & (scale > 0.0) & held
         over = np.zeros(len(live), dtype=bool) if goal is None else sound & (scale >= goal[live])
         up = sound & (D > 0.0) & ~over
@@ -157,6 +164,9 @@ def follow(network: Network, border: Border, base: State, goal: Array | None) ->
         if not len(live):
             break
         step = _next(tries.take(live), None if goal is None else goal[live], turn)
+        if strides is not None:
+            low = tries.low[live]
+            step = np.where(low < strides.reach[live], np.minimum(step, low + strides.length[live]), step)
         again = back[~stop]
         tau[live] = np.where(again, np.sqrt(tries.low[live] * tau[live]), step)
     return Turn(tries.tau, tries.scale, tries.D, T0, turned, reached, turned & floored, network, border, final)
@@ -194,10 +204,11 @@ def traced(problem: NetworkProblem, scale: Array | None, parts: list[Part]) -> l
     doubtful = [part.status == Status.NOT_CONVERGED for part in parts]
     if not linear:
         doubtful = [lost | (part.status == Status.RUNAWAY) for lost, part in zip(doubtful, parts, strict=True)]
+    doubtful = [lost | maybe_another(problem, part) for lost, part in zip(doubtful, parts, strict=True)]
     if not any(d.any() for d in doubtful):
         return parts
     rows = np.sort(np.concatenate([part.rows[d] for part, d in zip(parts, doubtful, strict=True)]))
-    rest = [_some(part, ~d) for part, d in zip(parts, doubtful, strict=True) if (~d).any()]
+    rest = [some(part, ~d) for part, d in zip(parts, doubtful, strict=True) if (~d).any()]
     hard = problem.take(rows)
     if scale is not None:
         hard = scaled(hard, scale[rows])
@@ -208,8 +219,8 @@ def traced(problem: NetworkProblem, scale: Array | None, parts: list[Part]) -> l
     for base in run(driven, base_border):
         good = base.status == Status.SOLVED
         if not good.all():
-            settled.append(_some(base, ~good))
-            base = _some(base, good)
+            settled.append(some(base, ~good))
+            base = some(base, good)
         if not len(base.rows):
             continue
         settled += _settled(driven.take(base.rows), base, coarse=True)
@@ -223,26 +234,26 @@ def _settled(problem: NetworkProblem, base: Part, coarse: bool) -> list[Part]:
     """
     n = len(base.rows)
     one, supplies = np.ones(n), problem.supplies
-    turn = follow(base.network, held_border(problem, n), base.state, one)
+    turn = follow(base.network, held_border(problem, n), base.state, one, strides(problem))
     status = np.where(turn.turned, Status.RUNAWAY, np.where(turn.reached, Status.SOLVED, Status.NOT_CONVERGED)).astype(np.int8)
     status[~turn.turned & ~turn.reached & (turn.tau >= FAR)] = Status.TOO_HOT
     fixed = Border([supply.given for supply in supplies], [False] * len(supplies), one)
     found = turn.state
-    state = State(found.Ta, found.Tb, found.theta, found.surfaces, found.mu[: len(supplies)])
+    state = State(found.faces, found.theta, found.surfaces, found.mu[: len(supplies)])
     seed = Part(base.rows, base.network, fixed, state, status, base.steps, base.rising)
     near = turn.turned & (turn.scale > 0.7) & (turn.tau < FAR) if coarse else np.zeros(n, dtype=bool)
     parts: list[Part] = []
     if near.any():
         rows = np.flatnonzero(near)
-        for finer in refollowing(problem.take(rows), _some(base, near), turn.T0[rows] + 0.99 * turn.tau[rows]):
+        for finer in refollowing(problem.take(rows), some(base, near), turn.T0[rows] + 0.99 * turn.tau[rows]):
             mine = rows[finer.rows]
             parts += _settled(problem.take(mine), replace(finer, rows=base.rows[mine]), coarse=False)
         near &= np.isin(base.rows, np.concatenate([part.rows for part in parts])) if parts else False
     reached = status == Status.SOLVED
     if (~reached & ~near).any():
-        parts.append(_some(seed, ~reached & ~near))
+        parts.append(some(seed, ~reached & ~near))
     if reached.any():
-        last = _some(seed, reached)
+        last = some(seed, reached)
         polished = run(problem.take(np.flatnonzero(reached)), last.border, [replace(last, rows=np.arange(len(last.rows)))])
         parts += [replace(p, rows=last.rows[p.rows]) for p in polished]
     return parts
@@ -270,7 +281,11 @@ def scaled(problem: NetworkProblem, scale: Array) -> NetworkProblem:
         for layer in problem.layers
     )
     supplies = tuple(Supply(s.given * np.sqrt(scale), s.driven) if s.driven else s for s in problem.supplies)
-    return replace(problem, layers=layers, supplies=supplies)
+    left, right = (
+        face if face.contact is None or source.group is not None or not source.driven else replace(face, contact=face.contact * scale)
+        for face, source in ((problem.left, problem.layers[0].source), (problem.right, problem.layers[-1].source))
+    )
+    return replace(problem, layers=layers, left=left, right=right, supplies=supplies)
 
 
 def is_linear(problem: NetworkProblem, laws: tuple[SourceLaw, ...] = (SourceLaw.EVEN, SourceLaw.SLOPED)) -> bool:
@@ -287,7 +302,8 @@ def is_linear(problem: NetworkProblem, laws: tuple[SourceLaw, ...] = (SourceLaw.
     )
 
 
-def _some(part: Part, keep: np.ndarray) -> Part:
+def some(part: Part, keep: np.ndarray) -> Part:
+    """Some of a part's cases."""
     rows = np.flatnonzero(keep)
     return Part(
         part.rows[rows], part.network.take(rows), part.border.take(rows), part.state.take(rows), part.status[rows], part.steps[rows],

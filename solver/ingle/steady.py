@@ -7,44 +7,38 @@ from dataclasses import dataclass
 
 import numpy as np
 
-from ingle import field
 from ingle.cases import Cases, Structure, decode, structure_codes
-from ingle.film_laws import Film
 from ingle.shapes import Array
 from ingle.solution import Solution, Status
+from ingle.solutions import solution_of
 
 # A block's arrays stay in the processor's cache; measured five times quicker than one pass over 200,000 cases.
 BLOCK = 8192
 
 
-def _of_law(solution: Solution, found: Film | None, part: str) -> Array:
-    """A part of what a film law gave, NaN where the face has none."""
-    n = len(solution.cases)
-    return np.full(n, np.nan) if found is None else np.zeros(n) + getattr(found, part)
-
-
 QUANTITIES: dict[str, Callable[[Solution], Array]] = {
-    "peak": lambda s: s.state.sink + s.extremes.peak,
-    "peak_place": lambda s: s.extremes.place,
-    "peak_layer": lambda s: s.extremes.layer,
-    "left_face": lambda s: s.state.sink + s.state.rise_left,
-    "right_face": lambda s: s.state.sink + s.state.rise_right,
-    "mean": lambda s: s.state.sink + field.mean_rise(s.state),
+    "peak": lambda s: s.peak()[0],
+    "peak_place": lambda s: s.peak()[1],
+    "peak_layer": lambda s: s.peak()[2],
+    "left_face": lambda s: s.layer_ends(1)[0],
+    "right_face": lambda s: s.layer_ends(len(s.cases.layers))[1],
+    "mean": lambda s: s.mean(),
     "probe_temperature": lambda s: s.probe,
-    "left_flux": lambda s: field.left_flux(s.state),
-    "right_flux": lambda s: field.right_flux(s.state),
-    "left_heat": lambda s: field.left_heat(s.state),
-    "right_heat": lambda s: field.right_heat(s.state),
-    "heat_made": lambda s: field.heat_made(s.state),
-    "left_share": lambda s: field.left_share(s.state),
-    "balance": lambda s: field.balance(s.state),
-    "left_film": lambda s: _of_law(s, s.left_film, "h"),
-    "right_film": lambda s: _of_law(s, s.right_film, "h"),
-    "left_doubt": lambda s: _of_law(s, s.left_film, "doubt"),
-    "right_doubt": lambda s: _of_law(s, s.right_film, "doubt"),
+    "left_flux": lambda s: s.left_flux(),
+    "right_flux": lambda s: s.right_flux(),
+    "left_heat": lambda s: s.heats().left,
+    "right_heat": lambda s: s.heats().right,
+    "side_heat": lambda s: s.heats().side,
+    "heat_made": lambda s: s.heats().made,
+    "left_share": lambda s: s.left_share(),
+    "balance": lambda s: s.balance(),
+    "left_film": lambda s: s.film("left", "h"),
+    "right_film": lambda s: s.film("right", "h"),
+    "left_doubt": lambda s: s.film("left", "doubt"),
+    "right_doubt": lambda s: s.film("right", "doubt"),
+    "side_doubt": lambda s: s.film("side", "doubt"),
     "headroom": lambda s: s.headroom,
     "allowable_multiple": lambda s: s.allowable.multiple,
-    "allowable_generation": lambda s: s.allowable.multiple * s.pattern[0],
     "governs": lambda s: s.governs.astype(np.float64),
     "least_room": lambda s: np.min(s.rooms, axis=0),
     "worst_limit": lambda s: np.argmin(s.rooms, axis=0) + 1.0,
@@ -53,13 +47,27 @@ QUANTITIES: dict[str, Callable[[Solution], Array]] = {
     "lacking": lambda s: s.allowable.lacking.astype(np.float64),
 }
 
+# Those of the allowable source, which a case has though its own source be too much for any steady state.
+OF_ALLOWABLE = frozenset({"allowable_multiple", "governs", "cold_broken", "first_broken", "lacking"})
+
+# The states of which only the source is too much.
+GONE = (Status.RUNAWAY, Status.TOO_HOT, Status.NO_CONDUCTIVITY)
+
+# The states of which only the source is too much.
+GONE = (Status.RUNAWAY, Status.TOO_HOT, Status.NO_CONDUCTIVITY)
+
+# Those that depend on which sources scale.
+OF_SCALING = OF_ALLOWABLE | {"headroom"}
+
 # Of layer n, asked as "layer_peak 2"; "joint_left 1" and "joint_right 1" are the sides of the joint beyond layer n.
 LAYER_QUANTITIES: dict[str, Callable[[Solution, int], Array]] = {
-    "layer_peak": lambda s, n: s.state.sink + s.extremes.by_layer[n - 1],
-    "layer_low": lambda s, n: s.state.sink + s.extremes.lows[n - 1],
-    "layer_mean": lambda s, n: s.state.sink + field.layer_mean(s.state, n - 1),
-    "joint_left": lambda s, n: s.state.sink + s.state.ends[n - 1].T1,
-    "joint_right": lambda s, n: s.state.sink + s.state.ends[n].T0,
+    "layer_peak": lambda s, n: s.layer_range(n)[1],
+    "layer_low": lambda s, n: s.layer_range(n)[0],
+    "layer_mean": lambda s, n: s.layer_mean(n),
+    "joint_left": lambda s, n: s.layer_ends(n)[1],
+    "joint_right": lambda s, n: s.layer_ends(n + 1)[0],
+    "voltage": lambda s, n: s.voltage(n),
+    "resistance": lambda s, n: s.resistance(n),
 }
 
 
@@ -81,18 +89,20 @@ class Answers:
 
 
 def steady(cases: Cases, wanted: Iterable[str]) -> Answers:
-    """Steady temperatures and heats of bodies with uniform generation, one case an element.
+    """Steady temperatures and heats of bodies that make heat inside, one case an element.
 
     ``wanted`` names of ``QUANTITIES``, or of ``LAYER_QUANTITIES`` with a layer's number: temperatures in °C (``peak``,
     ``left_face``, ``right_face``, ``mean``, ``probe_temperature``, ``layer_peak 2``, ``joint_left 1`` …), ``peak_place`` [m]
     from the left face or as a radius, ``peak_layer`` from 1, ``left_flux`` and ``right_flux`` [W/m² of that face],
     ``left_heat``, ``right_heat`` and ``heat_made`` [W/m² of wall, W/m of cylinder, W of sphere], ``left_share`` and ``balance``
-    [1], ``left_film`` and ``right_film`` [W/(m²·K)] with the doubts of their laws, ``headroom`` [K] before the limit that
-    ``governs`` (1 ``limit``, 2 ``left_limit``, 3 ``right_limit``, 3 + n that of layer n, 0 none), ``least_room`` [K] before any
+    [1], ``side_heat`` through a bar's sides, ``left_film`` and ``right_film`` [W/(m²·K)] with the doubts of their laws, ``voltage
+    1`` [V] and ``resistance 1`` [Ω] of a layer's current, ``headroom`` [K] before the limit that ``governs`` (1 ``limit``, 2
+    ``left_limit``, 3 ``right_limit``, 3 + n that of layer n, 0 none, −1 runaway comes first), ``least_room`` [K] before any
     limit, that of ``worst_limit`` (infinite where there is none), ``cold_broken`` the limit passed without the scaled sources,
-    ``allowable_multiple`` of the pattern and ``allowable_generation`` [W/m³] of the first layer, NaN where ``lacking`` (1 no
-    limit, 2 ``first_broken`` passed with no source, 3 never reached, 4 no state there). Raises KeyError for another name.
-    Source: Fourier's law and conservation of heat, integrated by layers with the Kirchhoff integral of k(T).
+    ``allowable_multiple`` of the pattern's heat, never beyond runaway and NaN where ``lacking`` (1 no limit, 2 ``first_broken``
+    passed with no source, 3 never reached, 4 no state there, 5 not found). Those of the allowable have values also where the
+    status is one of ``GONE``. Raises KeyError for another name.
+    Source: Fourier's law and conservation of heat, by layers with the Kirchhoff integral of k(T).
     """
     wanted = tuple(wanted)
     for name in wanted:
@@ -128,12 +138,13 @@ def _block(cases: Cases, wanted: tuple[str, ...]) -> Answers:
 
 
 def _group(cases: Cases, structure: Structure, wanted: tuple[str, ...]) -> Answers:
-    solution = Solution(cases, structure)
+    solution = solution_of(cases, structure)
     status = solution.status
     failed = status != Status.SOLVED
     values = {name: quantity(name)(solution) for name in wanted}
     if failed.any():
-        values = {name: np.where(failed, np.nan, value) for name, value in values.items()}
+        beyond = failed & ~np.isin(status, GONE)
+        values = {name: np.where(beyond if name in OF_ALLOWABLE else failed, np.nan, value) for name, value in values.items()}
     return Answers(values, status)
 
 
@@ -152,16 +163,16 @@ def profile(cases: Cases, points: int) -> tuple[Array, Array, np.ndarray]:
             (decode(int(code)), np.flatnonzero(codes == code)) for code in np.unique(codes)
         ]  # fmt: skip
         for structure, rows in groups:
-            solution = Solution(cases.take(rows), structure)
+            solution = solution_of(cases.take(rows), structure)
             status[rows] = solution.status
             solved, column = solution.status == Status.SOLVED, 0
-            for number, (layer, count) in enumerate(zip(solution.problem.layers, counts, strict=True)):
-                s = np.linspace(0.0, 1.0, count)[:, None] * layer.d
-                rise = field.layer_rise(solution.state, number, s)
-                rise[0], rise[-1] = solution.state.ends[number].T0, solution.state.ends[number].T1
+            for n, (layer, origin, count) in enumerate(zip(solution.cases.layers, solution.origins, counts, strict=True), 1):
+                s = np.linspace(0.0, 1.0, count)[:, None] * layer.thickness
+                within = solution.layer_at(n, s)
+                within[0], within[-1] = solution.layer_ends(n)
                 here = slice(column, column + count)
-                place[rows, here] = np.where(solved[:, None], (layer.a + s).T, np.nan)
-                T[rows, here] = np.where(solved[:, None], (solution.state.sink + rise).T, np.nan)
+                place[rows, here] = np.where(solved[:, None], (origin + s).T, np.nan)
+                T[rows, here] = np.where(solved[:, None], within.T, np.nan)
                 column += count
     return place, T, status
 

@@ -275,6 +275,8 @@ def _electric(cells: Cells, body: Model, kind: str, n: int, blank: bool) -> Sour
     if kind == "voltage":
         cells.need("length")
     size, whole, electric = abs(given), False, SOLID_CURRENT
+    if kind == "voltage":
+        size /= ac  # the resistance is that of alternating current
     if shape == BAR:
         electric = WOUND
         size *= {"current": 1.0 / body.section, "voltage": body.section}.get(kind, 1.0)
@@ -364,7 +366,7 @@ def build(cells: Cells) -> Model:
         cells.errors.append(IMPOSSIBLE)
     cells.fail()
     layers = tuple(
-        Layer(one.start, one.thickness, one.conductivity, sources.get(i), cells.number(f"turns {i + 1}"))
+        Layer(one.start, one.thickness, one.conductivity, sources.get(i), cells.maybe(f"turns {i + 1}") or 0.0)
         for i, one in enumerate(layers)
     )
     return Model(shape, bore, layers, joints, left, right, side, section, perimeter)

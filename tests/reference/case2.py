@@ -19,6 +19,7 @@ from .solution import NothingError, RunawayError, Solution
 
 Inputs = dict[str, Value]
 COLDEST, HOTTEST = 20.0, 4000.0
+HIGHEST_LIMIT = 9e3  # beyond it nothing stays solid
 LEAST_PART = 0.15  # conductivities and resistivities keep this part of their base up to the highest limit
 RUNAWAY_SHARE = 0.13
 
@@ -218,12 +219,12 @@ class Draw:
                 out[f"resistivity reference {n}"] = self.warm + rng.uniform(-0.1, 0.2) * min(self.rise, 100.0)
         elif chance < 0.75:
             out[f"resistivity {n}"] = self.points(rho, 0.6, 2.0)
-        wound = self.shape in ("wall", "cylinder") and kind != "voltage" and self.chance(0.3)
+        wound = self.shape in ("wall", "cylinder") and self.chance(0.3)
         if wound:
             out[f"turns {n}"] = float(rng.randint(5, 500))
             if self.chance(0.7):
                 out[f"fill factor {n}"] = rng.uniform(0.3, 0.9)
-        if kind != "voltage" and self.chance(0.25):
+        if self.chance(0.25):
             out[f"ac ratio {n}"] = rng.uniform(1.0, 1.8)
         if self.shape == "wall":
             out.setdefault("width", spread(rng, 1e-3, 1.0))
@@ -316,7 +317,7 @@ class Draw:
                 raise DrawnBadlyError from error
             if self.chance(0.6):
                 far = rng.choice(((0.05, 1.0), (3.0, 300.0)))
-                self.inputs["limit"] = max(model.sinks) + self.rise * spread(rng, *far)
+                self.inputs["limit"] = min(max(model.sinks) + self.rise * spread(rng, *far), HIGHEST_LIMIT)
         if self.chance(0.4):
             self.inputs["probe"] = model.inner + model.thickness * rng.uniform(0.002, 0.998)
 

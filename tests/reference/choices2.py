@@ -118,12 +118,12 @@ WIDER: tuple[tuple[str, str], ...] = (
     ),
     (
         "A winding's voltage and resistance are of all turns in series: each 2πr long around a cylinder, `length` long in a "
-        "wall. `voltage` is current times this; `ac ratio` is in the heat only, so heat = ac ratio · V · I everywhere.",
-        "along `length`, of the row's current; q = ac ratio · E²/ρ(T), with I = E ∫dA/ρ(T)",
+        "wall. It is the AC resistance, `ac ratio` included, and `voltage` is current times this, so heat = V · I everywhere.",
+        "ac ratio: AC to DC resistance ratio; voltage, resistance: along `length`, of the row's current",
     ),
     (
-        "With a voltage given and an ac ratio the formula is taken as it stands, E = voltage / length.",
-        "q = ac ratio · E²/ρ(T)",
+        "A voltage given is that over the AC resistance, so E = voltage / (ac ratio · length) in the formula of the heat.",
+        "ac ratio: AC to DC resistance ratio; q = ac ratio · E²/ρ(T)",
     ),
     (
         "The sign of a current, voltage or current density does not matter but for the sign of `voltage` and `utilisation`. "

@@ -270,6 +270,7 @@ class Row2:
                 turn = total.value * (long if model.shape == WALL else 1.0) / layer.thickness
                 resistance = layer.turns**2 * turn / (source.fill * section)
                 current = amplitude * source.fill * section / layer.turns
+        resistance *= source.ac
         value = resistance if name == "resistance" else math.copysign(1.0, source.given) * current * resistance
         relative = RELATIVE * (1.0 + 10 * self._rho_swing(source)) + 10 * total.error / abs(total.value)
         return value, abs(value) * relative

@@ -49,10 +49,6 @@ def tables() -> list[tuple[str, tuple[str, ...], list[tuple[str, ...]]]]:
 
 def _input(item: Input) -> tuple[str, str, str]:
     meaning = item.meaning if item.available else f"{item.meaning} ({_NOT_YET})"
-    if item.available and item.where is Where.FACE_AND_SIDE:
-        meaning += f" (`side {item.name}`, of a bar: {_NOT_YET})"
-    if item.available and item.table and item.name != "conductivity":
-        meaning += f" (the table: {_NOT_YET})"
     return spelled(item.name, item.where), units(item), meaning
 
 
