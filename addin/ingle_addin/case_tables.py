@@ -92,7 +92,7 @@ CASE_TABLES: tuple[CaseTable, ...] = (
         ("conductivity [W/(m·K)]", 390.0),
         ("resistivity [nΩ·m]", 17.2),
         ("resistivity slope [1/K]", 0.0039),
-        ("current [A]", 400.0),
+        ("current [A]", 900.0),
         ("side film [W/(m²·K)]", 10.0),
         ("side fluid [°C]", 35.0),
         ("left held [°C]", 50.0),
