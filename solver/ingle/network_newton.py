@@ -176,18 +176,22 @@ def cold(network: Network, border: Border) -> State:
     return state
 
 
-def usable(network: Network, state: State) -> np.ndarray | None:
+def usable(network: Network, border: Border, state: State) -> np.ndarray | None:
     """False where a conductivity or resistivity lies on its floor; None where that cannot be."""
     held: np.ndarray | None = None
-    for e, element in enumerate(network.elements):
-        port, Tb = element.port, state.faces[2 * e + 1]
+    if not any(element.port.floors for element in network.elements):
+        return None
+    for e, (element, mu) in enumerate(zip(network.elements, border.multiples(network, state), strict=True)):
+        port, Ta, Tb = element.port, state.faces[2 * e], state.faces[2 * e + 1]
         if not port.floors:
             continue
-        Ta = Tb if port.solid else state.faces[2 * e]
+        Ta = port.centre(Tb, mu, state.theta[e]) if port.solid else Ta
         low, high = np.minimum(Ta, Tb), np.maximum(Ta, Tb)
         inside = port.span(state.theta[e])
         if inside is not None:
             low, high = np.minimum(low, inside[0]), np.maximum(high, inside[1])
+        elif not port.solid:
+            high = np.maximum(high, port.peak(Ta, Tb, mu, None).T)
         here = port.conductivity_usable(low, high)
         if here is not None:
             held = here if held is None else held & here
@@ -375,6 +379,9 @@ def _step(
         move[2 * e], move[2 * e + 1] = _along(a, moves), _along(b, moves)
     after = faces + move
     biggest, size = np.maximum.reduce(np.abs(move), axis=0), np.maximum.reduce(np.abs(after), axis=0)
+    if border.target is not None:
+        # A held temperature inside may be the only one that is not zero.
+        size = np.maximum(size, np.abs(border.target))
     theta: list[Array | None] = []
     # The part of the step that no source grows too much over; None where it is whole in every case.
     part: Array | None = None

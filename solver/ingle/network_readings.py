@@ -127,8 +127,10 @@ def _heats(part: Part) -> tuple[list[Array], list[Array], Array]:
         surface = T if end.R is None or end.law is None else state.surfaces[side]
         P, B, A = (total + x for x in end.relation(T, surface))
         resistance = np.minimum(P / np.where(B > 0.0, B, 1e-300), 1e290)
-        # What the rounding of a temperature in °C makes of the law's flux.
+        # What the rounding of a temperature in °C makes of the law's flux, or of that through a resistance to a held one.
         noise = 0.0 if end.law is None else 4e-16 * B * (np.abs(surface) + np.abs(end.zero) + KELVIN)
+        if end.held is not None:
+            noise = 4e-16 * (np.abs(T) + np.abs(end.zero) + KELVIN) / np.where(P > 0.0, P, np.inf)
         ends.append((np.where(P > 0.0, A / np.where(P > 0.0, P, 1.0), 0.0), resistance, noise))
         if end.held is None and end.law is None and exact is None:
             flux = total if end.flux is None else end.flux

@@ -189,7 +189,7 @@ def _from(
     # On a floor there is no answer to refine.
     rough = solved & _unresolved(whole)
     if np.count_nonzero(rough):
-        held = usable(network, state)
+        held = usable(network, border, state)
         rough = rough if held is None else rough & held
     if crossed is None and not np.count_nonzero(rough):
         return [whole]

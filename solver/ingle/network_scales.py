@@ -16,11 +16,13 @@ from ingle.network_newton import Border, Control, State, Status, cold, newton, u
 from ingle.network_problem import NetworkProblem
 from ingle.network_run import Part, run
 from ingle.network_sweep import collocated
-from ingle.network_trace import FAR, follow, held_border, is_linear, refollowing, some, start_of_path
+from ingle.network_trace import FAR, follow, held_border, is_linear, some, start_of_path
 from ingle.shapes import Array
 
 RUNAWAY = -1  # governs: the turning point, not a limit
 _POLISH = 8
+# Halves a bracket of a fifth to 4e-7.
+_HALVINGS = 19
 
 
 @dataclass(frozen=True)
@@ -79,9 +81,18 @@ def allowable_scale(problem: NetworkProblem, limits: tuple[Limit, ...]) -> Allow
     with np.errstate(all="ignore"):
         beyond = np.zeros(n, dtype=bool)
         unsure = np.zeros(n, dtype=bool)
+        unreachable = np.zeros(n, dtype=bool)
         held: list[tuple[int, Part]] = []
         for number, limit in enumerate(limits):
             given = ~np.isnan(limit.value)
+            outright = _held_outright(problem, limit)
+            if outright is not None:
+                T, direct = outright
+                # No source warms such a face.
+                passed = direct & (limit.value < T) & (broken < 0)
+                broken[passed] = number
+                unreachable |= direct & given
+                given &= ~direct
             count = np.count_nonzero(given)
             if not count:
                 continue
@@ -94,7 +105,8 @@ def allowable_scale(problem: NetworkProblem, limits: tuple[Limit, ...]) -> Allow
                 lower = rises & (found < scale[rows])
                 scale[rows[lower]], governs[rows[lower]] = found[lower], number
                 held.append((number, part))
-        doubt = np.flatnonzero(unsure)
+        beyond |= unreachable & (governs < 0)
+        doubt = np.flatnonzero(unsure & (broken < 0))
         if len(doubt):
             _check_sourceless(problem, limits, doubt, broken)
             beyond[doubt[broken[doubt] < 0]] = True
@@ -116,6 +128,16 @@ def allowable_scale(problem: NetworkProblem, limits: tuple[Limit, ...]) -> Allow
     governs[broken >= 0] = broken[broken >= 0]
     scale[np.isinf(scale)] = np.nan
     return AllowableScale(scale, governs, broken, never)
+
+
+def _held_outright(problem: NetworkProblem, limit: Limit) -> tuple[Array, np.ndarray] | None:
+    """The temperature at which a limit's face is held, and where it is without a resistance; None where it is not at all."""
+    if not isinstance(limit.where, str):
+        return None
+    side = problem.left if limit.where == "left" else problem.right
+    if side.held is None:
+        return None
+    return side.held, np.ones(len(problem), dtype=bool) if side.resistance is None else side.resistance == 0.0
 
 
 def _held(problem: NetworkProblem, limit: Limit, rows: np.ndarray | None) -> list[Part]:
@@ -233,7 +255,7 @@ def turning_scale(problem: NetworkProblem) -> TurningScale:
                 value[rows], tau[rows], again[rows] = _refined(here.take(rows), seed, turn.T0[rows], tau[rows], value[rows])
             rows = np.flatnonzero(again)
             if len(rows):
-                value[rows] = _followed_again(here.take(rows), some(part, again), turn.T0[rows], turn.tau[rows], turn.scale[rows])
+                value[rows] = _floored(here.take(rows), turn.scale[rows])
             value[endless] = np.inf
             scale[part.rows], rise[part.rows] = value, tau
     return TurningScale(scale, rise, status)
@@ -262,7 +284,7 @@ def _refined(problem: NetworkProblem, seed: Part, T0: Array, tau: Array, scale: 
             outcome = newton(part.network, replace(edge, target=T0[rows] + trial), state)
             state = outcome.state
             D_new = outcome.rising * trial / state.mu[-1]
-            held = usable(part.network, state)
+            held = usable(part.network, edge, state)
             fine = open_rows & (outcome.status == Status.SOLVED) & np.isfinite(D_new)
             fine = fine if held is None else fine & held
             change = (D_new - D) / np.where(step == 0.0, 1.0, step)
@@ -274,14 +296,23 @@ def _refined(problem: NetworkProblem, seed: Part, T0: Array, tau: Array, scale: 
     return scale, tau, loose
 
 
-def _followed_again(problem: NetworkProblem, base: Part, T0: Array, tau: Array, scale: Array) -> Array:
-    """λ where a conductivity reaches its floor, by following the whole path again on meshes fine enough just below it."""
-    scale = scale.copy()
-    border = held_border(problem, len(tau))
-    for part in refollowing(problem, base, T0 + 0.99 * tau):
-        turn = follow(part.network, border.take(part.rows), part.state, None)
-        scale[part.rows[turn.turned]] = turn.scale[turn.turned]
-    return scale
+def _floored(problem: NetworkProblem, scale: Array) -> Array:
+    """λ where a conductivity reaches its floor: between a scale that has an answer and one that has none; NaN where that fails.
+
+    The temperature there is a square root of place, which no mesh resolves well; the answers themselves say where they end.
+    """
+    low, high = 0.9 * scale, 1.1 * scale
+    found = (solve_network(problem, low).status == Status.SOLVED) & (solve_network(problem, high).status != Status.SOLVED)
+    rows = np.flatnonzero(found)
+    part = problem.take(rows)
+    low, high = low[rows], high[rows]
+    for _ in range(_HALVINGS):
+        middle = (low + high) / 2.0
+        solved = solve_network(part, middle).status == Status.SOLVED
+        low, high = np.where(solved, middle, low), np.where(solved, high, middle)
+    value = np.full(len(scale), np.nan)
+    value[rows] = (low + high) / 2.0
+    return value
 
 
 def _eigenvalue(base: Part, border: Border) -> Array:
