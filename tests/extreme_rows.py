@@ -86,7 +86,13 @@ def drawn(draw: np.random.Generator, shape: Shape, solid: bool, left: str, right
 def structures() -> list[tuple[Shape, bool, str, str, str, bool]]:
     """Every shape with every pair of faces that lets heat out, every law of its source, k constant and sloped."""
     found = []
-    for shape, solid in ((Shape.WALL, False), (Shape.CYLINDER, False), (Shape.CYLINDER, True), (Shape.SPHERE, False), (Shape.SPHERE, True)):
+    for shape, solid in (
+        (Shape.WALL, False),
+        (Shape.CYLINDER, False),
+        (Shape.CYLINDER, True),
+        (Shape.SPHERE, False),
+        (Shape.SPHERE, True),
+    ):
         for left in KINDS if not solid else ("flux",):
             for right in KINDS[:3] if left == "flux" or solid else KINDS:
                 for law in LAWS if shape == Shape.WALL else LAWS[:-1]:

@@ -5,8 +5,8 @@ from __future__ import annotations
 import numpy as np
 
 from ingle.fluids import KELVIN
-from ingle.network_newton import Status
 from ingle.network_run import Part
+from ingle.network_state import Status
 from ingle.ports import Reading
 from ingle.shapes import Array
 

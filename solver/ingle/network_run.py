@@ -15,8 +15,9 @@ import numpy as np
 from ingle.collocation import CollocatedPort
 from ingle.conductivities import Table
 from ingle.fluids import KELVIN
-from ingle.network_newton import Border, Outcome, State, Status, cold, newton, usable
+from ingle.network_newton import Outcome, newton
 from ingle.network_problem import NetworkProblem
+from ingle.network_state import Border, State, Status, cold, usable
 from ingle.network_sweep import Network, build, collocated, with_nodes
 from ingle.shapes import Array, Shape
 

@@ -10,19 +10,21 @@ from dataclasses import dataclass, replace
 
 import numpy as np
 
+from ingle.heat_sources import SourceLaw
 from ingle.network import peak, solve_network
 from ingle.network_controls import face, hottest, middle
-from ingle.network_newton import Border, Control, State, Status, cold, newton, usable
+from ingle.network_newton import newton
 from ingle.network_problem import NetworkProblem
 from ingle.network_run import Part, run
+from ingle.network_state import Border, Control, State, Status, cold, usable
 from ingle.network_sweep import collocated
 from ingle.network_trace import FAR, follow, held_border, is_linear, some, start_of_path
 from ingle.shapes import Array
 
 RUNAWAY = -1  # governs: the turning point, not a limit
 _POLISH = 8
-# Halves a bracket of a fifth to 4e-7.
-_HALVINGS = 19
+# Halves a bracket of a twentieth to 1e-4.
+_HALVINGS = 9
 
 
 @dataclass(frozen=True)
@@ -220,7 +222,10 @@ def _doubted(
 
 
 def turning_scale(problem: NetworkProblem) -> TurningScale:
-    """The scale of the driven sources at the turning point, or first eigenvalue where all is linear; to 1e-6 of itself."""
+    """The scale of the driven sources at the turning point, or first eigenvalue where all is linear; to 1e-6 of itself.
+
+    Where a conductivity reaches its floor first: that scale, to 1e-4.
+    """
     n = len(problem)
     scale, rise, status = np.full(n, np.nan), np.full(n, np.nan), np.full(n, Status.NO_OUTLET, dtype=np.int8)
     if not problem.has_outlet:
@@ -231,6 +236,11 @@ def turning_scale(problem: NetworkProblem) -> TurningScale:
         for base in run(problem, Border(given, [False] * len(given), zero, by_nodes=True)):
             status[base.rows] = base.status
             good = base.status == Status.SOLVED
+            if not good.any():
+                continue
+            steady = good & _never_grows(problem)[base.rows]
+            scale[base.rows[steady]], rise[base.rows[steady]] = np.inf, np.inf
+            good &= ~steady
             if not good.any():
                 continue
             part = some(base, good)
@@ -259,6 +269,22 @@ def turning_scale(problem: NetworkProblem) -> TurningScale:
             value[endless] = np.inf
             scale[part.rows], rise[part.rows] = value, tau
     return TurningScale(scale, rise, status)
+
+
+def _never_grows(problem: NetworkProblem) -> np.ndarray:
+    """Where no source grows with temperature and no conductivity can fall to nothing, so that every scale has its one state."""
+    flat = np.full(len(problem), not problem.supplies)
+    for layer in problem.layers:
+        source, k = layer.source, layer.conductivity
+        if source.law == SourceLaw.SLOPED and source.slope is not None:
+            flat &= source.slope <= 0.0
+        elif source.law == SourceLaw.PER_SLOPED and source.slope is not None:
+            flat &= source.slope >= 0.0
+        elif source.law != SourceLaw.EVEN:
+            flat &= False
+        if k.slope is not None:
+            flat &= k.slope >= 0.0
+    return flat
 
 
 def _refined(problem: NetworkProblem, seed: Part, T0: Array, tau: Array, scale: Array) -> tuple[Array, Array, np.ndarray]:
@@ -301,14 +327,15 @@ def _floored(problem: NetworkProblem, scale: Array) -> Array:
 
     The temperature there is a square root of place, which no mesh resolves well; the answers themselves say where they end.
     """
-    low, high = 0.9 * scale, 1.1 * scale
-    found = (solve_network(problem, low).status == Status.SOLVED) & (solve_network(problem, high).status != Status.SOLVED)
+    exists = (Status.SOLVED, Status.UNRESOLVED)
+    low, high = 0.975 * scale, 1.025 * scale
+    found = (solve_network(problem, low).status == Status.SOLVED) & ~np.isin(solve_network(problem, high).status, exists)
     rows = np.flatnonzero(found)
     part = problem.take(rows)
     low, high = low[rows], high[rows]
     for _ in range(_HALVINGS):
         middle = (low + high) / 2.0
-        solved = solve_network(part, middle).status == Status.SOLVED
+        solved = np.isin(solve_network(part, middle).status, exists)
         low, high = np.where(solved, middle, low), np.where(solved, high, middle)
     value = np.full(len(scale), np.nan)
     value[rows] = (low + high) / 2.0

@@ -14,9 +14,10 @@ import numpy as np
 
 from ingle.heat_sources import SourceLaw
 from ingle.network_controls import middle
-from ingle.network_newton import Border, State, Status, newton, usable
+from ingle.network_newton import newton
 from ingle.network_problem import NetworkProblem, Supply
 from ingle.network_run import Part, run, transferred
+from ingle.network_state import Border, State, Status, usable
 from ingle.network_sweep import Network
 from ingle.shapes import Array
 
