@@ -177,11 +177,13 @@ def _settled(moved_by: Array, size: Array, before: Array, zero: Array) -> np.nda
     absolute = 4e-16 * np.abs(zero)
     close = moved_by <= 1e-6 * size
     last = moved_by <= 2e-13 * size + absolute
-    if np.count_nonzero(close):
+    # Laws are given temperatures in °C, and radiation counts in kelvin: steps of their rounding may go on for ever.
+    rounding = moved_by <= 1e-9 * size + 4.0 * absolute + 4e-13
+    if np.count_nonzero(close | rounding):
         # Newton's steps shrink as squares: the next one would be moved³/before² at most.
         ratio = moved_by / before
         small = moved_by * (ratio * ratio) <= 1e-14 * size + 0.25 * absolute
-        last |= close & (small | ((ratio >= 0.5) & (moved_by <= 1e-9 * size)))
+        last |= (close & small) | ((ratio >= 0.5) & np.isfinite(ratio) & rounding)
     elif not np.count_nonzero(last):
         return None
     return last
