@@ -57,10 +57,10 @@ class CollocatedPort(CollocatedReadings):
         self.N, self.rule = N, rule(N, int(self.shape) if self.solid else None)
         m, d = int(self.shape), self.d
         if self.solid:
-            self.stretch = np.broadcast_to(d * d / 4.0, (N, len(d)))
+            self.stretch = np.zeros((N, len(d))) + d * d / 4.0
         else:
             r = self._radius(self.rule.x[:, None])
-            self.stretch = self.W * self.W * (r * r if m == 1 else (r * r) * (r * r)) if m else np.broadcast_to(d * d, (N, len(d)))
+            self.stretch = self.W * self.W * (r * r if m == 1 else (r * r) * (r * r)) if m else np.zeros((N, len(d))) + d * d
 
     def start(self) -> Array:
         """See ``Port``."""
@@ -218,8 +218,7 @@ class CollocatedPort(CollocatedReadings):
         port.side = None if self.side is None else self.side.take(rows)
         if self.N:
             port.N, port.rule = self.N, self.rule
-            flat = self.stretch.strides[0] == 0
-            port.stretch = np.broadcast_to(self.stretch[0, rows], (self.N, len(rows))) if flat else self.stretch[:, rows]
+            port.stretch = self.stretch[:, rows]
         return port
 
 

@@ -49,6 +49,7 @@ class Ready:
         if bounds is None:
             bounds = [None if mu is None else port.bound(mu) for mu, port in zip(self.known, self.ports, strict=True)]
         self.bounds = bounds
+        self.rounding = 4e-16 * np.abs(network.zero)
 
     def take(self, rows: np.ndarray, state: State) -> Ready:
         """The same for some of the cases, whose state is given."""
@@ -75,8 +76,8 @@ class Ready:
 def newton(network: Network, border: Border, state: State, near: State | None = None) -> Outcome:
     """From ``state``, which is changed, to the steady state of every case; or, where given, until it is surely at ``near``."""
     n = len(network.zero)
-    status = np.full(n, Status.NOT_CONVERGED, dtype=np.int8)
     steps = np.zeros(n, dtype=np.int8)
+    status = steps + np.int8(Status.NOT_CONVERGED)
     sought = border.control is not None
     rising = np.full(n, np.nan)
     live: np.ndarray | None = None  # None: everyone
@@ -87,7 +88,7 @@ def newton(network: Network, border: Border, state: State, near: State | None = 
     for step in range(MOST_STEPS):
         control = border.opening if step == 0 and border.opening is not None else border.control
         moved, moved_by, size, bad, slope = _step(ready, control, here)
-        settled = _settled(moved_by, size, before, ready.network.zero)
+        settled = _settled(moved_by, size, before, ready.rounding)
         if near is not None:
             arrived = _arrived(ready, moved, near if live is None else near.take(live), size)
             settled = arrived if settled is None else settled | arrived
@@ -111,7 +112,7 @@ def newton(network: Network, border: Border, state: State, near: State | None = 
                 done = done & open_rows
             count = int(np.count_nonzero(done))
             if count:
-                ends = np.full(len(done), Status.SOLVED, dtype=np.int8)
+                ends = np.zeros(len(done), dtype=np.int8)  # solved
                 if lost is not None:
                     ends[lost] = Status.NOT_CONVERGED
                 if bad is not None:
@@ -172,20 +173,17 @@ def _ease(ready: Ready, state: State) -> None:
     state.mu[-1] = np.where((share > 0.02) & (share < 1.5), state.mu[-1] * share, state.mu[-1])
 
 
-def _settled(moved_by: Array, size: Array, before: Array, zero: Array) -> np.ndarray | None:
-    """Where a step was the last one needed; None where it was nowhere."""
-    absolute = 4e-16 * np.abs(zero)
-    close = moved_by <= 1e-6 * size
-    last = moved_by <= 2e-13 * size + absolute
-    # Laws are given temperatures in °C, and radiation counts in kelvin: steps of their rounding may go on for ever.
-    rounding = moved_by <= 1e-9 * size + 4.0 * absolute + 4e-13
-    if np.count_nonzero(close | rounding):
-        # Newton's steps shrink as squares: the next one would be moved³/before² at most.
-        ratio = moved_by / before
-        small = moved_by * (ratio * ratio) <= 1e-14 * size + 0.25 * absolute
-        last |= (close & small) | ((ratio >= 0.5) & np.isfinite(ratio) & rounding)
-    elif not np.count_nonzero(last):
+def _settled(moved_by: Array, size: Array, before: Array, rounding: Array) -> np.ndarray | None:
+    """Where a step was the last one needed; None where it was nowhere. ``rounding``: of a temperature in °C."""
+    near = moved_by <= 1e-6 * size + rounding
+    if not np.count_nonzero(near):
         return None
+    # Newton's steps shrink as squares: the next one would be moved³/before² at most.
+    ratio = moved_by / before
+    last = (moved_by * (ratio * ratio) <= 1e-14 * size + 0.25 * rounding) & (moved_by <= 1e-6 * size)
+    last |= moved_by <= 2e-13 * size + rounding
+    # Laws are given temperatures in °C, and radiation counts in kelvin: steps of their rounding may go on for ever.
+    last |= (ratio >= 0.5) & np.isfinite(ratio) & (moved_by <= 1e-9 * size + 4.0 * rounding + 4e-13)
     return last
 
 

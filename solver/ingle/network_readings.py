@@ -24,14 +24,16 @@ def peaks_of(part: Part) -> tuple[Reading, ...]:
 def judged(part: Part, tops: tuple[Reading, ...], ceiling: float) -> np.ndarray:
     """The part's status, with answers refused that lie on a floor or beyond the ceiling."""
     status, state = part.status.copy(), part.state
-    solved = status == Status.SOLVED
-    # Steps that do not settle beyond the ceiling are too hot whether they would or not.
-    high = solved | (status == Status.NOT_CONVERGED)
+    solved: np.ndarray | None = None
     for e, (element, top) in enumerate(zip(part.network.elements, tops, strict=True)):
         port = element.port
         hot = top.T + part.network.zero > ceiling
-        if np.count_nonzero(hot):
-            status[high & hot] = Status.TOO_HOT
+        if solved is None and (port.floors or np.count_nonzero(hot)):
+            solved = part.status == Status.SOLVED
+        if solved is None:
+            continue
+        # Steps that do not settle beyond the ceiling are too hot whether they would or not.
+        status[(solved | (part.status == Status.NOT_CONVERGED)) & hot] = Status.TOO_HOT
         if not port.floors:
             continue
         low = state.Tb[e] if port.solid else np.minimum(state.Ta[e], state.Tb[e])

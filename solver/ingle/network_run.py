@@ -98,7 +98,8 @@ def _sliced(problem: NetworkProblem, by_nodes: bool) -> list[tuple[np.ndarray, t
     """Rows with their cuts: thick round layers in slices of equal radius ratio."""
     n = len(problem)
     none = np.zeros((0, n))
-    if problem.shape == Shape.WALL or not any(collocated(problem.shape, layer, by_nodes) for layer in problem.layers):
+    first = 1 if problem.solid else 0
+    if problem.shape == Shape.WALL or not any(collocated(problem.shape, layer, by_nodes) for layer in problem.layers[first:]):
         return [(np.arange(n), (none,) * len(problem.layers))]
     most = RATIO[problem.shape]
     counts, radii = [], []

@@ -196,6 +196,8 @@ def _next(tries: _Tries, goal: Array | None, turn: int) -> Array:
 
 def traced(problem: NetworkProblem, scale: Array | None, parts: list[Part]) -> list[Part]:
     """The parts of a run, with every doubtful runaway settled by following its path."""
+    if not any(np.count_nonzero(part.status) for part in parts):
+        return parts  # all solved
     # Where only the sources curve, and upward, Newton's steps from cold stay below the state sought, so that a pivot that is not
     # positive on the way is proof.
     linear = is_linear(problem, (SourceLaw.EVEN, SourceLaw.SLOPED, SourceLaw.ARRHENIUS))
