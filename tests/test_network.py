@@ -130,8 +130,9 @@ def test_a_long_fin_keeps_its_digits() -> None:
 
 def test_more_nodes_converge_faster_than_any_power() -> None:
     """A hollow cylinder with Arrhenius source and k(T): each node gains about the same factor."""
-    from ingle.network_newton import cold, newton
+    from ingle.network_newton import newton
     from ingle.network_run import plain_border_of
+    from ingle.network_state import cold
     from ingle.network_sweep import build
 
     one = np.ones(1)

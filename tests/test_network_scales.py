@@ -178,3 +178,31 @@ def test_a_source_that_falls_never_runs_away() -> None:
     source = HeatSource(one, L.PER_SLOPED, 0.004 * one, 20.0 * one, driven=True)
     problem = body(Shape.WALL, source, NetworkFace(held=20.0 * one), 1)
     assert np.isinf(turning_scale(problem).scale).all()
+
+
+@pytest.mark.parametrize("shape", Shape)
+def test_a_conductivity_that_falls_to_nothing_ends_the_scale(shape: Shape) -> None:
+    """k₀(1 − βu), face held at u = 0: θ = λ/[2(m + 1)] at the middle, at most k₀/(2β) but for the floor's 1e-6 of it."""
+    beta, one = np.array([1e-3, 5e-2]), np.ones(2)
+    for slope in (None, 0.3 * beta, -0.3 * beta):
+        law = (L.EVEN, None, None) if slope is None else (L.SLOPED, slope, 20.0 * one)
+        layer = NetworkLayer(one, Conductivity(one, -beta, 20.0 * one), HeatSource(one, *law, driven=True))
+        problem = NetworkProblem(shape, (layer,), NetworkFace(), NetworkFace(held=20.0 * one), 20.0 * one)
+        turn = turning_scale(problem).scale
+        if slope is None:
+            assert turn == pytest.approx((shape + 1.0) / beta * (1.0 - 1e-6), rel=1e-4)
+        assert (solve_network(problem, (1.0 - 1e-4) * turn).status == Status.SOLVED).all()
+        assert np.isin(solve_network(problem, (1.0 + 1e-4) * turn).status, (Status.FLOORED_K, Status.RUNAWAY)).all()
+
+
+def test_a_limit_at_a_held_face_is_no_search() -> None:
+    """No source warms it: it is broken at once, or another limit, or none, governs."""
+    one = np.ones(2)
+    source = HeatSource(one, L.SLOPED, -0.001 * one, 20.0 * one, driven=True)
+    problem = body(Shape.WALL, source, NetworkFace(held=20.0 * one), 2)
+    found = allowable_scale(problem, (Limit(np.array([30.0, 10.0]), "right"), Limit(one * 50.0)))
+    assert found.governs.tolist() == [1, 0]
+    assert found.broken.tolist() == [-1, 0]
+    assert pytest.approx(50.0, rel=1e-11) == peak(solve_network(problem, found.scale)).T[0]
+    alone = allowable_scale(problem, (Limit(np.array([30.0, 10.0]), "right"),))
+    assert alone.never.tolist() == [True, False]

@@ -238,7 +238,11 @@ def solve(problem: Problem, q: tuple[Array, ...], guess: Array | None = None) ->
         held, R = problem.right.held, problem.right.resistance
         assert held is not None
         last = ends[-1]
-        exact = held if R is None else held + R * last.Q1 / problem.area_right
+        exact = held
+        if R is not None:
+            over = R / problem.area_right
+            # Beyond a resistance larger than the body's the heat is the small difference, and the march's own temperature the better.
+            exact = np.where(2.0 * over > _body_resistance(problem), last.T1, held + over * last.Q1)
         ends = (*ends[:-1], Ends(last.T0, last.Q0, exact, last.Q1))
     elif problem.structure.right == FaceKind.FILM:
         ends = (*ends[:-1], _by_its_film(problem, ends[-1]))

@@ -15,10 +15,10 @@ from functools import cached_property
 import numpy as np
 
 from ingle.fluids import KELVIN
-from ingle.network_newton import Status
 from ingle.network_problem import NetworkFace, NetworkLayer, NetworkProblem, Supply
 from ingle.network_readings import heats_of, judged, peaks_of, supplied_of, temperatures_of
 from ingle.network_run import Part, plain_border_of, run
+from ingle.network_state import Status
 from ingle.network_trace import traced
 from ingle.ports import Reading
 from ingle.shapes import Array, solid_volume, volume

@@ -4,7 +4,7 @@ from __future__ import annotations
 
 import numpy as np
 
-from ingle.network_newton import Control, Hold, State
+from ingle.network_state import Control, Hold, State
 from ingle.network_sweep import Network
 from ingle.ports import PortModel, Reading
 from ingle.shapes import Array

@@ -6,13 +6,13 @@ held at its target. Held temperatures make the path regular through its turning 
 
 from __future__ import annotations
 
-from collections.abc import Callable
 from dataclasses import dataclass
-from enum import IntEnum
 
 import numpy as np
 
-from ingle.network_sweep import Network, Sweep, sweep
+from ingle.network_border import border_rows, judge, small_solve
+from ingle.network_state import Border, Control, State, Status
+from ingle.network_sweep import Network, sweep
 from ingle.ports import Bound, PortModel
 from ingle.shapes import Array
 
@@ -25,127 +25,6 @@ SHORTENED = 1e300
 _NEAR = 0.02
 
 
-class Status(IntEnum):
-    """How a case ended."""
-
-    SOLVED = 0
-    RUNAWAY = 1  # the state reached from cold does not exist at this source
-    NO_OUTLET = 2  # heat can leave nowhere
-    NOT_CONVERGED = 3
-    FLOORED_K = 4  # a conductivity or resistivity that falls linearly would reach zero on the way
-    TOO_HOT = 5  # beyond ``CEILING``
-    UNRESOLVED = 6  # a layer spans more decay lengths than the finest mesh resolves
-
-
-@dataclass
-class State:
-    """Rises at the elements' faces, their insides, the ends' outermost surfaces, and the unknown multiples.
-
-    ``faces``: Ta, Tb of the first element, of the second and so on, by cases. ``surfaces`` count where a resistance lies before.
-    """
-
-    faces: Array
-    theta: list[Array | None]
-    surfaces: list[Array]
-    mu: list[Array]
-
-    @property
-    def Ta(self) -> Array:
-        """Rises at the left faces: elements × cases."""
-        return self.faces[0::2]
-
-    @property
-    def Tb(self) -> Array:
-        """Rises at the right faces: elements × cases."""
-        return self.faces[1::2]
-
-    def take(self, rows: np.ndarray) -> State:
-        """The state of some of the cases."""
-        theta = [None if x is None else x[:, rows] for x in self.theta]
-        return State(self.faces[:, rows], theta, [x[rows] for x in self.surfaces], [x[rows] for x in self.mu])
-
-    def put(self, rows: np.ndarray, other: State) -> None:
-        """Write another state into some of the cases."""
-        self.faces[:, rows] = other.faces
-        for mine, theirs in zip(self._lists(), other._lists(), strict=True):
-            mine[..., rows] = theirs
-
-    def follow(self, other: State, where: np.ndarray | None) -> None:
-        """Become another state, where asked."""
-        if where is None:
-            self.faces, self.theta, self.surfaces, self.mu = other.faces, other.theta, other.surfaces, other.mu
-            return
-        np.copyto(self.faces, other.faces, where=where)
-        for mine, theirs in zip(self._lists(), other._lists(), strict=True):
-            np.copyto(mine, theirs, where=where)
-
-    def _lists(self) -> list[Array]:
-        return [*(x for x in self.theta if x is not None), *self.surfaces, *self.mu]
-
-
-@dataclass(frozen=True)
-class Hold:
-    """A temperature that is held: its rise, and derivatives to each element's Ta, Tb and μ (None where it has none)."""
-
-    T: Array
-    a: list[Array | float | None]
-    b: list[Array | float | None]
-    l: list[Array | float | None]  # noqa: E741 - λ
-
-
-Control = Callable[[Network, State, list[Array], list[PortModel]], Hold]
-
-
-@dataclass(frozen=True)
-class Border:
-    """What multiplies the sources: groups with ``given`` and ``driven`` of each supply, and the scale where it is not sought.
-
-    ``control`` and ``target`` [rise]: λ is sought at which that temperature is the target. ``opening``: what is held instead in
-    the first step from cold, where the control may not feel the sources yet. ``by_nodes``: plane layers are collocated too; a
-    closed form jumps from mode to mode with the multiple, which nodes hold on to.
-    """
-
-    given: list[Array]
-    driven: list[bool]
-    scale: Array
-    control: Control | None = None
-    target: Array | None = None
-    opening: Control | None = None
-    by_nodes: bool = False
-
-    @property
-    def count(self) -> int:
-        """How many multiples are unknown."""
-        return len(self.given) + (self.control is not None)
-
-    @property
-    def nodes(self) -> bool:
-        """Whether plane layers are collocated."""
-        return self.by_nodes or len(self.given) > 0
-
-    def take(self, rows: np.ndarray) -> Border:
-        """The border of some of the cases."""
-        target = None if self.target is None else self.target[rows]
-        return Border([x[rows] for x in self.given], self.driven, self.scale[rows], self.control, target, self.opening, self.by_nodes)
-
-    def of(self, network: Network) -> list[int | None]:
-        """Which unknown multiplies each element."""
-        owners: list[int | None] = []
-        for element in network.elements:
-            source = element.port.source
-            free = len(self.given) if source.driven and self.control is not None else None
-            owners.append(source.group if source.group is not None else free)
-        return owners
-
-    def multiples(self, network: Network, state: State) -> list[Array]:
-        """μ of each element."""
-        one = np.ones_like(self.scale)
-        values = []
-        for element, owner in zip(network.elements, self.of(network), strict=True):
-            values.append(state.mu[owner] if owner is not None else (self.scale if element.port.source.driven else one))
-        return values
-
-
 @dataclass(frozen=True)
 class Outcome:
     """Where Newton's method ended. ``rising`` dλ/dT of the held temperature; NaN where none is held."""
@@ -154,44 +33,6 @@ class Outcome:
     status: np.ndarray
     steps: np.ndarray
     rising: Array
-
-
-def cold(network: Network, border: Border) -> State:
-    """Every temperature at the case's zero."""
-    elements = network.elements
-    n = len(network.zero)
-    zero = np.zeros(n)
-    state = State(
-        np.zeros((2 * len(elements), n)), [e.port.start() for e in elements], [np.zeros(n), np.zeros(n)],
-        [np.zeros(n) for _ in range(border.count)],
-    )  # fmt: skip
-    if border.given:
-        sums: list[Array | float] = [0.0] * len(border.given)
-        for element in elements:
-            group, weight = element.port.source.group, element.port.source.weight
-            if group is not None and weight is not None:
-                sums[group] = sums[group] + weight * (element.port.source.at(zero)[0] * element.port.volume())
-        for g, total in enumerate(sums):
-            state.mu[g] = border.scale * (border.given[g] / total) ** 2
-    return state
-
-
-def usable(network: Network, state: State) -> np.ndarray | None:
-    """False where a conductivity or resistivity lies on its floor; None where that cannot be."""
-    held: np.ndarray | None = None
-    for e, element in enumerate(network.elements):
-        port, Tb = element.port, state.faces[2 * e + 1]
-        if not port.floors:
-            continue
-        Ta = Tb if port.solid else state.faces[2 * e]
-        low, high = np.minimum(Ta, Tb), np.maximum(Ta, Tb)
-        inside = port.span(state.theta[e])
-        if inside is not None:
-            low, high = np.minimum(low, inside[0]), np.maximum(high, inside[1])
-        here = port.conductivity_usable(low, high)
-        if here is not None:
-            held = here if held is None else held & here
-    return held
 
 
 class Ready:
@@ -213,6 +54,7 @@ class Ready:
                 for mu, port in zip(self.known, self.ports, strict=True)
             ]
         self.bounds = bounds
+        self.rounding = 4e-16 * np.abs(network.zero)
 
     def take(self, rows: np.ndarray, state: State) -> Ready:
         """The same for some of the cases, whose state is given."""
@@ -239,8 +81,8 @@ class Ready:
 def newton(network: Network, border: Border, state: State, near: State | None = None) -> Outcome:
     """From ``state``, which is changed, to the steady state of every case; or, where given, until it is surely at ``near``."""
     n = len(network.zero)
-    status = np.full(n, Status.NOT_CONVERGED, dtype=np.int8)
     steps = np.zeros(n, dtype=np.int8)
+    status = steps + np.int8(Status.NOT_CONVERGED)
     sought = border.control is not None
     rising = np.full(n, np.nan)
     live: np.ndarray | None = None  # None: everyone
@@ -251,7 +93,7 @@ def newton(network: Network, border: Border, state: State, near: State | None = 
     for step in range(MOST_STEPS):
         control = border.opening if step == 0 and border.opening is not None else border.control
         moved, moved_by, size, bad, slope = _step(ready, control, here)
-        settled = _settled(moved_by, size, before, ready.network.zero)
+        settled = _settled(moved_by, size, before, ready.rounding)
         if near is not None:
             arrived = _arrived(ready, moved, near if live is None else near.take(live), size)
             settled = arrived if settled is None else settled | arrived
@@ -275,7 +117,7 @@ def newton(network: Network, border: Border, state: State, near: State | None = 
                 done = done & open_rows
             count = int(np.count_nonzero(done))
             if count:
-                ends = np.full(len(done), Status.SOLVED, dtype=np.int8)
+                ends = np.zeros(len(done), dtype=np.int8)  # solved
                 if lost is not None:
                     ends[lost] = Status.NOT_CONVERGED
                 if bad is not None:
@@ -336,18 +178,17 @@ def _ease(ready: Ready, state: State) -> None:
     state.mu[-1] = np.where((share > 0.02) & (share < 1.5), state.mu[-1] * share, state.mu[-1])
 
 
-def _settled(moved_by: Array, size: Array, before: Array, zero: Array) -> np.ndarray | None:
-    """Where a step was the last one needed; None where it was nowhere."""
-    absolute = 4e-16 * np.abs(zero)
-    close = moved_by <= 1e-6 * size
-    last = moved_by <= 2e-13 * size + absolute
-    if np.count_nonzero(close):
-        # Newton's steps shrink as squares: the next one would be moved³/before² at most.
-        ratio = moved_by / before
-        small = moved_by * (ratio * ratio) <= 1e-14 * size + 0.25 * absolute
-        last |= close & (small | ((ratio >= 0.5) & (moved_by <= 1e-9 * size)))
-    elif not np.count_nonzero(last):
+def _settled(moved_by: Array, size: Array, before: Array, rounding: Array) -> np.ndarray | None:
+    """Where a step was the last one needed; None where it was nowhere. ``rounding``: of a temperature in °C."""
+    near = moved_by <= 1e-6 * size + rounding
+    if not np.count_nonzero(near):
         return None
+    # Newton's steps shrink as squares: the next one would be moved³/before² at most.
+    ratio = moved_by / before
+    last = (moved_by * (ratio * ratio) <= 1e-14 * size + 0.25 * rounding) & (moved_by <= 1e-6 * size)
+    last |= moved_by <= 2e-13 * size + rounding
+    # Laws are given temperatures in °C, and radiation counts in kelvin: steps of their rounding may go on for ever.
+    last |= (ratio >= 0.5) & np.isfinite(ratio) & (moved_by <= 1e-9 * size + 4.0 * rounding + 4e-13)
     return last
 
 
@@ -371,9 +212,9 @@ def _step(
     bad, slope = swept.negatives, None
     moves: list[Array] = []
     if count:
-        M, short = _border_rows(network, border, control, state, multiples, models, swept, owners)
-        moves = _small_solve(M, short)
-        bad, slope = _judged(M, swept.negatives, len(border.given), border.control is not None)
+        M, short = border_rows(network, border, control, state, multiples, models, swept, owners)
+        moves = small_solve(M, short)
+        bad, slope = judge(M, swept.negatives, len(border.given), border.control is not None)
     elif bad is not None:
         bad = bad > 0
     move = np.empty(faces.shape)
@@ -382,7 +223,7 @@ def _step(
     after = faces + move
     biggest, size = np.maximum.reduce(np.abs(move), axis=0), np.maximum.reduce(np.abs(after), axis=0)
     if border.target is not None:
-        # Held faces do not move, while the multiple still does.
+        # A held temperature inside may be the only one that is not zero.
         size = np.maximum(size, np.abs(border.target))
     theta: list[Array | None] = []
     # The part of the step that no source grows too much over; None where it is whole in every case.
@@ -444,96 +285,3 @@ def _along(columns: list[Array], moves: list[Array]) -> Array:
     for column, move in zip(columns[1:], moves, strict=True):
         total = total + column * move
     return total
-
-
-def _border_rows(
-    network: Network, border: Border, control: Control | None, state: State, multiples: list[Array], models: list[PortModel],
-    swept: Sweep, owners: list[int | None],
-) -> tuple[list[list[Array]], list[Array]]:  # fmt: skip
-    """M and what is short: Σ M δμ = short, a row for each supply and one for the held temperature."""
-    count, groups = border.count, len(border.given)
-    zero = np.zeros_like(network.zero)
-    M: list[list[Array]] = []
-    short: list[Array] = []
-    for g in range(groups):
-        F, move, change = zero, zero, [zero] * count
-        for e, element in enumerate(network.elements):
-            source, model, owner = element.port.source, models[e], owners[e]
-            if source.group != g or source.weight is None or model.F is None or model.Fa is None or model.Fb is None:
-                continue
-            w = source.weight
-            F = F + w * model.F
-            move = move + w * (model.Fa * swept.a[e][0] + model.Fb * swept.b[e][0])
-            for j in range(count):
-                change[j] = change[j] + w * (model.Fa * swept.a[e][j + 1] + model.Fb * swept.b[e][j + 1])
-            if owner is not None and model.Fl is not None:
-                change[owner] = change[owner] + w * model.Fl
-        per = (border.given[g] / F) ** 2
-        sought = border.control is not None and border.driven[g]
-        scale = state.mu[groups] if sought else (border.scale if border.driven[g] else 1.0)
-        aim = scale * per
-        row = [2.0 * aim / F * x for x in change]
-        row[g] = row[g] + 1.0
-        if sought:
-            row[groups] = row[groups] - per
-        M.append(row)
-        short.append(aim - state.mu[g] - 2.0 * aim / F * move)
-    if control is not None and border.target is not None:
-        hold = control(network, state, multiples, models)
-        T, row = hold.T, [zero] * count
-        for e, owner in enumerate(owners):
-            for derivative, columns in ((hold.a[e], swept.a[e]), (hold.b[e], swept.b[e])):
-                if derivative is not None:
-                    T = T + derivative * columns[0]
-                    row = [x + derivative * column for x, column in zip(row, columns[1:], strict=True)]
-            slope = hold.l[e]
-            if owner is not None and slope is not None:
-                row[owner] = row[owner] + slope
-        M.append(row)
-        short.append(border.target - T)
-    return M, short
-
-
-def _small_solve(M: list[list[Array]], short: list[Array]) -> list[Array]:
-    if len(M) == 1:
-        return [short[0] / M[0][0]]
-    if len(M) == 2:
-        (a, b), (c, d) = M
-        det = a * d - b * c
-        return [(d * short[0] - b * short[1]) / det, (a * short[1] - c * short[0]) / det]
-    matrix = np.stack([np.stack(row, axis=-1) for row in M], axis=-2)
-    right = np.stack(short, axis=-1)[..., None]
-    usable = np.isfinite(matrix).all(axis=(1, 2)) & (np.abs(np.linalg.det(np.nan_to_num(matrix))) > 0.0)
-    safe = np.where(usable[:, None, None], matrix, np.eye(len(M)))
-    solved = np.where(usable[:, None, None], np.linalg.solve(safe, right), np.nan)
-    return [solved[:, j, 0] for j in range(len(M))]
-
-
-def _determinant(M: list[list[Array]], size: int) -> Array | float:
-    if size == 0:
-        return 1.0
-    if size == 1:
-        return M[0][0]
-    if size == 2:
-        return M[0][0] * M[1][1] - M[0][1] * M[1][0]
-    matrix = np.stack([np.stack(row[:size], axis=-1) for row in M[:size]], axis=-2)
-    return np.asarray(np.linalg.det(np.nan_to_num(matrix)))
-
-
-def _judged(
-    M: list[list[Array]], negatives: np.ndarray | None, groups: int, sought: bool
-) -> tuple[np.ndarray | None, Array | None]:  # fmt: skip
-    """Where the state is unstable at its fixed inputs (None for nowhere), and dλ/dT where λ is sought.
-
-    A supply that is fixed can make one otherwise unstable mode stable (and the reverse): the sign of its border counts.
-    """
-    inner = _determinant(M, groups)
-    if negatives is None:
-        stable = np.asarray(inner > 0.0)
-    else:
-        stable = (negatives <= groups) & (np.where(negatives % 2 == 0, inner, -inner) > 0.0)
-    if not sought:
-        return (None if np.count_nonzero(stable) == stable.size else ~stable), None
-    slope = inner / _determinant(M, groups + 1)
-    # While a temperature is held nothing runs away; an unstable state is told by a falling scale.
-    return None, np.where(stable, slope, -np.abs(slope))

@@ -5,8 +5,8 @@ from __future__ import annotations
 import numpy as np
 
 from ingle.fluids import KELVIN
-from ingle.network_newton import Status
 from ingle.network_run import Part
+from ingle.network_state import Status
 from ingle.ports import Reading
 from ingle.shapes import Array
 
@@ -24,12 +24,16 @@ def peaks_of(part: Part) -> tuple[Reading, ...]:
 def judged(part: Part, tops: tuple[Reading, ...], ceiling: float) -> np.ndarray:
     """The part's status, with answers refused that lie on a floor or beyond the ceiling."""
     status, state = part.status.copy(), part.state
-    solved = status == Status.SOLVED
+    solved: np.ndarray | None = None
     for e, (element, top) in enumerate(zip(part.network.elements, tops, strict=True)):
         port = element.port
         hot = top.T + part.network.zero > ceiling
-        if np.count_nonzero(hot):
-            status[solved & hot] = Status.TOO_HOT
+        if solved is None and (port.floors or np.count_nonzero(hot)):
+            solved = part.status == Status.SOLVED
+        if solved is None:
+            continue
+        # Steps that do not settle beyond the ceiling are too hot whether they would or not.
+        status[(solved | (part.status == Status.NOT_CONVERGED)) & hot] = Status.TOO_HOT
         if not port.floors:
             continue
         low = state.Tb[e] if port.solid else np.minimum(state.Ta[e], state.Tb[e])
@@ -138,8 +142,10 @@ def _heats(part: Part) -> tuple[list[Array], list[Array], Array]:
         surface = T if end.R is None or end.law is None else state.surfaces[side]
         P, B, A = (total + x for x in end.relation(T, surface))
         resistance = np.minimum(P / np.where(B > 0.0, B, 1e-300), 1e290)
-        # What the rounding of a temperature in °C makes of the law's flux.
+        # What the rounding of a temperature in °C makes of the law's flux, or of that through a resistance to a held one.
         noise = 0.0 if end.law is None else 4e-16 * B * (np.abs(surface) + np.abs(end.zero) + KELVIN)
+        if end.held is not None:
+            noise = 4e-16 * (np.abs(T) + np.abs(end.zero) + KELVIN) / np.where(P > 0.0, P, np.inf)
         ends.append((np.where(P > 0.0, A / np.where(P > 0.0, P, 1.0), 0.0), resistance, noise))
         if end.held is None and end.law is None and exact is None:
             flux = total if end.flux is None else end.flux

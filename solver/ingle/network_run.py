@@ -15,8 +15,9 @@ import numpy as np
 from ingle.collocation import CollocatedPort
 from ingle.conductivities import Table
 from ingle.fluids import KELVIN
-from ingle.network_newton import Border, Outcome, State, Status, cold, newton, usable
+from ingle.network_newton import Outcome, newton
 from ingle.network_problem import NetworkProblem
+from ingle.network_state import Border, State, Status, cold, usable
 from ingle.network_sweep import Network, build, collocated, with_nodes
 from ingle.shapes import Array, Shape
 
@@ -97,7 +98,8 @@ def _sliced(problem: NetworkProblem, by_nodes: bool) -> list[tuple[np.ndarray, t
     """Rows with their cuts: thick round layers in slices of equal radius ratio."""
     n = len(problem)
     none = np.zeros((0, n))
-    if problem.shape == Shape.WALL or not any(collocated(problem.shape, layer, by_nodes) for layer in problem.layers):
+    first = 1 if problem.solid else 0
+    if problem.shape == Shape.WALL or not any(collocated(problem.shape, layer, by_nodes) for layer in problem.layers[first:]):
         return [(np.arange(n), (none,) * len(problem.layers))]
     most = RATIO[problem.shape]
     counts, radii = [], []
@@ -189,7 +191,7 @@ def _from(
     # On a floor there is no answer to refine.
     rough = solved & _unresolved(whole)
     if np.count_nonzero(rough):
-        held = usable(network, state)
+        held = usable(network, border, state)
         rough = rough if held is None else rough & held
     if crossed is None and not np.count_nonzero(rough):
         return [whole]

@@ -10,19 +10,23 @@ from dataclasses import dataclass, replace
 
 import numpy as np
 
+from ingle.heat_sources import SourceLaw
 from ingle.network import NetworkState, peak, solve_network
 from ingle.network_controls import face, hottest, middle
-from ingle.network_newton import Border, Control, State, Status, cold, newton, usable
+from ingle.network_newton import newton
 from ingle.network_problem import NetworkProblem
 from ingle.network_run import Part, run
+from ingle.network_state import Border, Control, State, Status, cold, usable
 from ingle.network_sweep import collocated
-from ingle.network_trace import FAR, follow, held_border, is_linear, refollowing, some, start_of_path
+from ingle.network_trace import FAR, follow, held_border, is_linear, some, start_of_path
 from ingle.network_unique import strides
 from ingle.network_walk import walked
 from ingle.shapes import Array
 
 RUNAWAY = -1  # governs: the turning point, not a limit
 _POLISH = 8
+# Halves a bracket of a twentieth to 1e-4.
+_HALVINGS = 9
 
 
 @dataclass(frozen=True)
@@ -81,9 +85,18 @@ def allowable_scale(problem: NetworkProblem, limits: tuple[Limit, ...]) -> Allow
     with np.errstate(all="ignore"):
         beyond = np.zeros(n, dtype=bool)
         unsure = np.zeros(n, dtype=bool)
+        unreachable = np.zeros(n, dtype=bool)
         held: list[tuple[int, Part]] = []
         for number, limit in enumerate(limits):
             given = ~np.isnan(limit.value)
+            outright = _held_outright(problem, limit)
+            if outright is not None:
+                T, direct = outright
+                # No source warms such a face.
+                passed = direct & (limit.value < T) & (broken < 0)
+                broken[passed] = number
+                unreachable |= direct & given
+                given &= ~direct
             count = np.count_nonzero(given)
             if not count:
                 continue
@@ -97,7 +110,8 @@ def allowable_scale(problem: NetworkProblem, limits: tuple[Limit, ...]) -> Allow
                 lower = rises & (found < scale[rows])
                 scale[rows[lower]], governs[rows[lower]] = found[lower], number
                 held.append((number, part))
-        doubt = np.flatnonzero(unsure)
+        beyond |= unreachable & (governs < 0)
+        doubt = np.flatnonzero(unsure & (broken < 0))
         if len(doubt):
             _check_sourceless(problem, limits, doubt, broken)
             beyond[doubt[broken[doubt] < 0]] = True
@@ -114,20 +128,30 @@ def allowable_scale(problem: NetworkProblem, limits: tuple[Limit, ...]) -> Allow
         if len(rows):
             most = turning_scale(problem.take(rows))
             sooner = ~(most.scale > scale[rows]) | (governs[rows] < 0)
-            # A limit found on the far side of a turning point does not count, but it may also be passed on this side.
+            # A limit found on the far side of a turning point does not count.
             take = rows[sooner]
             scale[take], governs[take] = most.scale[sooner], RUNAWAY
-            again = np.flatnonzero(unsure[take] & ~np.isnan(scale[take]))
-            if len(again):
-                take = take[again]
+            # One that was not found may still be the first to be passed.
+            take = rows[unsure[rows]]
+            if len(take):
                 found, which = walked(problem.take(take), [(limit.value[take], limit.control()) for limit in limits])
-                hit = which >= 0
+                hit = (which >= 0) & ~(found > scale[take])
                 scale[take[hit]], governs[take[hit]] = found[hit], which[hit]
     never = np.isinf(scale) & (governs == RUNAWAY)
     governs[never] = -2
     governs[broken >= 0] = broken[broken >= 0]
     scale[np.isinf(scale)] = np.nan
     return AllowableScale(scale, governs, broken, never)
+
+
+def _held_outright(problem: NetworkProblem, limit: Limit) -> tuple[Array, np.ndarray] | None:
+    """The temperature at which a limit's face is held, and where it is without a resistance; None where it is not at all."""
+    if not isinstance(limit.where, str):
+        return None
+    side = problem.left if limit.where == "left" else problem.right
+    if side.held is None:
+        return None
+    return side.held, np.ones(len(problem), dtype=bool) if side.resistance is None else side.resistance == 0.0
 
 
 def _held(problem: NetworkProblem, limit: Limit, rows: np.ndarray | None) -> list[Part]:
@@ -212,7 +236,10 @@ def _doubted(
 
 
 def turning_scale(problem: NetworkProblem) -> TurningScale:
-    """The scale of the driven sources at the turning point, or first eigenvalue where all is linear; to 1e-6 of itself."""
+    """The scale of the driven sources at the turning point, or first eigenvalue where all is linear; to 1e-6 of itself.
+
+    Where a conductivity reaches its floor first: that scale, to 1e-4.
+    """
     n = len(problem)
     scale, rise, status = np.full(n, np.nan), np.full(n, np.nan), np.full(n, Status.NO_OUTLET, dtype=np.int8)
     if not problem.has_outlet:
@@ -223,6 +250,11 @@ def turning_scale(problem: NetworkProblem) -> TurningScale:
         for base in run(problem, Border(given, [False] * len(given), zero, by_nodes=True)):
             status[base.rows] = base.status
             good = base.status == Status.SOLVED
+            if not good.any():
+                continue
+            steady = good & _never_grows(problem)[base.rows]
+            scale[base.rows[steady]], rise[base.rows[steady]] = np.inf, np.inf
+            good &= ~steady
             if not good.any():
                 continue
             part = some(base, good)
@@ -247,10 +279,26 @@ def turning_scale(problem: NetworkProblem) -> TurningScale:
                 value[rows], tau[rows], again[rows] = _refined(here.take(rows), seed, turn.T0[rows], tau[rows], value[rows])
             rows = np.flatnonzero(again)
             if len(rows):
-                value[rows] = _followed_again(here.take(rows), some(part, again), turn.T0[rows], turn.tau[rows], turn.scale[rows])
+                value[rows] = _floored(here.take(rows), turn.scale[rows])
             value[endless] = np.inf
             scale[part.rows], rise[part.rows] = value, tau
     return TurningScale(scale, rise, status)
+
+
+def _never_grows(problem: NetworkProblem) -> np.ndarray:
+    """Where no source grows with temperature and no conductivity can fall to nothing, so that every scale has its one state."""
+    flat = np.full(len(problem), not problem.supplies)
+    for layer in problem.layers:
+        source, k = layer.source, layer.conductivity
+        if source.law == SourceLaw.SLOPED and source.slope is not None:
+            flat &= source.slope <= 0.0
+        elif source.law == SourceLaw.PER_SLOPED and source.slope is not None:
+            flat &= source.slope >= 0.0
+        elif source.law != SourceLaw.EVEN:
+            flat &= False
+        if k.slope is not None:
+            flat &= k.slope >= 0.0
+    return flat
 
 
 def _refined(problem: NetworkProblem, seed: Part, T0: Array, tau: Array, scale: Array) -> tuple[Array, Array, np.ndarray]:
@@ -276,7 +324,7 @@ def _refined(problem: NetworkProblem, seed: Part, T0: Array, tau: Array, scale: 
             outcome = newton(part.network, replace(edge, target=T0[rows] + trial), state)
             state = outcome.state
             D_new = outcome.rising * trial / state.mu[-1]
-            held = usable(part.network, state)
+            held = usable(part.network, edge, state)
             fine = open_rows & (outcome.status == Status.SOLVED) & np.isfinite(D_new)
             fine = fine if held is None else fine & held
             change = (D_new - D) / np.where(step == 0.0, 1.0, step)
@@ -288,14 +336,24 @@ def _refined(problem: NetworkProblem, seed: Part, T0: Array, tau: Array, scale: 
     return scale, tau, loose
 
 
-def _followed_again(problem: NetworkProblem, base: Part, T0: Array, tau: Array, scale: Array) -> Array:
-    """λ where a conductivity reaches its floor, by following the whole path again on meshes fine enough just below it."""
-    scale = scale.copy()
-    border = held_border(problem, len(tau))
-    for part in refollowing(problem, base, T0 + 0.99 * tau):
-        turn = follow(part.network, border.take(part.rows), part.state, None)
-        scale[part.rows[turn.turned]] = turn.scale[turn.turned]
-    return scale
+def _floored(problem: NetworkProblem, scale: Array) -> Array:
+    """λ where a conductivity reaches its floor: between a scale that has an answer and one that has none; NaN where that fails.
+
+    The temperature there is a square root of place, which no mesh resolves well; the answers themselves say where they end.
+    """
+    exists = (Status.SOLVED, Status.UNRESOLVED)
+    low, high = 0.975 * scale, 1.025 * scale
+    found = (solve_network(problem, low).status == Status.SOLVED) & ~np.isin(solve_network(problem, high).status, exists)
+    rows = np.flatnonzero(found)
+    part = problem.take(rows)
+    low, high = low[rows], high[rows]
+    for _ in range(_HALVINGS):
+        middle = (low + high) / 2.0
+        solved = np.isin(solve_network(part, middle).status, exists)
+        low, high = np.where(solved, middle, low), np.where(solved, high, middle)
+    value = np.full(len(scale), np.nan)
+    value[rows] = (low + high) / 2.0
+    return value
 
 
 def _eigenvalue(base: Part, border: Border) -> Array:

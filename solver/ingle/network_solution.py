@@ -11,8 +11,8 @@ from ingle import network
 from ingle.allowable import BROKEN_WITHOUT_SOURCE, NEVER_REACHED, NO_LIMIT, NOT_FOUND, Allowable
 from ingle.network import NetworkState, shape_sum, solve_network
 from ingle.network_cases import Driven, network_of
-from ingle.network_newton import Status as Ended
 from ingle.network_scales import RUNAWAY, Limit, allowable_scale
+from ingle.network_state import Status as Ended
 from ingle.shapes import MEASURE, Array
 from ingle.solution import ABSOLUTE_ZERO, Heats, Solution, Status
 from ingle.sources import Conductor, Source

@@ -14,9 +14,10 @@ import numpy as np
 
 from ingle.heat_sources import SourceLaw
 from ingle.network_controls import middle
-from ingle.network_newton import Border, State, Status, newton, usable
+from ingle.network_newton import newton
 from ingle.network_problem import NetworkProblem, Supply
 from ingle.network_run import Part, run, transferred
+from ingle.network_state import Border, State, Status, usable
 from ingle.network_sweep import Network
 from ingle.network_unique import Strides, maybe_another, strides
 from ingle.shapes import Array
@@ -111,12 +112,14 @@ def follow(network: Network, border: Border, base: State, goal: Array | None, st
     kept, final = state.take(np.arange(n)), state.take(np.arange(n))  # where the next try starts; the last usable one
     turned, reached, floored = np.zeros(n, dtype=bool), np.zeros(n, dtype=bool), np.zeros(n, dtype=bool)
     live = np.arange(n)
+    falls = any(element.port.floors for element in network.elements)
     for turn in range(_MOST_TURNS):
         here = kept.take(live)
-        outcome = newton(network.take(live), replace(border.take(live), target=T0[live] + tau[live]), here)
+        net, edge = network.take(live), replace(border.take(live), target=T0[live] + tau[live])
+        outcome = newton(net, edge, here)
         scale = here.mu[-1]
         D = outcome.rising * tau[live] / scale
-        free = usable(network.take(live), here)
+        free = usable(net, edge, here)
         held = np.ones(len(live), dtype=bool) if free is None else free
         sound = (outcome.status == Status.SOLVED) & np.isfinite(D) & (scale > 0.0) & held
         over = np.zeros(len(live), dtype=bool) if goal is None else sound & (scale >= goal[live])
@@ -153,7 +156,11 @@ def follow(network: Network, border: Border, base: State, goal: Array | None, st
         # A bracket that closes on a λ that grows without end is no turning point.
         endless = flat & (tries.D_low[live] > 0.5) & ~floored[live] & ~(sound & (np.abs(D) <= _FLAT))
         turned[live[flat & ~at_goal & ~endless]] = True
-        tries.tau[live[endless]] = np.inf
+        # Where the steps fail long before any solid would melt, that is a conductivity near its floor, or not known.
+        early = endless & (low < FAR / 10.0)
+        tries.tau[live[endless & ~early]] = np.inf
+        if falls:
+            turned[live[early]] = floored[live[early]] = True
         far = up & (tau[live] >= FAR) & ((D > 0.5) | (tau[live] >= _SATURATED))
         saturated = live[far & (D < 1e-2)]
         turned[saturated] = True
@@ -198,6 +205,8 @@ def _next(tries: _Tries, goal: Array | None, turn: int) -> Array:
 
 def traced(problem: NetworkProblem, scale: Array | None, parts: list[Part]) -> list[Part]:
     """The parts of a run, with every doubtful runaway settled by following its path."""
+    if not any(np.count_nonzero(part.status) for part in parts):
+        return parts  # all solved
     # Where only the sources curve, and upward, Newton's steps from cold stay below the state sought, so that a pivot that is not
     # positive on the way is proof.
     linear = is_linear(problem, (SourceLaw.EVEN, SourceLaw.SLOPED, SourceLaw.ARRHENIUS))
@@ -221,6 +230,13 @@ def traced(problem: NetworkProblem, scale: Array | None, parts: list[Part]) -> l
         if not good.all():
             settled.append(some(base, ~good))
             base = some(base, good)
+        held = usable(base.network, base.border, base.state)
+        if held is not None and not held.all():
+            # On its floor before any source: warmer states are no better.
+            floored = some(base, ~held)
+            floored.status[:] = Status.FLOORED_K
+            settled.append(floored)
+            base = some(base, held)
         if not len(base.rows):
             continue
         settled += _settled(driven.take(base.rows), base, coarse=True)
@@ -237,6 +253,7 @@ def _settled(problem: NetworkProblem, base: Part, coarse: bool) -> list[Part]:
     turn = follow(base.network, held_border(problem, n), base.state, one, strides(problem))
     status = np.where(turn.turned, Status.RUNAWAY, np.where(turn.reached, Status.SOLVED, Status.NOT_CONVERGED)).astype(np.int8)
     status[~turn.turned & ~turn.reached & (turn.tau >= FAR)] = Status.TOO_HOT
+    status[turn.floored] = Status.FLOORED_K
     fixed = Border([supply.given for supply in supplies], [False] * len(supplies), one)
     found = turn.state
     state = State(found.faces, found.theta, found.surfaces, found.mu[: len(supplies)])

@@ -13,9 +13,9 @@ import numpy as np
 
 from ingle.conductivities import Conductivity, Table
 from ingle.heat_sources import HeatSource, SourceLaw
-from ingle.network_newton import Status
 from ingle.network_problem import NetworkLayer, NetworkProblem
 from ingle.network_run import Part, plain_border_of, run
+from ingle.network_state import Status
 from ingle.shapes import Array
 
 _BENDING = (SourceLaw.TABLE, SourceLaw.PER_TABLE, SourceLaw.PER_SLOPED, SourceLaw.ARRHENIUS)

@@ -12,9 +12,10 @@ from dataclasses import replace
 import numpy as np
 
 from ingle.fluids import KELVIN
-from ingle.network_newton import Border, Control, State, Status, newton, usable
+from ingle.network_newton import newton
 from ingle.network_problem import NetworkProblem
 from ingle.network_run import Part, run
+from ingle.network_state import Border, Control, State, Status, usable
 from ingle.network_sweep import Network
 from ingle.network_trace import FAR, held_border, some, start_of_path
 from ingle.network_unique import strides
@@ -71,7 +72,7 @@ def _walk(problem: NetworkProblem, base: Part, limits: Sequence[Watched]) -> tup
         tau = np.where(np.isfinite(high[live]), (low[live] + high[live]) / 2.0, low[live] + step[live])
         here, mesh, edge = kept.take(live), network.take(live), border.take(live)
         outcome = newton(mesh, replace(edge, target=T0[live] + tau), here)
-        free = usable(mesh, here)
+        free = usable(mesh, edge, here)
         sound = (outcome.status == Status.SOLVED) & (here.mu[-1] > scale_low[live]) & (outcome.rising > 0.0)
         sound = sound if free is None else sound & free
         excess, limit = _passed(mesh, edge, here, [(value[live], control) for value, control in limits])

@@ -116,14 +116,13 @@ class PlanePort(Port):
         if model is None:
             found = Reading(highest, s)
         else:
-            assert model.al is not None
-            assert model.bl is not None
+            by_mu = 0.0 if model.al is None or model.bl is None else np.where(right, model.bl, model.al)
             per = np.where(inside, np.where(right, Qb, Qa) / (self.k * top), 0.0)
             kept, drop = np.where(inside, q / top, 1.0), np.where(inside, rise / top, 0.0)
             a = per * np.where(right, model.ba, model.aa) + np.where(right, 0.0, kept)
             b = per * np.where(right, model.bb, model.ab) + np.where(right, kept, 0.0)
             own = drop * (self.A1 + self.S1 * (T + rise / 2.0))
-            found = Reading(highest, s, a, b, per * np.where(right, model.bl, model.al) - own)
+            found = Reading(highest, s, a, b, per * by_mu - own)
         # A long fin's √… is a small difference: its peak is read at its place.
         long = inside & (z < -1.0)
         if not np.count_nonzero(long):

@@ -2,7 +2,9 @@
 
 Three plane or hollow cylindrical layers with joints, a source that rises with temperature in the middle one, radiation and a film
 at the right face, a film at the left; with constant k, and with k(T) in all layers. Both run on the same machine in the same
-process. Run as a program: ``python tests/benchmarks/network_ratio.py``.
+process. Beside it what common bodies cost, one row and many, and their allowable scale in peaks. Times are of the processor, so
+that other work on the machine counts little; an addition of two one-element arrays is printed as a measure of it. Run as a
+program: ``python tests/benchmarks/network_ratio.py``.
 """
 
 from __future__ import annotations
@@ -13,8 +15,8 @@ from typing import Any
 
 import numpy as np
 from ingle.conductivities import Conductivity
-from ingle.heat_sources import HeatSource, SourceLaw, radiation
-from ingle.network import NetworkFace, NetworkLayer, NetworkProblem, Status, peak, solve_network
+from ingle.heat_sources import HeatSource, SideLoss, SourceLaw, radiation
+from ingle.network import NetworkFace, NetworkLayer, NetworkProblem, Status, Supply, peak, solve_network
 from ingle.network_scales import Limit, allowable_scale, turning_scale
 from ingle.shapes import Shape
 from scipy.integrate import solve_bvp
@@ -110,9 +112,9 @@ def measure_turning(n: int) -> dict[str, float]:
     turning_scale(problem.take(np.arange(50)))
 
     def timed(action: Callable[..., Any], *arguments: Any) -> tuple[Any, float]:
-        start = time.perf_counter()
+        start = time.process_time()
         result = action(*arguments)
-        return result, time.perf_counter() - start
+        return result, time.process_time() - start
 
     turn, turning = timed(turning_scale, problem)
     _, easy = timed(solve_network, problem, 0.6 * turn.scale)
@@ -123,36 +125,99 @@ def measure_turning(n: int) -> dict[str, float]:
     return dict(zip(names, values, strict=True))
 
 
+class Film:
+    """h(T − T_f)."""
+
+    linear = True
+
+    def __init__(self, film: np.ndarray, fluid: np.ndarray) -> None:
+        self.film, self.fluid = film, fluid
+
+    def __call__(self, T: np.ndarray, rows: np.ndarray) -> tuple[np.ndarray, np.ndarray]:
+        film = self.film[rows]
+        return film * (T - self.fluid[rows]), film + 0.0 * T
+
+
+def common(n: int) -> dict[str, NetworkProblem]:
+    """Bodies of everyday tables, each with a source that rises with temperature."""
+    draw = np.random.default_rng(3)
+    one, T = np.ones(n), draw.uniform(10.0, 40.0, n)
+    R, rho = draw.uniform(0.002, 0.01, n), 1.7e-8
+    copper = HeatSource(one / rho, SourceLaw.PER_SLOPED, 0.004 * one, 20.0 * one, None, None, True, 0, 2.0 * np.pi / rho * one)
+    film = NetworkFace(law=Film(draw.uniform(20.0, 60.0, n), T))
+    radiant = NetworkFace(law=FilmAndRadiation(draw.uniform(20.0, 60.0, n), T, draw.uniform(0.1, 0.9, n)))
+    wire = NetworkLayer(R, Conductivity(380.0 * one), copper, joint=1e-4 * one)
+    sleeve = NetworkLayer(0.3 * R, Conductivity(0.3 * one), HeatSource(0.0 * one))
+    current = Supply(draw.uniform(400.0, 600.0, n) * (R / 0.005) ** 1.5, True)
+    rising = HeatSource(draw.uniform(1e5, 3e5, n), SourceLaw.SLOPED, 0.003 * one, 20.0 * one, driven=True)
+    d = draw.uniform(0.01, 0.02, n)
+    slab = NetworkLayer(d, Conductivity(one), rising)
+    warm = NetworkLayer(d, Conductivity(one, 1e-3 * one, 20.0 * one), rising)
+    strip = NetworkLayer(10.0 * d, Conductivity(300.0 * one), rising, SideLoss(400.0 * one, draw.uniform(5.0, 20.0, n), T))
+    free, held = NetworkFace(), NetworkFace(held=T)
+    return {
+        "wire with a current": NetworkProblem(Shape.CYLINDER, (wire, sleeve), free, film, T, supplies=(current,)),
+        "solid winding, radiation": NetworkProblem(Shape.CYLINDER, (slab,), free, radiant, T),
+        "solid winding, k(T)": NetworkProblem(Shape.CYLINDER, (warm,), free, radiant, T),
+        "wall, film": NetworkProblem(Shape.WALL, (slab,), held, film, T),
+        "bar, held ends": NetworkProblem(Shape.WALL, (strip,), held, held, T),
+    }
+
+
+def best(action: Callable[[], Any], times: int) -> float:
+    """The shortest of some runs [s]."""
+    found = []
+    for _ in range(times):
+        start = time.process_time()
+        action()
+        found.append(time.process_time() - start)
+    return min(found)
+
+
+def measure_common(n: int, times: int) -> None:
+    x = np.ones(1)
+    addition = best(lambda: [x + x for _ in range(1000)], 5) * 1e3
+    for name, problem in common(n).items():
+        top = peak(solve_network(problem)).T
+        limits = (Limit(top + 10.0),)
+        allowable_scale(problem, limits)
+        one = best(lambda problem=problem: peak(solve_network(problem)), times)
+        allowing = best(lambda problem=problem, limits=limits: allowable_scale(problem, limits), times)
+        print(
+            f"{name}, {n} rows: {one / n * 1e6:.3g} us a row with its peak ({one / n / addition * 1e6:.3g} additions),"
+            f" allowable {allowing / one:.2f} peaks, answered {np.isfinite(top).mean():.3f}"
+        )
+
+
 def measure(sloped_k: bool, shape: Shape) -> dict[str, float]:
     problem = drawn(ROWS, sloped_k, shape)
     solve_network(problem.take(np.arange(50)))
-    start = time.perf_counter()
+    start = time.process_time()
     state = solve_network(problem)
-    each = (time.perf_counter() - start) / ROWS
+    each = (time.process_time() - start) / ROWS
     assert (state.status == Status.SOLVED).all()
-    start = time.perf_counter()
+    start = time.process_time()
     top = peak(state)
-    peaked = each + (time.perf_counter() - start) / ROWS
-    start = time.perf_counter()
+    peaked = each + (time.process_time() - start) / ROWS
+    start = time.process_time()
     errors = []
     for row in range(BVP_ROWS):
         T = by_collocation_of_scipy(problem, row)
         errors.append(np.max(np.abs(T - state.left[:, row])) / (top.T[row] - problem.coldest[row]))
-    slow = (time.perf_counter() - start) / BVP_ROWS
+    slow = (time.process_time() - start) / BVP_ROWS
     limit = Limit(np.full(ROWS, 120.0))
     allowable_scale(problem.take(np.arange(50)), (Limit(limit.value[:50]),))
-    start = time.perf_counter()
+    start = time.process_time()
     allowed = allowable_scale(problem, (limit,))
-    allowing = (time.perf_counter() - start) / ROWS
+    allowing = (time.process_time() - start) / ROWS
     few = problem.take(np.arange(2000))
-    start = time.perf_counter()
+    start = time.process_time()
     turning_scale(few)
-    turning = (time.perf_counter() - start) / 2000
+    turning = (time.process_time() - start) / 2000
     one = problem.take(np.array([0]))
-    start = time.perf_counter()
-    for _ in range(50):
-        solve_network(one)
-    alone = (time.perf_counter() - start) / 50
+    alone = best(lambda: peak(solve_network(one)), 60)
+    one_limit = (Limit(limit.value[:1]),)
+    alone_allowing = best(lambda: allowable_scale(one, one_limit), 30)
     return {
         "us a case": each * 1e6,
         "us with peak": peaked * 1e6,
@@ -162,10 +227,13 @@ def measure(sloped_k: bool, shape: Shape) -> dict[str, float]:
         "allowed": float(np.isfinite(allowed.scale).mean()),
         "turning over peak": turning / peaked,
         "us one case alone": alone * 1e6,
+        "its allowable over peak": alone_allowing / alone,
     }
 
 
 if __name__ == "__main__":
+    for rows, repeats in ((1, 60), (2_000, 5), (100_000, 2)):
+        measure_common(rows, repeats)
     print("Arrhenius, k(T), solid cylinder", {name: float(f"{value:.3g}") for name, value in measure_turning(2000).items()})
     for kind, sloped in (("constant k", False), ("k(T)", True)):
         for shape in (Shape.WALL, Shape.CYLINDER):
