@@ -13,13 +13,14 @@ import numpy as np
 from ingle.heat_sources import SourceLaw
 from ingle.network import NetworkState, peak, solve_network
 from ingle.network_controls import face, hottest, middle
+from ingle.network_kinks import sharpened, tabled
 from ingle.network_newton import newton
 from ingle.network_problem import NetworkProblem
 from ingle.network_run import Part, run
 from ingle.network_state import Border, Control, State, Status, cold, usable
 from ingle.network_sweep import collocated
 from ingle.network_trace import FAR, follow, held_border, is_linear, some, start_of_path
-from ingle.network_unique import strides
+from ingle.network_unique import bending, strides
 from ingle.network_walk import walked
 from ingle.shapes import Array
 
@@ -120,7 +121,9 @@ def allowable_scale(problem: NetworkProblem, limits: tuple[Limit, ...]) -> Allow
         beyond &= broken < 0
         if not is_linear(problem):
             # A limit found on a branch beyond a turning point is none.
-            elsewhere = _doubted(problem, _unlike_cold(held, governs), scale, limits, governs)
+            # Newton's steps from cold may come there too, over a bend of the source.
+            asked = np.flatnonzero(governs >= 0) if bending(problem) else _unlike_cold(held, governs)
+            elsewhere = _doubted(problem, asked, scale, limits, governs)
             scale[elsewhere], governs[elsewhere] = np.inf, -2
             unsure[elsewhere] = True
             beyond[elsewhere] = True
@@ -136,7 +139,11 @@ def allowable_scale(problem: NetworkProblem, limits: tuple[Limit, ...]) -> Allow
             if len(take):
                 found, which = walked(problem.take(take), [(limit.value[take], limit.control()) for limit in limits])
                 hit = (which >= 0) & ~(found > scale[take])
+                before = scale[take].copy(), governs[take].copy()
                 scale[take[hit]], governs[take[hit]] = found[hit], which[hit]
+                # The walk may have stepped over a turning point too.
+                over = np.isin(take, _doubted(problem, take[hit], scale, limits, governs))
+                scale[take[over]], governs[take[over]] = before[0][over], before[1][over]
     never = np.isinf(scale) & (governs == RUNAWAY)
     governs[never] = -2
     governs[broken >= 0] = broken[broken >= 0]
@@ -222,7 +229,7 @@ def _doubted(
     """Which of some cases have another state at the scale found than the one reached from cold."""
     doubted = np.zeros(len(scale), dtype=bool)
     if not len(rows):
-        return doubted
+        return np.flatnonzero(doubted)
     state = solve_network(problem.take(rows), scale[rows] * (1.0 - 1e-9))
     for number, limit in enumerate(limits):
         mine = governs[rows] == number
@@ -232,7 +239,7 @@ def _doubted(
         rise = np.abs(limit.value[rows] - problem.coldest[rows])
         off = ~(np.abs(T - limit.value[rows]) <= 1e-3 * rise + 1e-6)
         doubted[rows[mine & off & (state.status != Status.TOO_HOT)]] = True
-    return doubted
+    return np.flatnonzero(doubted)
 
 
 def turning_scale(problem: NetworkProblem) -> TurningScale:
@@ -277,6 +284,8 @@ def turning_scale(problem: NetworkProblem) -> TurningScale:
                     np.zeros(len(rows), dtype=np.int8), part.steps[rows], part.rising[rows],
                 )  # fmt: skip
                 value[rows], tau[rows], again[rows] = _refined(here.take(rows), seed, turn.T0[rows], tau[rows], value[rows])
+                if tabled(here):
+                    value[rows], tau[rows] = sharpened(here.take(rows), seed, turn.T0[rows], tau[rows], value[rows])
             rows = np.flatnonzero(again)
             if len(rows):
                 value[rows] = _floored(here.take(rows), turn.scale[rows])

@@ -19,7 +19,7 @@ from ingle.network_problem import NetworkProblem, Supply
 from ingle.network_run import Part, run, transferred
 from ingle.network_state import Border, State, Status, usable
 from ingle.network_sweep import Network
-from ingle.network_unique import Strides, maybe_another, strides
+from ingle.network_unique import Strides, bending, maybe_another, strides
 from ingle.shapes import Array
 
 _MOST_TURNS = 60
@@ -205,8 +205,8 @@ def _next(tries: _Tries, goal: Array | None, turn: int) -> Array:
 
 def traced(problem: NetworkProblem, scale: Array | None, parts: list[Part]) -> list[Part]:
     """The parts of a run, with every doubtful runaway settled by following its path."""
-    if not any(np.count_nonzero(part.status) for part in parts):
-        return parts  # all solved
+    if not bending(problem) and not any(np.count_nonzero(part.status) for part in parts):
+        return parts  # all solved, and there is no other state to be stepped over
     # Where only the sources curve, and upward, Newton's steps from cold stay below the state sought, so that a pivot that is not
     # positive on the way is proof.
     linear = is_linear(problem, (SourceLaw.EVEN, SourceLaw.SLOPED, SourceLaw.ARRHENIUS))

@@ -46,6 +46,11 @@ def strides(problem: NetworkProblem) -> Strides | None:
     return Strides(np.maximum(shortest / 4.0, reach / 40.0), 1.2 * reach)
 
 
+def bending(problem: NetworkProblem) -> bool:
+    """Whether a source's slope changes with temperature, so that there may be several states."""
+    return any(layer.source.law in _BENDING for layer in problem.layers)
+
+
 def maybe_another(problem: NetworkProblem, part: Part) -> np.ndarray:
     """The cases of a part that are solved, but for which a colder state is not ruled out."""
     solved: np.ndarray = part.status == Status.SOLVED
