@@ -11,9 +11,10 @@ from ingle_addin.book.archive import Archive
 from ingle_addin.book.errors import BookError
 from ingle_addin.book.formula import shifted, split
 from ingle_addin.book.parts import Parts, read_parts
+from ingle_addin.book.progress import PLANNING, READING, Progress, share
 from ingle_addin.book.quick import quick_scan
 from ingle_addin.book.refs import place_of
-from ingle_addin.book.scan import FormulaCell, Sheet, scan_sheet
+from ingle_addin.book.scan import MAX_CELLS, FormulaCell, Sheet, scan_sheet
 
 
 @dataclass(frozen=True)
@@ -50,18 +51,24 @@ class Book:
         return self.parts.sheets[sheet].name
 
 
-def open_book(path: Path) -> Book:
+def open_book(path: Path, progress: Progress | None = None) -> Book:
     """Read a workbook. Raises :class:`BookError` for whatever cannot be read in full and with safety."""
+    sheets: list[Sheet] = []
     with Archive(path) as archive:
         mark = fingerprint(path)
         parts = read_parts(archive)
-        sheets = [_scan(archive, sheet.part, parts) for sheet in parts.sheets]
+        left = MAX_CELLS
+        for index, sheet in enumerate(parts.sheets):
+            if progress is not None:
+                progress(f"reading {sheet.name}", share(READING, PLANNING, index / len(parts.sheets)))
+            sheets.append(_scan(archive, sheet.part, parts, left))
+            left -= sheets[-1].count
     return Book(path, mark, parts, sheets)
 
 
-def _scan(archive: Archive, part: str, parts: Parts) -> Sheet:
+def _scan(archive: Archive, part: str, parts: Parts, most: int) -> Sheet:
     content = archive.read(part)
-    return quick_scan(content, parts, archive.path, part) or scan_sheet([content], parts, archive.path, part)
+    return quick_scan(content, parts, archive.path, part, most) or scan_sheet([content], parts, archive.path, part, most)
 
 
 # In a column filled down most formulas differ by their own row number only: this stands for it.

@@ -15,19 +15,20 @@ from ingle_addin.book.book import Book, open_book
 from ingle_addin.book.computed import Computed
 from ingle_addin.book.errors import BookError
 from ingle_addin.book.insert import insert
+from ingle_addin.book.progress import WRITING, Progress
 from ingle_addin.book.report import Report
 from ingle_addin.book.rounds import compute
-from ingle_addin.book.save import check_target, place
+from ingle_addin.book.save import check_target, kind_of, place
 from ingle_addin.book.scan import Sheet
 from ingle_addin.book.splice import NotWritableError, Span, splice
-from ingle_addin.book.work import Progress, elements_of
+from ingle_addin.book.work import elements_of
 from ingle_addin.calls import SolveCalls
 from ingle_addin.cells import Cell
 
 
 def default_out(book: Path) -> Path:
     """``STEM.filled.xlsx`` beside the workbook (the suffix stays what it is)."""
-    return book.with_name(f"{book.stem}.filled{book.suffix}")
+    return book.with_name(f"{book.stem}.filled{kind_of(book)}")
 
 
 def fill(
@@ -52,12 +53,12 @@ def fill(
     target = book if in_place else default_out(book) if out is None else Path(out)
     if book.is_file():
         check_target(book, target, in_place=in_place)
-    with _no_collections():
-        opened = open_book(book)
+    with no_collections():
+        opened = open_book(book, progress)
         computed = compute(opened, functions, solve, progress, now)
         changes = [Changes.of(sheet, values) for sheet, values in zip(opened.sheets, computed.values, strict=True)]
         if progress is not None:
-            progress("writing", 0.9)
+            progress("writing", WRITING)
 
         def write(file: IO[bytes]) -> None:
             write_values(opened, changes, file)
@@ -67,7 +68,7 @@ def fill(
 
 
 @contextlib.contextmanager
-def _no_collections() -> Iterator[None]:
+def no_collections() -> Iterator[None]:
     """Without the search for cyclic garbage, of which there is none: among a million cells it takes a third of the time."""
     was_on = gc.isenabled()
     gc.disable()
@@ -90,7 +91,7 @@ def report_of(book: Book, computed: Computed, changed: int, out: Path | None, ba
         ordinary_cells=computed.ordinary_cells,
         changed_cells=changed,
         no_answers=tuple(computed.no_answers),
-        hidden=computed.hidden,
+        hidden=tuple(computed.hidden),
         not_computed=tuple(computed.not_computed),
         truncated=tuple(computed.truncated),
         backup=backup,

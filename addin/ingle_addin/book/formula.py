@@ -47,6 +47,10 @@ class UnreadableError(Exception):
     """A formula that cannot be taken apart; ``str`` is the reason, for people."""
 
 
+class VolatileError(UnreadableError):
+    """A formula whose value changes from one moment to the next."""
+
+
 @dataclass(frozen=True, slots=True)
 class Op:
     """An operator, or the white space beside it."""

@@ -63,6 +63,9 @@ KEPT_FUNCTIONS: Mapping[str, str] = {
     **dict.fromkeys(("SHEET", "SHEETS"), "it counts sheets"),
 }
 
+# What gives another value each time it is worked out.
+VOLATILE_FUNCTIONS = _words("RAND RANDBETWEEN RANDARRAY TODAY NOW")
+
 # The engine reckons in the 1900 date system only.
 DATE_FUNCTIONS = _words(
     """

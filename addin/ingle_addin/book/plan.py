@@ -133,7 +133,8 @@ class CallPlan:
 class Plan:
     """How every formula of one shape is computed.
 
-    ``keep`` is the reason for leaving the stored value, else None. ``whole`` formulas are a single call; ``array`` ones
+    ``keep`` is the reason for leaving the stored value, else None; ``volatile`` if that is because it changes from moment
+    to moment. ``whole`` formulas are a single call; ``array`` ones
     the engine must work out as one array; all others are rendered from ``pieces``. ``refs`` are all references, for
     following what rests on what.
     """
@@ -144,6 +145,7 @@ class Plan:
     whole: bool = False
     array: bool = False
     is_ingle: bool = False
+    volatile: bool = False
     refs: list[Ref] = field(default_factory=list)
 
 

@@ -36,7 +36,7 @@ _NAMED = {"amp": "&", "lt": "<", "gt": ">", "quot": '"', "apos": "'"}
 _ERRORS = {error.value.encode(): error for error in CellError}
 
 
-def quick_scan(content: bytes, parts: Parts, path: Path, part: str) -> Sheet | None:
+def quick_scan(content: bytes, parts: Parts, path: Path, part: str, most: int = MAX_CELLS) -> Sheet | None:
     """The sheet's cells, or None for the general scan to try. Raises :class:`BookError` for what is not well-formed."""
     if not _is_plain(content, path, part):
         return None
@@ -59,7 +59,7 @@ def quick_scan(content: bytes, parts: Parts, path: Path, part: str) -> Sheet | N
         count += 1
         row = int(digits)
         column = columns.get(letters) or columns.setdefault(letters, column_number(letters.decode()))
-        if count > MAX_CELLS or not column or row > MAX_ROW:
+        if count > most or not column or row > MAX_ROW:
             return None  # the general scan says what is wrong
         key = row << 14 | column - 1
         value: Cell = None
@@ -118,7 +118,7 @@ def quick_scan(content: bytes, parts: Parts, path: Path, part: str) -> Sheet | N
             right = column
         if row > bottom:
             bottom = row
-    sheet.bottom, sheet.right = bottom, right
+    sheet.bottom, sheet.right, sheet.count = bottom, right, count
     return sheet
 
 

@@ -5,18 +5,21 @@ from __future__ import annotations
 import datetime
 from collections import defaultdict
 from collections.abc import Collection
+from operator import itemgetter
 
 from ingle_addin.book.book import Book
 from ingle_addin.book.calling import Call
+from ingle_addin.book.collect import Collector
 from ingle_addin.book.computed import Computed
 from ingle_addin.book.dates import moment_of
 from ingle_addin.book.engine import Strange
 from ingle_addin.book.graph import Graph, Place
-from ingle_addin.book.grids import laid, plain, range_name, size_of, unanswered
-from ingle_addin.book.refs import MAX_COLUMN, Rect, cell_name, key_of, place_of
-from ingle_addin.book.report import NoAnswer, NotComputed, Truncated
+from ingle_addin.book.grids import laid, plain, range_name, size_of
+from ingle_addin.book.progress import WORKING, WRITING, Progress, share
+from ingle_addin.book.refs import Rect, cell_name, key_of, place_of
+from ingle_addin.book.report import Truncated
 from ingle_addin.book.scan import FormulaCell
-from ingle_addin.book.work import Progress, Work
+from ingle_addin.book.work import Work
 from ingle_addin.calls import Outcome, SolveCalls
 from ingle_addin.cells import Cell, CellError, Grid
 
@@ -35,14 +38,16 @@ def compute(
     solve: SolveCalls,
     progress: Progress | None = None,
     now: datetime.datetime | None = None,
+    *,
+    keep_volatile: bool = False,
 ) -> Computed:
     """Evaluate every formula of ``book``, whose cells are used up: their values become the computed ones.
 
     ``functions`` are the canonical names of the functions that ``solve`` answers; ``now`` is what TODAY and NOW mean.
-    Formulas that cannot be computed keep their stored value and are listed. Raises
-    :class:`~ingle_addin.book.errors.BookError` if the engine is missing or stops.
+    Formulas that cannot be computed keep their stored value and are listed; with ``keep_volatile`` so do those that give
+    another value each time. Raises :class:`~ingle_addin.book.errors.BookError` if the engine is missing or stops.
     """
-    work = Work(book, functions, now or datetime.datetime.now(), progress or _silent)
+    work = Work(book, functions, None if keep_volatile else now or datetime.datetime.now(), progress or _silent)
     try:
         work.prepare()
         return _Rounds(work, solve).run()
@@ -103,6 +108,7 @@ class _Rounds:
     # -- Rounds -------------------------------------------------------------------------------------------------------
 
     def run(self) -> Computed:
+        work = self._work
         count = 0
         limit = len(self._calls) + 2
         while True:
@@ -110,13 +116,15 @@ class _Rounds:
             if not self._solve_all(first=count == 0) and not self._stop_error_circles():
                 break
             count += 1
-            self._work.progress("solving", min(0.9, 0.3 + 0.1 * count))
+            work.progress("solving", share(WORKING, WRITING, 0.5 + 0.1 * count))
             if count == _PATIENCE or count > limit:
                 self._stop_circles([(call.sheet, call.key) for call in self._calls if call.moves and not call.stopped])
             if count > limit:
                 self._stop_unsettled()
             self._flush()
-        return self._collect()
+        result = Collector(work, self._calls, self._cells_of, lambda: self._graph).collect()
+        result.truncated = [note for _, note in sorted(self._truncated.values(), key=itemgetter(0))]
+        return result
 
     def _evaluate(self) -> None:
         work = self._work
@@ -126,7 +134,7 @@ class _Rounds:
         if refused:
             self._give_up(dict.fromkeys(refused, _NOT_READ))
         while True:
-            work.progress("calculating", 0.3)
+            work.progress("calculating", WORKING)
             work.engine.evaluate()
             strange: list[tuple[Place, str]] = []
             for sheet, keys in enumerate(work.engine_cells):
@@ -170,14 +178,11 @@ class _Rounds:
         }  # fmt: skip
 
     def _ring_text(self, ring: list[Place]) -> str:
-        names = [self._cell_text(place) for place in ring[:4]]
+        names = [self._work.cell_text(place) for place in ring[:4]]
         if len(ring) == 1:
             return f"{names[0]} rests on itself"
         more = f" and {len(ring) - 4} more" if len(ring) > 4 else ""
         return f"the cells go round in a circle: {', '.join(names)}{more}"
-
-    def _cell_text(self, place: Place) -> str:
-        return f"{self._book.name_of(place[0])}!{cell_name(place[1])}"
 
     def _give_up(self, reasons: dict[Place, str]) -> None:
         """Let these formulas keep their stored values, in the engine too."""
@@ -215,7 +220,7 @@ class _Rounds:
                     call.last = args
                 batches[call.name].append((call, args))
             for name, batch in batches.items():
-                self._work.progress(f"solving {len(batch):,} × {name}", 0.5)
+                self._work.progress(f"solving {len(batch):,} × {name}", share(WORKING, WRITING, 0.5))
                 outcomes = self._solve(name, [args for _, args in batch])
                 if len(outcomes) != len(batch):
                     raise RuntimeError(f"{name}: {len(outcomes)} outcomes for {len(batch)} calls")
@@ -302,75 +307,3 @@ class _Rounds:
             if call.moves and not call.stopped
         }
         self._give_up(reasons)
-
-    # -- Results ------------------------------------------------------------------------------------------------------
-
-    def _collect(self) -> Computed:
-        work, book = self._work, self._book
-        result = Computed([{} for _ in book.sheets])
-        for sheet, keys in enumerate(work.engine_cells):
-            values = work.values[sheet]
-            result.values[sheet].update((key, plain(values.get(key))) for key in keys)
-        answers: dict[tuple[int, int, int], NoAnswer] = {}
-        for call in self._calls:
-            place = (call.sheet, call.key)
-            if place in work.kept:
-                continue
-            result.ingle.add(place)
-            cell = self._cells_of.get(id(call))
-            if cell is not None:
-                keys = [cell.key] if cell.kind != "array" else [key for key, _ in laid(call.grid, cell.rect, False)]  # type: ignore[arg-type]
-                values = work.values[call.sheet]
-                result.values[call.sheet].update((key, values[key]) for key in keys)
-            if cell is None and not isinstance(work.values[call.sheet].get(call.key), CellError):
-                # A call in a branch not taken, or whose error its formula answers for: the cell shows a value.
-                result.hidden += any(True for _ in unanswered(call.grid, call.reasons))
-                continue
-            self._note_unanswered(call, cell, answers)
-        result.no_answers = [answers[key] for key in sorted(answers)]
-        result.truncated = [note for _, note in sorted(self._truncated.values(), key=lambda each: each[0])]
-        kept = dict(sorted(work.kept.items()))
-        result.not_computed = [self._not_computed(place, reason, rests=False) for place, reason in kept.items()]
-        if kept:
-            resting = self._graph.dependents(self._filled(kept))
-            result.not_computed += [
-                self._not_computed(place, f"rests on {self._cell_text(cause)}, which was not computed", rests=True)
-                for place, cause in sorted(resting.items())
-            ]
-        formulas = sum(len(sheet.formulas) for sheet in book.sheets)
-        result.ordinary_cells = formulas - len(result.ingle) - len(work.kept)
-        return result
-
-    def _filled(self, kept: dict[Place, str]) -> list[Place]:
-        """The cells of the kept formulas, those of their arrays included."""
-        found = list(kept)
-        for sheet, key in kept:
-            cell = self._graph.formula((sheet, key))
-            rect = cell[1].rect if cell is not None else None
-            if rect is not None and rect.rows * rect.columns <= 10_000:
-                found += [
-                    (sheet, key_of(row, column))
-                    for row in range(rect.top, rect.bottom + 1)
-                    for column in range(rect.left, rect.right + 1)
-                ]
-        return found
-
-    def _not_computed(self, place: Place, reason: str, *, rests: bool) -> NotComputed:
-        found = self._graph.formula(place)
-        is_ingle = not rests and found is not None and found[2].is_ingle
-        return NotComputed(self._book.name_of(place[0]), cell_name(place[1]), reason, rests, is_ingle)
-
-    def _note_unanswered(self, call: Call, cell: FormulaCell | None, answers: dict[tuple[int, int, int], NoAnswer]) -> None:
-        row, column = place_of(call.key)
-        for i, j, error, reason in unanswered(call.grid, call.reasons):
-            # A nested call's own rows are nowhere to be seen: its formula's cell stands for them.
-            spread = cell is not None and cell.kind == "array"
-            at_row, at_column = (row + i, min(column + j, MAX_COLUMN)) if spread else (row, column)
-            if spread and cell is not None and cell.rect is not None and not cell.rect.holds(at_row, at_column):
-                continue
-            if not spread and (i, j) != (0, 0) and cell is not None:
-                continue
-            name = self._book.name_of(call.sheet)
-            key = (call.sheet, at_row, at_column)
-            if key not in answers or cell is not None:
-                answers[key] = NoAnswer(name, cell_name(key_of(at_row, at_column)), at_row, error, reason)

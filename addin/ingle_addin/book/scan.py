@@ -53,10 +53,10 @@ class Sheet:
 
     ``values`` are the constants and, for formula cells and the children of arrays, nothing; ``children`` are the other
     cells of array ranges with their stored value and byte offsets; ``dated`` are cells that show their number as a date;
-    ``bottom`` and ``right`` bound the cells in use.
+    ``bottom`` and ``right`` bound the cells in use; ``count`` is of all cells, empty ones too.
     """
 
-    __slots__ = ("bottom", "children", "dated", "formulas", "has_hidden_rows", "right", "values")
+    __slots__ = ("bottom", "children", "count", "dated", "formulas", "has_hidden_rows", "right", "values")
 
     def __init__(self) -> None:
         self.values: dict[int, Cell] = {}
@@ -65,6 +65,7 @@ class Sheet:
         self.dated: set[int] = set()
         self.bottom = 0
         self.right = 0
+        self.count = 0
         self.has_hidden_rows = False
 
 
@@ -72,8 +73,8 @@ class Sheet:
 _OUTSIDE, _DATA, _ROW, _CELL, _VALUE, _FORMULA, _INLINE, _TEXT = range(8)
 
 
-def scan_sheet(chunks: Iterable[bytes], parts: Parts, path: Path, part: str) -> Sheet:
-    """Read a worksheet from its bytes. Raises :class:`BookError` for what is damaged or beyond the limits."""
+def scan_sheet(chunks: Iterable[bytes], parts: Parts, path: Path, part: str, most: int = MAX_CELLS) -> Sheet:
+    """Read a worksheet of at most ``most`` cells from its bytes. Raises :class:`BookError` for what is damaged or beyond limits."""
     sheet = Sheet()
     values, formulas, children, dated = sheet.values, sheet.formulas, sheet.children, sheet.dated
     texts, date_styles = parts.texts, frozenset(str(index) for index in parts.date_styles)
@@ -130,8 +131,8 @@ def scan_sheet(chunks: Iterable[bytes], parts: Parts, path: Path, part: str) -> 
             dynamic = "cm" in attributes
             has_formula = has_value = False
             count += 1
-            if count > MAX_CELLS:
-                raise BookError(f"{path}: a sheet has more than {MAX_CELLS:,} cells; split the workbook")
+            if count > most:
+                raise BookError(f"{path} has more than {MAX_CELLS:,} cells; split the workbook")
         elif state == _CELL:
             if kind == "v":
                 state, has_value = _VALUE, True
@@ -272,4 +273,5 @@ def scan_sheet(chunks: Iterable[bytes], parts: Parts, path: Path, part: str) -> 
 
     made.StartElementHandler, made.EndElementHandler, made.CharacterDataHandler = start, end, data
     feed(made, chunks, path, part)
+    sheet.count = count
     return sheet

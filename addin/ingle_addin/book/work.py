@@ -4,7 +4,7 @@ from __future__ import annotations
 
 import datetime
 import re
-from collections.abc import Callable, Collection, Sequence
+from collections.abc import Collection, Sequence
 from dataclasses import dataclass
 
 from ingle_addin.book.bind import Binder, HelperSheet
@@ -15,14 +15,12 @@ from ingle_addin.book.engine import Engine
 from ingle_addin.book.formula import MAX_NESTING, UnreadableError, check_size
 from ingle_addin.book.lift import Lifter
 from ingle_addin.book.plan import Plan, Result, render
-from ingle_addin.book.refs import key_of, place_of
+from ingle_addin.book.progress import LOADING, PLANNING, WORKING, Progress, share
+from ingle_addin.book.refs import cell_name, key_of, place_of
 from ingle_addin.book.resolve import Resolver
 from ingle_addin.book.scan import FormulaCell
 from ingle_addin.book.spelling import Spelling
 from ingle_addin.cells import Cell, CellError
-
-# Told about the work as (what is being done, share done from 0 to 1).
-Progress = Callable[[str, float], None]
 
 _BATCH = 50_000
 _FORBIDDEN_IN_NAMES = re.compile(r"[\[\]*?/\\:\x00-\x1f]")
@@ -45,10 +43,11 @@ class Work:
     """A workbook taken apart, ready for the rounds of :mod:`ingle_addin.book.rounds`.
 
     ``values`` holds every cell as it is known now; ``engine_cells`` are those the engine computes; ``whole`` are the
-    calls that are a cell's whole formula; ``kept`` says why a formula keeps its stored value.
+    calls that are a cell's whole formula; ``kept`` says why a formula keeps its stored value, and ``volatile`` are those
+    of them that would give another one each time.
     """
 
-    def __init__(self, book: Book, functions: Collection[str], now: datetime.datetime, progress: Progress) -> None:
+    def __init__(self, book: Book, functions: Collection[str], now: datetime.datetime | None, progress: Progress) -> None:
         self.book = book
         self.progress = progress
         count = len(book.sheets)
@@ -59,6 +58,7 @@ class Work:
         self.whole: list[tuple[Call, FormulaCell]] = []
         self.nested: list[Lifted] = []
         self.kept: dict[tuple[int, int], str] = {}
+        self.volatile: set[tuple[int, int]] = set()
         self.plans: list[list[Plan]] = []
         self.formulas: list[Formulas] = []
         self._waiting: list[tuple[list[int], list[str]]] = [([], []) for _ in book.sheets]
@@ -89,6 +89,10 @@ class Work:
         """Whether any formula needed the engine."""
         return self._engine is not None
 
+    def cell_text(self, place: tuple[int, int]) -> str:
+        """A cell (sheet, cell) with its sheet's name, for people."""
+        return f"{self.book.name_of(place[0])}!{cell_name(place[1])}"
+
     def close(self) -> None:
         """End the engine."""
         if self._engine is not None:
@@ -107,11 +111,14 @@ class Work:
             self.plans.append(plans)
             for index, cell in enumerate(each.formulas):
                 if index % _BATCH == 0:
-                    self.progress("reading formulas", index / len(each.formulas))
+                    done = (sheet + index / len(each.formulas)) / len(self.book.sheets)
+                    self.progress("reading formulas", share(PLANNING, LOADING, done))
                 plan, slots = self._plan_of(formulas, cell, sheet)
                 plans.append(plan)
                 if plan.keep is not None:
                     self.keep(sheet, cell, plan.keep)
+                    if plan.volatile:
+                        self.volatile.add((sheet, cell.key))
                 elif plan.calls:
                     self._bind(binder, sheet, cell, plan, slots)
                 elif cell.rect is not None:
@@ -245,7 +252,7 @@ class Work:
 
     def _load(self) -> None:
         for sheet, values in enumerate(self.values):
-            self.progress("loading the calculation engine", sheet / len(self.values))
+            self.progress("loading the calculation engine", share(LOADING, WORKING, sheet / len(self.values)))
             self.engine.put(sheet, values.items())
         self.engine.put(self.block_index, ((key, CellError.NA) for key in self.blocks.first_cells()))
 
