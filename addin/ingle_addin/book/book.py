@@ -9,7 +9,7 @@ from pathlib import Path
 
 from ingle_addin.book.archive import Archive
 from ingle_addin.book.errors import BookError
-from ingle_addin.book.formula import shifted, split
+from ingle_addin.book.formula import check_size, shifted, split
 from ingle_addin.book.parts import Parts, read_parts
 from ingle_addin.book.progress import PLANNING, READING, Progress, share
 from ingle_addin.book.quick import quick_scan
@@ -80,21 +80,29 @@ class Formulas:
     """The shapes and slots of one sheet's formulas, those of shared formulas worked out from the first one."""
 
     def __init__(self, sheet: Sheet) -> None:
-        self._firsts: dict[str, tuple[int, str, list[str]]] = {}
+        self._firsts: dict[str, FormulaCell] = {}
+        self._split_firsts: dict[str, tuple[str, list[str]]] = {}
         self._remembered: dict[str, tuple[str, list[str]]] = {}
         for cell in sheet.formulas:
             if cell.shared is not None and cell.text and cell.shared not in self._firsts:
-                self._firsts[cell.shared] = (cell.key, *split(cell.text))
+                self._firsts[cell.shared] = cell
 
     def take(self, cell: FormulaCell) -> tuple[str, list[str]] | None:
-        """Shape and slots of a cell's formula; None where a shared formula has no first one or leaves the sheet."""
+        """Shape and slots of a cell's formula; None where a shared formula has no first one or leaves the sheet.
+
+        Raises :class:`~ingle_addin.book.formula.UnreadableError` for a shared formula beyond the limits.
+        """
         if cell.text or cell.shared is None:
             return self._split(cell)
         first = self._firsts.get(cell.shared)
         if first is None:
             return None
-        key, shape, slots = first
-        (row, column), (first_row, first_column) = place_of(cell.key), place_of(key)
+        found = self._split_firsts.get(cell.shared)
+        if found is None:
+            check_size(first.text)
+            found = self._split_firsts[cell.shared] = split(first.text)
+        shape, slots = found
+        (row, column), (first_row, first_column) = place_of(cell.key), place_of(first.key)
         moved = shifted(shape, slots, row - first_row, column - first_column)
         return None if moved is None else (shape, moved)
 

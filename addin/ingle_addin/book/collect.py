@@ -10,7 +10,7 @@ from ingle_addin.book.graph import Graph, Place
 from ingle_addin.book.grids import laid, plain, unanswered
 from ingle_addin.book.refs import MAX_COLUMN, cell_name, key_of, place_of
 from ingle_addin.book.report import NoAnswer, NotComputed
-from ingle_addin.book.scan import FormulaCell
+from ingle_addin.book.scan import MAX_ARRAY, FormulaCell
 from ingle_addin.book.work import Work
 from ingle_addin.cells import CellError
 
@@ -90,18 +90,16 @@ class Collector:
             if place not in work.kept
         ]
 
-    def _filled(self, kept: Mapping[Place, str]) -> list[Place]:
-        """The cells of the kept formulas, those of their arrays included."""
-        found = list(kept)
+    def _filled(self, kept: Mapping[Place, str]) -> dict[Place, Place]:
+        """The cells of the kept formulas, those of their arrays and tables included, each with its formula's cell."""
+        found = {place: place for place in kept}
         for sheet, key in kept:
             cell = self._graph().formula((sheet, key))
             rect = cell[1].rect if cell is not None else None
-            if rect is not None and rect.rows * rect.columns <= 10_000:
-                found += [
-                    (sheet, key_of(row, column))
-                    for row in range(rect.top, rect.bottom + 1)
-                    for column in range(rect.left, rect.right + 1)
-                ]
+            if rect is not None and rect.rows * rect.columns <= MAX_ARRAY:
+                for row in range(rect.top, rect.bottom + 1):
+                    for column in range(rect.left, rect.right + 1):
+                        found.setdefault((sheet, key_of(row, column)), (sheet, key))
         return found
 
     def _not_computed(self, place: Place, reason: str, *, rests: bool) -> NotComputed:

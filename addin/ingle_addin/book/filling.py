@@ -44,8 +44,9 @@ def fill(
     """Evaluate the workbook ``book`` and write it, with every computed value in its cell, to ``out``.
 
     ``functions`` are the canonical names (``INGLE.PEAK``) that ``solve`` answers, many calls at a time. ``out`` is
-    :func:`default_out` if None; with ``in_place`` the workbook itself, of which ``NAME.bak`` is kept. Everything else in
-    the file stays byte for byte. Raises :class:`BookError` (one line) if anything prevents it; then nothing is changed.
+    :func:`default_out` if None; with ``in_place`` the workbook itself, of which ``NAME.bak`` is kept (if no value changed,
+    neither is touched). Everything else in the file stays byte for byte. Raises :class:`BookError` (one line) if anything
+    prevents it; then nothing is changed.
     """
     book = Path(book)
     if in_place and out is not None:
@@ -57,6 +58,9 @@ def fill(
         opened = open_book(book, progress)
         computed = compute(opened, functions, solve, progress, now)
         changes = [Changes.of(sheet, values) for sheet, values in zip(opened.sheets, computed.values, strict=True)]
+        count = sum(map(len, changes))
+        if in_place and not count:  # an older copy is worth more than another of the same
+            return report_of(opened, computed, 0, None, None)
         if progress is not None:
             progress("writing", WRITING)
 
@@ -64,7 +68,7 @@ def fill(
             write_values(opened, changes, file)
 
         backup = place(book, opened.mark, target, write, in_place=in_place)
-        return report_of(opened, computed, sum(map(len, changes)), target, backup)
+        return report_of(opened, computed, count, target, backup)
 
 
 @contextlib.contextmanager

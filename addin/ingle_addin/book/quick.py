@@ -11,9 +11,9 @@ import re
 from pathlib import Path
 
 from ingle_addin.book.markup import MAIN_NAMESPACES, feed, parser, unescape
-from ingle_addin.book.parts import Parts
+from ingle_addin.book.parts import MAX_RAW, Parts
 from ingle_addin.book.refs import MAX_ROW, Rect, column_number, parse_rect
-from ingle_addin.book.scan import MAX_CELLS, MAX_RAW, FormulaCell, Sheet
+from ingle_addin.book.scan import MAX_CELLS, FormulaCell, Sheet, array_cells
 from ingle_addin.cells import Cell, CellError
 
 _ITEM = re.compile(
@@ -72,7 +72,7 @@ def quick_scan(content: bytes, parts: Parts, path: Path, part: str, most: int = 
                 if value is not None and value - value != 0.0:
                     return None
             elif kind == b"s":
-                if not raw.isdigit() or int(raw) >= len(texts):
+                if not raw.isdigit() or len(raw) > 9 or int(raw) >= len(texts):
                     return None
                 value = texts[int(raw)]
             elif kind == b"str" and len(raw) <= MAX_RAW:
@@ -105,6 +105,10 @@ def quick_scan(content: bytes, parts: Parts, path: Path, part: str, most: int = 
             )
             if formula_attributes:
                 _read_attributes(cell, formula_attributes, row, column, arrays)
+                if cell.rect is not None:
+                    count += array_cells(cell.rect)
+                    if count > most:
+                        return None
             formulas.append(cell)
         elif arrays and any(rect.holds(row, column) for rect in arrays):
             children[key] = (value, match.start(), match.end() if close is None else match.start(_CLOSE))
@@ -142,18 +146,16 @@ def _is_plain(content: bytes, path: Path, part: str) -> bool:
     return begin < finish and content.find(b"\r", begin, finish) < 0 and content.find(b"xmlns", begin, finish) < 0
 
 
-def _read_attributes(cell: FormulaCell, written: bytes, row: int, column: int, arrays: list[Rect]) -> None:
-    attributes = {name: _text(value) for name, value in _ATTRIBUTE.findall(written)}
+def _read_attributes(cell: FormulaCell, text: bytes, row: int, column: int, arrays: list[Rect]) -> None:
+    attributes = {name: _text(value) for name, value in _ATTRIBUTE.findall(text)}
     match attributes.get(b"t"):
         case "shared":
             cell.kind, cell.shared = "shared", attributes.get(b"si", "")
-        case "array":
-            cell.kind = "array"
+        case "array" | "dataTable" as written:
+            cell.kind = "array" if written == "array" else "data table"
             cell.rect = parse_rect(attributes.get(b"ref", "")) or Rect(row, column, row, column)
             if cell.rect.rows > 1 or cell.rect.columns > 1:
                 arrays.append(cell.rect)
-        case "dataTable":
-            cell.kind = "data table"
 
 
 def _text(raw: bytes) -> str:

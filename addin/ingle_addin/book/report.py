@@ -81,8 +81,7 @@ def summary(report: Report) -> list[str]:
     lines.extend(report.remarks)
     if report.backup is not None:
         lines.append(f"The workbook as it was is kept in {report.backup}.")
-    if report.out is not None:
-        lines.append(f"Written to {report.out}.")
+    lines.append("The workbook was left as it is." if report.out is None else f"Written to {report.out}.")
     return lines
 
 

@@ -18,13 +18,12 @@ from ingle_addin.book.plan import Plan, Result, render
 from ingle_addin.book.progress import LOADING, PLANNING, WORKING, Progress, share
 from ingle_addin.book.refs import cell_name, key_of, place_of
 from ingle_addin.book.resolve import Resolver
-from ingle_addin.book.scan import FormulaCell
+from ingle_addin.book.scan import MAX_ARRAY, FormulaCell
 from ingle_addin.book.spelling import Spelling
 from ingle_addin.cells import Cell, CellError
 
 _BATCH = 50_000
 _FORBIDDEN_IN_NAMES = re.compile(r"[\[\]*?/\\:\x00-\x1f]")
-_MAX_ARRAY = 1_000_000
 
 
 @dataclass(slots=True)
@@ -182,6 +181,8 @@ class Work:
         self.kept[sheet, cell.key] = reason
         children = self.book.sheets[sheet].children
         stored = {key: children.get(key, (None, 0, 0))[0] for key, _ in elements_of(cell)}
+        if cell.rect is not None and len(stored) == 1:  # an array too large for us; its cells are those of the file
+            stored = {key: value for key, (value, _, _) in children.items() if cell.rect.holds(*place_of(key))}
         stored[cell.key] = cell.stored
         values = self.values[sheet]
         for key, value in stored.items():
@@ -266,7 +267,7 @@ def elements_of(cell: FormulaCell) -> list[tuple[int, tuple[int, int] | None]]:
     rect = cell.rect
     if rect is None:
         return [(cell.key, None)]
-    if rect.rows * rect.columns > _MAX_ARRAY:
+    if rect.rows * rect.columns > MAX_ARRAY:
         return [(cell.key, (0, 0))]
     return [(key_of(rect.top + i, rect.left + j), (i, j)) for i in range(rect.rows) for j in range(rect.columns)]
 
