@@ -2,7 +2,7 @@
 
 Run as a script, not as a module of the package, so that it starts with nothing but IronCalc. Commands come in on the
 standard input and answers go out on the standard output, each as one marshalled object behind its length. An error value
-travels as a tuple that holds its text.
+travels in as a tuple that holds its text.
 """
 
 from __future__ import annotations
@@ -106,19 +106,19 @@ class Model:
         """Work everything out."""
         self._model.evaluate()
 
-    def values(self, sheet: int, keys: Sequence[int]) -> list[object]:
-        """Read cells."""
+    def values(self, sheet: int, keys: Sequence[int]) -> tuple[list[object], list[tuple[int, str]]]:
+        """Read cells; errors come apart, as (index, text)."""
         model = self._model
         get = model.get_cell_value
         found: list[object] = []
+        errors: list[tuple[int, str]] = []
         for key in keys:
             row, column = key >> _BITS, (key & _MASK) + 1
             value = get(sheet, row, column)
             if type(value) is str and value[:1] == "#" and model.get_cell_type(sheet, row, column) == self._is_error:
-                found.append((value,))
-            else:
-                found.append(value)
-        return found
+                errors.append((len(found), value))
+            found.append(value)
+        return found, errors
 
 
 def main() -> None:

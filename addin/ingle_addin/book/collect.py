@@ -33,7 +33,9 @@ class Collector:
         result = Computed([{} for _ in book.sheets], calls=self._calls)
         for sheet, keys in enumerate(work.engine_cells):
             values = work.values[sheet]
-            result.values[sheet].update((key, plain(values.get(key))) for key in keys)
+            result.values[sheet].update(
+                (key, value if type(value := values.get(key)) is float and value - value == 0.0 else plain(value)) for key in keys
+            )
         answers: dict[tuple[int, int, int], NoAnswer] = {}
         for call in self._calls:
             place = (call.sheet, call.key)
@@ -41,6 +43,9 @@ class Collector:
                 continue
             result.ingle.add(place)
             cell = self._cells_of.get(id(call))
+            if cell is not None and self._is_plain(call, cell):
+                result.values[call.sheet][cell.key] = work.values[call.sheet][cell.key]
+                continue
             if cell is not None:
                 keys = [cell.key] if cell.kind != "array" else [key for key, _ in laid(call.grid, cell.rect, False)]  # type: ignore[arg-type]
                 values = work.values[call.sheet]
@@ -57,6 +62,15 @@ class Collector:
         formulas = sum(len(sheet.formulas) for sheet in book.sheets)
         result.ordinary_cells = formulas - len(result.ingle) - len(work.kept)
         return result
+
+    def _is_plain(self, call: Call, cell: FormulaCell) -> bool:
+        """Whether a call has one number for an answer, like most."""
+        return (
+            type(self._work.values[call.sheet][cell.key]) is float
+            and cell.kind != "array"
+            and len(call.grid) == 1 == len(call.grid[0])
+            and list(call.reasons) == [None]
+        )
 
     def _no_answer(self, place: Place, error: str, reason: str) -> NoAnswer:
         return NoAnswer(self._book.name_of(place[0]), cell_name(place[1]), place_of(place[1])[0], error, reason)

@@ -125,11 +125,20 @@ class Engine:
 
     def values(self, sheet: int, keys: Sequence[int]) -> list[Cell]:
         """Read cells; an error that no spreadsheet knows comes back as :class:`Strange`."""
+        return self.read(sheet, keys)[0]
+
+    def read(self, sheet: int, keys: Sequence[int]) -> tuple[list[Cell], list[int]]:
+        """The same, and which of them (counted from 0) are :class:`Strange`."""
         found: list[Cell] = []
+        strange: list[int] = []
         for at in range(0, len(keys), _BATCH):
-            for value in self._ask("values", sheet, keys[at : at + _BATCH]):
-                found.append(_inward(value[0]) if type(value) is tuple else value)
-        return found
+            values, errors = self._ask("values", sheet, keys[at : at + _BATCH])
+            for index, text in errors:
+                values[index] = error = _inward(text)
+                if isinstance(error, Strange):
+                    strange.append(at + index)
+            found += values
+        return found, strange
 
 
 NOT_INSTALLED = (

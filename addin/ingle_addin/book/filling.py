@@ -126,7 +126,8 @@ class Changes:
         get, children = values.get, sheet.children
         for cell in sheet.formulas:
             value = get(cell.key)
-            if value is not None and not same(value, cell.stored):
+            stored = cell.stored
+            if value is not None and (value != stored or type(value) is not type(stored)):
                 cells[cell.key] = (Span(cell.start, cell.end), value)
             if cell.rect is not None and cell.key in values:
                 for key, _ in elements_of(cell):

@@ -20,6 +20,7 @@ from ingle_addin.book.formula import (
     is_space,
     parse,
     split,
+    walk,
 )
 from ingle_addin.book.functions import (
     ARRAY_PARAMETERS,
@@ -92,6 +93,7 @@ class Lifter:
         result.is_ingle = _mentions(shape)
         try:
             tree = parse(shape)
+            result.is_local = any(isinstance(node, Named) and node.bracket is not None and not node.name for node in walk(tree))
             result.is_ingle = _has_call(tree, self.spelling) or self._named_call(tree, sheet, set())
             work.compile(self.resolver.resolve(tree, sheet, place))
         except UnreadableError as reason:
@@ -126,28 +128,13 @@ def _mentions(text: str) -> bool:
 
 
 def _names_in(expression: Expr) -> set[str]:
-    names: set[str] = set()
-    for node in expression:
-        match node:
-            case Named(name=name, bracket=None):
-                names.add(name)
-            case Func(name=name, args=args):
-                names.add(name)
-                names.update(*map(_names_in, args))
-            case Group(body=body):
-                names |= _names_in(body)
-    return names
+    return {
+        node.name for node in walk(expression) if isinstance(node, Func) or (isinstance(node, Named) and node.bracket is None)
+    }  # fmt: skip
 
 
 def _has_call(expression: Expr, spelling: Spelling) -> bool:
-    for node in expression:
-        if isinstance(node, Func) and (
-            spelling.canonical(node.name) or spelling.is_misspelt(node.name) or any(_has_call(a, spelling) for a in node.args)
-        ):
-            return True
-        if isinstance(node, Group) and _has_call(node.body, spelling):
-            return True
-    return False
+    return any(isinstance(node, Func) and spelling.is_of_family(node.name) for node in walk(expression))
 
 
 class _Work:
@@ -232,6 +219,7 @@ class _Work:
 
     def _emit_ref(self, ref: Ref, mode: str, out: list[Piece], crossing: bool) -> bool:
         self.result.refs.append(ref)
+        self.result.asked.append(ref)
         prefix = self._prefix(ref)
         if ref.this_row:
             if ref.last is not None and mode == _ONE:
@@ -273,6 +261,7 @@ class _Work:
             out.append(")")
             return False
         self._check(call, name)
+        self.result.asks_anywhere |= name in ("INDIRECT", "OFFSET")
         if name in ("TODAY", "NOW") and not call.args:
             out.append(self._moment(name))
             return False
@@ -411,14 +400,7 @@ def _lone(expression: Expr) -> Node | None:
 
 
 def _function_names(expression: Expr) -> set[str]:
-    names: set[str] = set()
-    for node in expression:
-        if isinstance(node, Func):
-            names.add(node.name)
-            names.update(*(_function_names(arg) for arg in node.args))
-        elif isinstance(node, Group):
-            names |= _function_names(node.body)
-    return names
+    return {node.name for node in walk(expression) if isinstance(node, Func)}
 
 
 def _merged(pieces: list[Piece]) -> tuple[Piece, ...]:

@@ -136,7 +136,9 @@ class Plan:
     ``keep`` is the reason for leaving the stored value, else None; ``volatile`` if that is because it changes from moment
     to moment. ``whole`` formulas are a single call; ``array`` ones
     the engine must work out as one array; all others are rendered from ``pieces``. ``refs`` are all references, for
-    following what rests on what.
+    following what rests on what (in an ``is_local`` plan they hold for one cell only, "[column]" being of the table around
+    it); ``asked`` are those of them that the engine follows, and if it ``asks_anywhere`` it may
+    look at any cell.
     """
 
     keep: str | None = None
@@ -145,8 +147,11 @@ class Plan:
     whole: bool = False
     array: bool = False
     is_ingle: bool = False
+    is_local: bool = False
     volatile: bool = False
     refs: list[Ref] = field(default_factory=list)
+    asked: list[Ref] = field(default_factory=list)
+    asks_anywhere: bool = False
 
 
 # (call, whole, element or None) -> the address of a lifted call's answer

@@ -29,6 +29,8 @@ _ITEM = re.compile(
     re.VERBOSE | re.DOTALL,
 )
 _CLOSE = 10  # the group of the end tag
+_CELL_END = len(b"</c>")
+_MAX_INLINES = 10_000
 _ATTRIBUTE = re.compile(rb' ([a-zA-Z0-9]+)="([^"<]*)"')
 _HEAD = re.compile(rb'<worksheet\b[^<>]* xmlns="([^"]*)"[^<>]*>')
 _ENTITY = re.compile(r"&(?:#x([0-9a-fA-F]+)|#([0-9]+)|(amp|lt|gt|quot|apos));")
@@ -46,8 +48,10 @@ def quick_scan(content: bytes, parts: Parts, path: Path, part: str, most: int = 
     values, formulas, children, dated, texts = sheet.values, sheet.formulas, sheet.children, sheet.dated, parts.texts
     date_styles = frozenset(str(index).encode() for index in parts.date_styles)
     columns: dict[bytes, int] = {}
+    inlines: dict[bytes, str] = {}
     arrays: list[Rect] = []
-    bottom = right = count = 0
+    bottom = right = count = row = base = 0
+    row_digits = b""
     for match in _ITEM.finditer(content, begin, finish):
         letters, digits, style, kind, more, formula_attributes, formula, raw, inline, close, row_attributes, other = match.groups()
         if letters is None:
@@ -57,20 +61,29 @@ def quick_scan(content: bytes, parts: Parts, path: Path, part: str, most: int = 
                 sheet.has_hidden_rows = True
             continue
         count += 1
-        row = int(digits)
-        column = columns.get(letters) or columns.setdefault(letters, column_number(letters.decode()))
-        if count > most or not column or row > MAX_ROW:
-            return None  # the general scan says what is wrong
-        key = row << 14 | column - 1
+        if digits != row_digits:
+            row_digits, row = digits, int(digits)
+            base = row << 14
+            if count > most or row > MAX_ROW:
+                return None  # the general scan says what is wrong
+            if arrays:
+                arrays = [rect for rect in arrays if rect.bottom >= row]
+        column = columns.get(letters)
+        if column is None:
+            column = columns[letters] = column_number(letters.decode())
+            if not column:
+                return None
+        key = base | column - 1
         value: Cell = None
         if raw is not None:
             if kind is None or kind == b"n":
-                try:
-                    value = float(raw) if raw else None
-                except ValueError:
-                    return None
-                if value is not None and value - value != 0.0:
-                    return None
+                if raw:
+                    try:
+                        value = float(raw)
+                    except ValueError:
+                        return None
+                    if value - value != 0.0:
+                        return None
             elif kind == b"s":
                 if not raw.isdigit() or len(raw) > 9 or int(raw) >= len(texts):
                     return None
@@ -86,23 +99,19 @@ def quick_scan(content: bytes, parts: Parts, path: Path, part: str, most: int = 
         elif inline is not None:
             if kind != b"inlineStr" or len(inline) > MAX_RAW:
                 return None
-            value = unescape(_text(inline))
+            value = inlines.get(inline)
+            if value is None:
+                value = unescape(_text(inline))
+                if len(inlines) < _MAX_INLINES:
+                    inlines[inline] = value
         elif kind == b"str" and close is not None and match[0].endswith((b"<v/></c>", b"<v /></c>")):
             value = ""
-        if style in date_styles and (value is None or type(value) is float):
+        if style is not None and style in date_styles and (value is None or type(value) is float):
             dated.add(key)
         if formula_attributes is not None:
-            cell = FormulaCell(
-                key,
-                _text(formula or b""),
-                "normal",
-                None,
-                None,
-                b"cm=" in more,
-                value,
-                match.start(),
-                match.start(_CLOSE),
-            )
+            text = "" if formula is None else formula.decode() if b"&" not in formula else _text(formula)
+            start, end = match.span()
+            cell = FormulaCell(key, text, "normal", None, None, b"cm=" in more, value, start, end - _CELL_END)
             if formula_attributes:
                 _read_attributes(cell, formula_attributes, row, column, arrays)
                 if cell.rect is not None:
@@ -116,12 +125,11 @@ def quick_scan(content: bytes, parts: Parts, path: Path, part: str, most: int = 
             values[key] = value
         else:
             continue
-        if arrays:
-            arrays = [rect for rect in arrays if rect.bottom >= row]
         if column > right:
             right = column
-        if row > bottom:
-            bottom = row
+        bottom = row if row > bottom else bottom
+    if count > most:
+        return None
     sheet.bottom, sheet.right, sheet.count = bottom, right, count
     return sheet
 

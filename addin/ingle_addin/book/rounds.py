@@ -8,7 +8,7 @@ from collections.abc import Collection
 from operator import itemgetter
 
 from ingle_addin.book.book import Book
-from ingle_addin.book.calling import Call
+from ingle_addin.book.calling import Area, Call
 from ingle_addin.book.collect import Collector
 from ingle_addin.book.computed import Computed
 from ingle_addin.book.dates import moment_of
@@ -66,6 +66,7 @@ class _Rounds:
         self._solve = solve
         self._helper_values: dict[int, Cell] = {}
         self._dirty: defaultdict[int, list[tuple[int, Cell]]] = defaultdict(list)
+        self._common: dict[Area, Grid] = {}
         self._graph_made: Graph | None = None
         self._truncated: dict[int, tuple[Place, Truncated]] = {}  # by the call's id
         self._moved: set[int] = set()  # calls whose block has changed its place since the engine was last told
@@ -96,6 +97,13 @@ class _Rounds:
                 cells = tuple(self._dated(value) if key in dated else value for key, value in zip(keys, cells, strict=True))
             rows.append(cells)
         return tuple(rows)
+
+    def common(self, area: Area) -> Grid:
+        """The same of a range that many calls of a batch read."""
+        found = self._common.get(area)
+        if found is None:
+            found = self._common[area] = self.grid(area.sheet, area.rect)
+        return found
 
     def _dated(self, value: Cell) -> Cell:
         return moment_of(value, self._book.parts.date1904) if type(value) is float else value
@@ -140,9 +148,9 @@ class _Rounds:
             for sheet, keys in enumerate(work.engine_cells):
                 if not keys:
                     continue
-                values = work.engine.values(sheet, keys)
+                values, odd = work.engine.read(sheet, keys)
                 work.values[sheet].update(zip(keys, values, strict=True))
-                strange += [((sheet, key), value) for key, value in zip(keys, values, strict=True) if isinstance(value, Strange)]
+                strange += [((sheet, keys[index]), str(values[index])) for index in odd]
             if not strange or not self._keep_strange(strange):
                 break
         if work.helper.keys:
@@ -209,6 +217,7 @@ class _Rounds:
         """Solve every call whose arguments have changed, one batch a function; whether any answer changed."""
         changed = False
         for level in sorted(self._levels):
+            self._common.clear()  # an answer of the level before may stand in them
             batches: defaultdict[str, list[tuple[Call, tuple[Grid, ...]]]] = defaultdict(list)
             for call in self._levels[level]:
                 if call.stopped or not (first or call.moves):

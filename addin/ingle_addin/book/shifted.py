@@ -6,7 +6,7 @@ from collections.abc import Iterator, Mapping, Sequence
 from dataclasses import dataclass
 from typing import NamedTuple
 
-from ingle_addin.book.calling import Area, Argument, Call, Constant
+from ingle_addin.book.calling import Area, Argument, Call, Common, Constant
 from ingle_addin.book.grids import range_name, size_of
 from ingle_addin.book.refs import Rect, cell_name, place_of
 
@@ -43,8 +43,10 @@ def misplaced(call: Call, place: int | None) -> Misplaced | None:
     Told only where headings and values are ranges of one sheet whose columns overlap or touch: a table of values elsewhere
     may well be meant.
     """
-    heads = call.args[place] if place is not None and place < len(call.args) else None
-    if not isinstance(heads, Area) or place is None:
+    if place is None or place >= len(call.args):
+        return None
+    heads = _area(call.args[place])
+    if heads is None:
         return None
     upright = _is_upright(heads.rect)
     first, count = (heads.rect.top, heads.rect.rows) if upright else (heads.rect.left, heads.rect.columns)
@@ -63,13 +65,21 @@ def _areas(values: Sequence[Argument], upright: bool) -> Iterator[tuple[int, Are
     """Each range among the values, with the number of the heading that its first column belongs to."""
     at = 0
     for each in values:
-        if isinstance(each, Area):
-            yield at, each
-            at += each.rect.rows if upright else each.rect.columns
+        area = _area(each)
+        if area is not None:
+            yield at, area
+            at += area.rect.rows if upright else area.rect.columns
         elif isinstance(each, Constant):
             at += size_of(each.value)[0 if upright else 1]
         else:
             return  # how wide it is depends on what it comes to
+
+
+def _area(argument: Argument) -> Area | None:
+    """The range that an argument is."""
+    if isinstance(argument, Common):
+        return argument.area
+    return argument if isinstance(argument, Area) else None
 
 
 def _is_upright(heads: Rect) -> bool:

@@ -12,13 +12,14 @@ from ingle_addin.book.blocks import Blocks
 from ingle_addin.book.book import Book, Formulas
 from ingle_addin.book.calling import Call
 from ingle_addin.book.engine import Engine
-from ingle_addin.book.formula import MAX_NESTING, UnreadableError, check_size
+from ingle_addin.book.filled_down import Filled
+from ingle_addin.book.formula import MAX_NESTING, ROW, UnreadableError, check_size
 from ingle_addin.book.lift import Lifter
-from ingle_addin.book.plan import Plan, Result, render
+from ingle_addin.book.plan import Plan, Result, rect_of, render
 from ingle_addin.book.progress import LOADING, PLANNING, WORKING, Progress, share
-from ingle_addin.book.refs import cell_name, key_of, place_of
+from ingle_addin.book.refs import MAX_COLUMN, cell_name, key_of, place_of
 from ingle_addin.book.resolve import Resolver
-from ingle_addin.book.scan import MAX_ARRAY, FormulaCell
+from ingle_addin.book.scan import MAX_ARRAY, FormulaCell, Sheet
 from ingle_addin.book.spelling import Spelling
 from ingle_addin.cells import Cell, CellError
 
@@ -74,7 +75,7 @@ class Work:
             now,
         )
         self._cache: dict[tuple[int, str, bool], Plan] = {}
-        self._table_sheets = {table.sheet for table in book.parts.tables}
+        self._asked: list[set[int]] = [set() for _ in book.sheets]
 
     @property
     def engine(self) -> Engine:
@@ -101,35 +102,91 @@ class Work:
 
     def prepare(self) -> None:
         """Plan and bind every formula, and put into the engine what it is to compute."""
-        moving = [{key for cell in sheet.formulas for key, _ in elements_of(cell)} for sheet in self.book.sheets]
+        moving = [_filled_cells(sheet) for sheet in self.book.sheets]
         binder = Binder(self.book.sheets, moving, self.helper, self.blocks.address)
         for sheet, each in enumerate(self.book.sheets):
             formulas = Formulas(each)
             self.formulas.append(formulas)
-            plans: list[Plan] = []
-            self.plans.append(plans)
+            self.plans.append([])
+            known: dict[tuple[str, int], Filled] = {}
             for index, cell in enumerate(each.formulas):
                 if index % _BATCH == 0:
                     done = (sheet + index / len(each.formulas)) / len(self.book.sheets)
                     self.progress("reading formulas", share(PLANNING, LOADING, done))
-                plan, slots = self._plan_of(formulas, cell, sheet)
-                plans.append(plan)
-                if plan.keep is not None:
-                    self.keep(sheet, cell, plan.keep)
-                    if plan.volatile:
-                        self.volatile.add((sheet, cell.key))
-                elif plan.calls:
-                    self._bind(binder, sheet, cell, plan, slots)
-                elif cell.rect is not None:
-                    self._put_array(sheet, cell, plan, slots)
-                else:
-                    self._queue(sheet, [cell.key], [render(plan.pieces, slots, cell.key)])
-                    self.engine_cells[sheet].append(cell.key)
+                if cell.rect is not None:
+                    self._take(binder, formulas, cell, sheet)
+                    continue
+                pattern = formulas.pattern(cell)
+                filled = known.get(pattern)
+                if filled is not None:
+                    self.plans[sheet].append(filled.plan)
+                    self._fill_down(binder, filled, cell, sheet)
+                    continue
+                plan = self._take(binder, formulas, cell, sheet)
+                patterns = formulas.patterns(cell)
+                if patterns is not None and plan.keep is None and not plan.is_local:
+                    known[pattern] = Filled.of(plan, patterns, sheet, binder)
             self._send(sheet)
         if self.helper.keys:
             self.engine.put_formulas(self.helper_index, self.helper.keys, self.helper.texts)
         if self.has_engine:
             self._load()
+
+    def _take(self, binder: Binder, formulas: Formulas, cell: FormulaCell, sheet: int) -> Plan:
+        """Plan and bind one formula."""
+        plan, slots = self._plan_of(formulas, cell, sheet)
+        self.plans[sheet].append(plan)
+        if plan.keep is not None:
+            self.keep(sheet, cell, plan.keep)
+            if plan.volatile:
+                self.volatile.add((sheet, cell.key))
+            return plan
+        self._note_asked(plan, slots, sheet)
+        if plan.calls:
+            try:
+                calls = binder.calls(plan, slots, sheet, cell.key)
+            except UnreadableError as reason:
+                self.keep(sheet, cell, str(reason))
+            else:
+                self._bind(calls, sheet, cell, plan, slots)
+        elif cell.rect is not None:
+            self._put_array(sheet, cell, plan, slots)
+        else:
+            self._queue(sheet, [cell.key], [render(plan.pieces, slots, cell.key)])
+            self.engine_cells[sheet].append(cell.key)
+        return plan
+
+    def _fill_down(self, binder: Binder, filled: Filled, cell: FormulaCell, sheet: int) -> None:
+        """The same for a formula whose like stands in another row."""
+        key, plan = cell.key, filled.plan
+        row = key >> 14
+        if plan.calls:
+            if filled.calls is None or not plan.whole:
+                slots = filled.slots(str(row))
+                try:
+                    calls = binder.calls(plan, slots, sheet, key)
+                except UnreadableError as reason:
+                    self.keep(sheet, cell, str(reason))
+                    return
+            else:
+                slots = []
+                calls = [each.at(sheet, key, row) for each in filled.calls]
+            self._bind(calls, sheet, cell, plan, slots)
+            return
+        text = filled.text.replace(ROW, str(row)) if filled.text else render(plan.pieces, filled.slots(str(row)), key)
+        self._queue(sheet, [key], [text])
+        self.engine_cells[sheet].append(key)
+
+    def _note_asked(self, plan: Plan, slots: Sequence[str], sheet: int) -> None:
+        """Remember the columns that the engine is asked about: it need not hold the others."""
+        for ref in plan.asked:
+            rect = rect_of(ref, slots, 0)
+            owner = sheet if ref.sheet is None else int(ref.sheet)
+            if rect is not None:
+                self._asked[owner].update(range(rect.left, rect.right + 1))
+        if plan.asks_anywhere:
+            for each in self._asked:
+                each.update(range(1, MAX_COLUMN + 1))
 
     def _queue(self, sheet: int, keys: list[int], texts: list[str]) -> None:
         """Have formulas put into the engine, many at a time."""
@@ -162,8 +219,7 @@ class Work:
         plan = self._cache.get(cached)
         if plan is None:
             plan = self._lifter.plan(shape, sheet, place_of(cell.key), in_array=in_array)
-            # "[column]" without a table's name means the table around the cell: not the same for every cell.
-            if not (sheet in self._table_sheets and "[" in shape):
+            if not plan.is_local:
                 self._cache[cached] = plan
             if plan.keep is None and not plan.whole and not plan.array:
                 self._add_test(plan, slots, cell.key)
@@ -207,13 +263,8 @@ class Work:
             self._queue(sheet, [key for key, _ in elements], texts)
         self.engine_cells[sheet] += [key for key, _ in elements]
 
-    def _bind(self, binder: Binder, sheet: int, cell: FormulaCell, plan: Plan, slots: Sequence[str]) -> None:
-        """Make the calls of a formula."""
-        try:
-            calls = binder.calls(plan, slots, sheet, cell.key)
-        except UnreadableError as reason:
-            self.keep(sheet, cell, str(reason))
-            return
+    def _bind(self, calls: list[Call], sheet: int, cell: FormulaCell, plan: Plan, slots: Sequence[str]) -> None:
+        """Take the calls of a formula to work."""
         elements = elements_of(cell)
         for piece in plan.pieces if cell.kind != "array" else ():
             if isinstance(piece, Result) and not piece.whole:
@@ -254,12 +305,25 @@ class Work:
     def _load(self) -> None:
         for sheet, values in enumerate(self.values):
             self.progress("loading the calculation engine", share(LOADING, WORKING, sheet / len(self.values)))
-            self.engine.put(sheet, values.items())
+            asked = self._asked[sheet]
+            if asked:
+                # Numbers of cells hold the column less 1 in their last 14 bits.
+                columns = {column - 1 for column in asked}
+                self.engine.put(sheet, ((key, value) for key, value in values.items() if key & 16_383 in columns))
         self.engine.put(self.block_index, ((key, CellError.NA) for key in self.blocks.first_cells()))
 
 
 def _one(_call: int, _whole: bool, _element: tuple[int, int] | None) -> str:
     return "1"
+
+
+def _filled_cells(sheet: Sheet) -> set[int]:
+    """All cells that formulas fill."""
+    found = {cell.key for cell in sheet.formulas}
+    for cell in sheet.formulas:
+        if cell.rect is not None:
+            found.update(key for key, _ in elements_of(cell))
+    return found
 
 
 def elements_of(cell: FormulaCell) -> list[tuple[int, tuple[int, int] | None]]:
