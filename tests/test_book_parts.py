@@ -10,7 +10,7 @@ import pytest
 from hypothesis import given
 from hypothesis import strategies as st
 from ingle_addin import book as package
-from ingle_addin.book import NoAnswer, NotComputed, Report, Truncated, summary
+from ingle_addin.book import BookError, NoAnswer, NotComputed, Report, Truncated, summary
 from ingle_addin.book.book import Formulas
 from ingle_addin.book.dates import moment_of, serial_of
 from ingle_addin.book.engine import Engine, Strange
@@ -36,9 +36,10 @@ from openpyxl.styles.numbers import is_date_format as openpyxl_is_date_format
 
 
 def test_the_public_names() -> None:
-    assert sorted(package.__all__) == sorted(
-        name for name, value in vars(package).items() if not name.startswith("_") and getattr(value, "__module__", None)
-    )
+    assert sorted(package.__all__) == sorted(package._MODULES)
+    assert all(getattr(package, name) is not None for name in package.__all__)
+    with pytest.raises(AttributeError, match=r"^module 'ingle_addin.book' has no attribute 'nothing'$"):
+        _ = package.nothing
 
 
 def test_columns() -> None:
@@ -198,7 +199,7 @@ def test_spelling() -> None:
 
 
 def test_the_engine_has_the_functions_it_is_given(tmp_path: Path) -> None:
-    with Engine(tmp_path / "book.xlsx", ["Sheet1"]) as engine:
+    with Engine(tmp_path / "book.xlsx").open(["Sheet1"]) as engine:
         functions = sorted(ENGINE_FUNCTIONS)
         keys = [key_of(row, 1) for row in range(1, len(functions) + 1)]
         engine.put_formulas(0, keys, [f"{name}()" for name in functions])
@@ -227,7 +228,7 @@ def test_the_engine_works_element_by_element_where_it_is_said_to(tmp_path: Path)
         "REPT": '"a",2',
         "EXACT": '"a","A"',
     }
-    with Engine(tmp_path / "book.xlsx", ["Sheet1"]) as engine:
+    with Engine(tmp_path / "book.xlsx").open(["Sheet1"]) as engine:
         for row, (number, text) in enumerate([(0.25, "abac"), (0.5, "bcd"), (0.75, "a")], 1):
             engine.put(0, [(key_of(row, 1), number), (key_of(row, 2), text), (key_of(row, 3), 2000.0 + row)])
         for place, name in enumerate(sorted(VECTORISED), 1):
@@ -262,9 +263,7 @@ def test_the_tables_of_functions_agree() -> None:
 
 
 def test_engine_values(tmp_path: Path) -> None:
-    with Engine(tmp_path / "book.xlsx", ["it's", "x" * 40, "Data"]) as engine:
-        assert engine.sheet_names[0] == "it's"
-        assert engine.sheet_names[2] == "Data"
+    with Engine(tmp_path / "book.xlsx").open(["it's", "x" * 31, "Data"]) as engine:
         values: list[Cell] = [1.5, "=1+1", "#N/A", True, CellError.NUM, "", None, 3, float("inf")]
         keys = [key_of(1, column) for column in range(1, 10)]
         engine.put(2, zip(keys, values, strict=True))
@@ -272,6 +271,12 @@ def test_engine_values(tmp_path: Path) -> None:
         engine.evaluate()
         assert engine.values(2, keys) == [1.5, "=1+1", "#N/A", True, CellError.NUM, "", None, 3.0, CellError.NUM]
         assert engine.values(2, [key_of(2, 1)]) == [Strange("#CIRC!")]
+
+
+def test_a_sheet_name_that_the_engine_refuses(tmp_path: Path) -> None:
+    with Engine(tmp_path / "book.xlsx").open(["Data", "a/b"]) as engine, pytest.raises(BookError) as caught:
+        engine.values(0, [key_of(1, 1)])
+    assert str(caught.value) == f"{tmp_path / 'book.xlsx'}: the calculation engine takes no sheet of the name a/b; rename it"
 
 
 @pytest.mark.parametrize(

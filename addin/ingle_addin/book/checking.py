@@ -8,6 +8,7 @@ from operator import itemgetter
 from pathlib import Path
 
 from ingle_addin.book.book import open_book
+from ingle_addin.book.engine import Engine
 from ingle_addin.book.filling import no_collections, report_of
 from ingle_addin.book.progress import Progress
 from ingle_addin.book.refs import cell_name
@@ -75,9 +76,9 @@ def check(
     (None where they take none); the values follow them. Raises :class:`~ingle_addin.book.errors.BookError` as a fill does.
     """
     book = Path(book)
-    with no_collections():
+    with no_collections(), Engine(book) as engine:
         opened = open_book(book, progress)
-        computed = compute(opened, functions, solve, progress, keep_volatile=True)
+        computed = compute(opened, functions, solve, progress, keep_volatile=True, engine=engine)
         compared = 0
         differences: list[Difference] = []
         for index, (sheet, values) in enumerate(zip(opened.sheets, computed.values, strict=True)):

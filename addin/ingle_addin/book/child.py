@@ -47,21 +47,14 @@ class Model:
         self._model = ironcalc.create("book", "en", "UTC", "en")
         self._is_error = ironcalc.CellType.ErrorValue
         self._refused: list[tuple[int, int]] = []
-        self.names: list[str] = []
         for index, name in enumerate(names):
-            # A name the engine does not like is replaced: formulas are written with the names given back.
-            for attempt in (name, f"sheet {index} of the book"):
-                try:
-                    if index:
-                        self._model.add_sheet(attempt)
-                    else:
-                        self._model.rename_sheet(0, attempt)
-                except ironcalc.WorkbookError:
-                    continue
-                self.names.append(attempt)
-                break
-            else:
-                raise ValueError(name)
+            try:
+                if index:
+                    self._model.add_sheet(name)
+                else:
+                    self._model.rename_sheet(0, name)
+            except ironcalc.WorkbookError:
+                raise NameError(name) from None
 
     def put(self, sheet: int, keys: Sequence[int], values: Sequence[Any]) -> None:
         """Set constants; None empties the cell."""
@@ -134,9 +127,12 @@ def main() -> None:
             try:
                 model = Model(*args)
             except ImportError:
-                send(stdout, None)
+                send(stdout, False)
                 return
-            send(stdout, model.names)
+            except NameError as refused:
+                send(stdout, str(refused))
+                return
+            send(stdout, True)
         else:
             answer = getattr(model, name)(*args)
             # What only puts is not answered, so that the parent prepares the next batch meanwhile.

@@ -13,6 +13,7 @@ from typing import IO
 from ingle_addin.book.archive import Archive
 from ingle_addin.book.book import Book, open_book
 from ingle_addin.book.computed import Computed
+from ingle_addin.book.engine import Engine
 from ingle_addin.book.errors import BookError
 from ingle_addin.book.insert import insert
 from ingle_addin.book.progress import WRITING, Progress
@@ -54,9 +55,9 @@ def fill(
     target = book if in_place else default_out(book) if out is None else Path(out)
     if book.is_file():
         check_target(book, target, in_place=in_place)
-    with no_collections():
+    with no_collections(), Engine(book) as engine:
         opened = open_book(book, progress)
-        computed = compute(opened, functions, solve, progress, now)
+        computed = compute(opened, functions, solve, progress, now, engine=engine)
         changes = [Changes.of(sheet, values) for sheet, values in zip(opened.sheets, computed.values, strict=True)]
         count = sum(map(len, changes))
         if in_place and not count:  # an older copy is worth more than another of the same

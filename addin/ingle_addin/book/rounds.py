@@ -12,7 +12,7 @@ from ingle_addin.book.calling import Area, Call
 from ingle_addin.book.collect import Collector
 from ingle_addin.book.computed import Computed
 from ingle_addin.book.dates import moment_of
-from ingle_addin.book.engine import Strange
+from ingle_addin.book.engine import Engine, Strange
 from ingle_addin.book.graph import Graph, Place
 from ingle_addin.book.grids import laid, plain, range_name, size_of
 from ingle_addin.book.progress import WORKING, WRITING, Progress, share
@@ -40,19 +40,20 @@ def compute(
     now: datetime.datetime | None = None,
     *,
     keep_volatile: bool = False,
+    engine: Engine | None = None,
 ) -> Computed:
     """Evaluate every formula of ``book``, whose cells are used up: their values become the computed ones.
 
     ``functions`` are the canonical names of the functions that ``solve`` answers; ``now`` is what TODAY and NOW mean.
     Formulas that cannot be computed keep their stored value and are listed; with ``keep_volatile`` so do those that give
-    another value each time. Raises :class:`~ingle_addin.book.errors.BookError` if the engine is missing or stops.
+    another value each time. ``engine`` is one that has been started already, and is closed here. Raises
+    :class:`~ingle_addin.book.errors.BookError` if the engine is missing or stops.
     """
-    work = Work(book, functions, None if keep_volatile else now or datetime.datetime.now(), progress or _silent)
-    try:
+    moment = None if keep_volatile else now or datetime.datetime.now()
+    with engine or Engine(book.path) as used:
+        work = Work(book, functions, moment, progress or _silent, used)
         work.prepare()
         return _Rounds(work, solve).run()
-    finally:
-        work.close()
 
 
 def _silent(_what: str, _share: float) -> None:

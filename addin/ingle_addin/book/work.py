@@ -47,8 +47,11 @@ class Work:
     of them that would give another one each time.
     """
 
-    def __init__(self, book: Book, functions: Collection[str], now: datetime.datetime | None, progress: Progress) -> None:
+    def __init__(
+        self, book: Book, functions: Collection[str], now: datetime.datetime | None, progress: Progress, engine: Engine
+    ) -> None:
         self.book = book
+        self._engine = engine
         self.progress = progress
         count = len(book.sheets)
         self.helper_index, self.block_index, self.test_index = count, count + 1, count + 2
@@ -65,7 +68,6 @@ class Work:
         self.helper = HelperSheet()
         self.blocks = Blocks(self.sheet_names[self.block_index])
         self.tests: list[tuple[int, Plan]] = []
-        self._engine: Engine | None = None
         self._lifter = Lifter(
             Resolver(book.parts),
             Spelling(functions),
@@ -79,24 +81,17 @@ class Work:
 
     @property
     def engine(self) -> Engine:
-        """The engine, started when first needed."""
-        if self._engine is None:
-            self._engine = Engine(self.book.path, self.sheet_names)
-        return self._engine
+        """The engine, opened when first needed."""
+        return self._engine if self._engine.is_open else self._engine.open(self.sheet_names)
 
     @property
     def has_engine(self) -> bool:
         """Whether any formula needed the engine."""
-        return self._engine is not None
+        return self._engine.is_open
 
     def cell_text(self, place: tuple[int, int]) -> str:
         """A cell (sheet, cell) with its sheet's name, for people."""
         return f"{self.book.name_of(place[0])}!{cell_name(place[1])}"
-
-    def close(self) -> None:
-        """End the engine."""
-        if self._engine is not None:
-            self._engine.close()
 
     # -- taking the formulas apart ------------------------------------------------------------------------------------
 

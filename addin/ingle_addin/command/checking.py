@@ -11,6 +11,7 @@ from typing import TYPE_CHECKING, Any
 from ingle_addin.cells import Cell
 from ingle_addin.command.failure import Failure, workbook_failures
 from ingle_addin.command.progress import shown_progress
+from ingle_addin.command.solving import solve
 
 if TYPE_CHECKING:
     from ingle_addin.book import Checked
@@ -25,7 +26,6 @@ def check_book(book: Path, within: str, as_json: bool, allow_unanswered: bool) -
     if not (math.isfinite(tolerance) and tolerance >= 0.0):
         raise Failure(f"--within is {within}; give a number from 0 on, such as 1e-6")
     with workbook_failures(book), shown_progress() as progress:
-        from ingle_addin.batch import solve_calls
         from ingle_addin.book import check, check_summary
         from ingle_addin.functions import FUNCTIONS
 
@@ -33,7 +33,7 @@ def check_book(book: Path, within: str, as_json: bool, allow_unanswered: bool) -
             function.name: next((i for i, argument in enumerate(function.arguments) if argument.name == "headings"), None)
             for function in FUNCTIONS
         }
-        checked = check(book, functions=places, solve=solve_calls, within=tolerance, progress=progress)
+        checked = check(book, functions=places, solve=solve, within=tolerance, progress=progress)
     agrees = checked.agrees(allow_unanswered=allow_unanswered)
     if as_json:
         print(json.dumps({"agrees": agrees, **as_data(checked)}, ensure_ascii=False, indent=1))
