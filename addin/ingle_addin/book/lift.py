@@ -17,6 +17,7 @@ from ingle_addin.book.formula import (
     Ref,
     UnreadableError,
     VolatileError,
+    check_size,
     is_space,
     parse,
     split,
@@ -113,6 +114,7 @@ class Lifter:
             if _mentions(meaning):
                 return True
             try:
+                check_size(meaning)
                 inside = parse(split(meaning)[0])
             except UnreadableError:
                 continue

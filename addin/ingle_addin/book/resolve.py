@@ -26,8 +26,8 @@ from ingle_addin.book.refs import Rect, column_letters
 from ingle_addin.book.spelling import bare
 
 _MAX_NAME_DEPTH = 16
-# LET(a, 1+1, b, a+a, c, b+b, ...) doubles with every name.
-_MAX_LET_NODES = 2_000
+# LET(a, 1+1, b, a+a, c, b+b, ...) doubles with every name, and so do names defined by names.
+_MAX_NODES = 2_000
 _ITEM = re.compile(r"\s*(?:\[((?:[^\[\]']|'.)*)\]|([^,:\[\]]+))\s*([,:]?)", re.DOTALL)
 
 
@@ -94,7 +94,7 @@ class Resolver:
                 if any(isinstance(each, Func) and bare(each.name) == "LAMBDA" for each in value):
                     raise UnreadableError("it gives a name to a function of its own (LET with LAMBDA)")
                 inside[_own_name(name)] = value
-                if _count(value, _MAX_LET_NODES) < 0:
+                if _count(value, _MAX_NODES) < 0:
                     raise UnreadableError("the names of its LET stand for too long an expression")
             return Group(*resolved([call.args[-1]], inside))
         if call.name.casefold().removeprefix("_xlpm.") in bound or self.meaning(call.name, own_sheet) is not None:
@@ -120,15 +120,16 @@ class Resolver:
             raise UnreadableError(f"it uses the name {node.name}, which the workbook does not define")
         if depth >= _MAX_NAME_DEPTH:
             raise UnreadableError(f"it uses the name {node.name}, which is defined by itself")
-        check_size(found.text)
-        shape, slots = split(found.text)
         try:
-            tree = parse(shape, slots)
+            check_size(found.text)
+            tree = parse(*split(found.text))
         except UnreadableError:
             raise UnreadableError(f"it uses the name {node.name}, whose meaning could not be read") from None
         if not _is_fixed(tree):
             raise UnreadableError(f"it uses the name {node.name}, whose meaning moves with the cell")
         tree = self.resolve(tree, own_sheet if found.scope is None else found.scope, place, depth + 1)
+        if _count(tree, _MAX_NODES) < 0:
+            raise UnreadableError(f"it uses the name {node.name}, whose meaning is too long")
         meaningful = [each for each in tree if not (isinstance(each, Op) and not each.text.strip())]
         return meaningful[0] if len(meaningful) == 1 else Group(tree)
 
