@@ -20,6 +20,7 @@ from ingle_addin.book.formula import (
     is_space,
     parse,
     split,
+    walk,
 )
 from ingle_addin.book.parts import DefinedName, Parts, Table
 from ingle_addin.book.refs import Rect, column_letters
@@ -42,6 +43,7 @@ class Resolver:
         self._parts = parts
         self._sheets = {sheet.name.casefold(): index for index, sheet in enumerate(parts.sheets)}
         self._names: dict[tuple[str, int | None], DefinedName] = {(name.name.casefold(), name.scope): name for name in parts.names}
+        self._meanings: dict[tuple[DefinedName, int], Node] = {}
         self._tables = {table.name.casefold(): table for table in parts.tables}
 
     def sheet(self, name: str) -> int:
@@ -118,6 +120,10 @@ class Resolver:
             if table is not None and node.sheet is None:
                 return _area(table, _body(table), 0, len(table.columns) - 1)
             raise UnreadableError(f"it uses the name {node.name}, which the workbook does not define")
+        cached = (found, own_sheet)
+        known = self._meanings.get(cached)
+        if known is not None:
+            return known
         if depth >= _MAX_NAME_DEPTH:
             raise UnreadableError(f"it uses the name {node.name}, which is defined by itself")
         try:
@@ -127,11 +133,15 @@ class Resolver:
             raise UnreadableError(f"it uses the name {node.name}, whose meaning could not be read") from None
         if not _is_fixed(tree):
             raise UnreadableError(f"it uses the name {node.name}, whose meaning moves with the cell")
+        is_local = any(isinstance(each, Named) and each.bracket is not None and not each.name for each in walk(tree))
         tree = self.resolve(tree, own_sheet if found.scope is None else found.scope, place, depth + 1)
         if _count(tree, _MAX_NODES) < 0:
             raise UnreadableError(f"it uses the name {node.name}, whose meaning is too long")
         meaningful = [each for each in tree if not (isinstance(each, Op) and not each.text.strip())]
-        return meaningful[0] if len(meaningful) == 1 else Group(tree)
+        stands_for = meaningful[0] if len(meaningful) == 1 else Group(tree)
+        if not is_local:  # "[column]" means the table around the cell
+            self._meanings[cached] = stands_for
+        return stands_for
 
     def _structured(self, node: Named, own_sheet: int, place: tuple[int, int]) -> Node:
         if node.sheet is not None and ("[" in node.sheet or not node.name):
