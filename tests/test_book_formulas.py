@@ -11,6 +11,7 @@ from book_samples import filled, made, with_cells, with_sheet_xml
 from ingle_addin.book import open_book, summary
 from ingle_addin.cells import CellError
 
+CRITERION = "it uses a criterion (<>text, or one with ~) that the calculation engine does not read as spreadsheets do"
 DATA = {
     **{f"A{row}": row for row in range(1, 6)},
     **{f"B{row}": row * 10 for row in range(1, 6)},
@@ -105,6 +106,15 @@ def test_calls_inside_names_belong_to_the_cell(tmp_path: Path) -> None:
         ("C2", "it uses STRANGE, which the calculation engine does not have", True),
         ("C3", "it uses the name made as a function (LAMBDA)", True),
     ]
+
+
+def test_a_criterion_in_a_cell(tmp_path: Path) -> None:
+    cells = {**DATA, "E1": "=COUNTIF(A1:A5,F1)", "E2": '=COUNTIF(A1:A5,"<>3")', "E3": "=COUNTIF(A1:A5,3)"}
+    values, report, _ = filled(with_cells(tmp_path / "fine.xlsx", {**cells, "F1": ">2"}))
+    assert (values["E1"], values["E2"], values["E3"], report.not_computed) == (3, 4, 1, ())
+    values, report, _ = filled(with_cells(tmp_path / "odd.xlsx", {**cells, "F1": "<>x"}))
+    assert (values["E2"], values["E3"]) == (4, 1)
+    assert [(each.cell, each.reason) for each in report.not_computed] == [("E1", CRITERION)]
 
 
 @pytest.mark.parametrize(("cell", "value"), [("E3", 60), ("E9", "#VALUE!")])
@@ -313,6 +323,10 @@ def test_arguments(tmp_path: Path, argument: str, grid: object) -> None:
     [
         ("=AGGREGATE(9,6,A1:A2)", "it uses AGGREGATE, which the calculation engine does not have"),
         ("=IFERROR(STRANGE(A1),1)", "it uses STRANGE, which the calculation engine does not have"),
+        ('=COUNTIF(A1:A6,"<>x")', CRITERION),
+        ('=SUMIFS(A1:A6,A1:A6,">0",A1:A6,"<>"&D9)', CRITERION),
+        ('=COUNTIF(A1:A6,"a~*")', CRITERION),
+        ("=MAXA(A1,2)", "the calculation engine passes over truth values and texts of single cells in it (MAXA)"),
         ("=RAND()*2", "it draws random numbers (RAND)"),
         ("=A1:A3 A2:A5", "it takes the overlap of two ranges (a blank between them)"),
         ("=SUM((A1,A2))", "it joins ranges with a comma"),

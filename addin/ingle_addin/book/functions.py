@@ -61,6 +61,7 @@ KEPT_FUNCTIONS: Mapping[str, str] = {
     **dict.fromkeys(("CELL", "INFO"), "it asks the spreadsheet program about itself"),
     **dict.fromkeys(("FORMULATEXT", "ISFORMULA"), "it asks for the formula of a cell"),
     **dict.fromkeys(("SHEET", "SHEETS"), "it counts sheets"),
+    **dict.fromkeys(("MAXA", "MINA"), "the calculation engine passes over truth values and texts of single cells in it"),
 }
 
 # What gives another value each time it is worked out.

@@ -5,6 +5,7 @@ from __future__ import annotations
 import datetime
 from dataclasses import dataclass
 
+from ingle_addin.book.criteria import criteria_of
 from ingle_addin.book.formula import (
     Block,
     Const,
@@ -263,6 +264,7 @@ class _Work:
             out.append(")")
             return False
         self._check(call, name)
+        self.result.criteria += criteria_of(name, call.args)
         self.result.asks_anywhere |= name in ("INDIRECT", "OFFSET")
         if name in ("TODAY", "NOW") and not call.args:
             out.append(self._moment(name))

@@ -6,11 +6,13 @@ import datetime
 import re
 from collections.abc import Collection, Sequence
 from dataclasses import dataclass
+from functools import cached_property
 
 from ingle_addin.book.bind import Binder, HelperSheet
 from ingle_addin.book.blocks import Blocks
 from ingle_addin.book.book import Book, Formulas
 from ingle_addin.book.calling import Call
+from ingle_addin.book.criteria import is_odd, may_make_odd, odd_criterion
 from ingle_addin.book.engine import Engine
 from ingle_addin.book.filled_down import Filled
 from ingle_addin.book.formula import MAX_NESTING, ROW, UnreadableError, check_size
@@ -218,7 +220,17 @@ class Work:
                 self._cache[cached] = plan
             if plan.keep is None and not plan.whole and not plan.array:
                 self._add_test(plan, slots, cell.key)
-        return plan, slots
+        odd = odd_criterion(plan.criteria, slots, self._odd_texts) if plan.criteria and plan.keep is None else None
+        return (plan if odd is None else Plan(keep=odd, is_ingle=plan.is_ingle, refs=plan.refs)), slots
+
+    @cached_property
+    def _odd_texts(self) -> bool:
+        """Whether a cell holds a criterion that the engine does not read as it should, or a formula may make one."""
+        return any(
+            any(type(value) is str and is_odd(value) for value in sheet.values.values())
+            or any(may_make_odd(cell.text) for cell in sheet.formulas)
+            for sheet in self.book.sheets
+        )
 
     def _add_test(self, plan: Plan, slots: Sequence[str], key: int) -> None:
         """One formula of each shape stands on a sheet of its own, to tell a formula the engine cannot read."""
