@@ -21,6 +21,9 @@ MARKS = (_BAND, _REFERENCE, _NUMBER, _STRING)
 REFERENCE_MARKS = (_BAND, _REFERENCE)
 # Stands for the row's own number where formulas filled down a column are told together.
 ROW = "\x05"
+_OURS = re.compile(f"[{''.join(MARKS)}{ROW}]")
+# A shape that no parser takes.
+UNREADABLE = "\x06"
 _SLOT = re.compile(
     r"""
       (?<![\w.\\$]) ( \$?[A-Z]{1,3}:\$?[A-Z]{1,3} | \$?\d{1,7}:\$?\d{1,7} ) (?![\w.(!\[$])   # A:B  1:2
@@ -122,6 +125,8 @@ Expr = tuple[Node, ...]
 def split(text: str) -> tuple[str, list[str]]:
     """A formula's shape and its slots: the same shape in every row of a column filled down."""
     slots: list[str] = []
+    if not text.isprintable() and _OURS.search(text):  # no file can hold these, so nobody means them
+        return UNREADABLE, slots
 
     def mark(match: re.Match[str]) -> str:
         group = match.lastindex or 5

@@ -99,7 +99,7 @@ class Lifter:
             result.is_ingle = _has_call(tree, self.spelling) or self._named_call(tree, sheet, set())
             work.compile(self.resolver.resolve(tree, sheet, place))
         except UnreadableError as reason:
-            result.keep = str(reason)
+            result.keep = " ".join(str(reason).split())  # a name in it may hold line breaks
             result.volatile = isinstance(reason, VolatileError)
         except RecursionError:
             result.keep = "the formula is nested too deep"
