@@ -4,7 +4,7 @@ from __future__ import annotations
 
 import datetime
 from collections import defaultdict
-from collections.abc import Collection
+from collections.abc import Collection, Iterable, Iterator, Mapping, Sequence
 from operator import itemgetter
 
 from ingle_addin.book.book import Book
@@ -19,6 +19,7 @@ from ingle_addin.book.progress import WORKING, WRITING, Progress, share
 from ingle_addin.book.refs import Rect, cell_name, key_of, place_of
 from ingle_addin.book.report import Truncated
 from ingle_addin.book.scan import FormulaCell
+from ingle_addin.book.watch import Watch
 from ingle_addin.book.work import Work
 from ingle_addin.calls import Outcome, SolveCalls
 from ingle_addin.cells import Cell, CellError, Grid
@@ -73,9 +74,13 @@ class _Rounds:
         self._moved: set[int] = set()  # calls whose block has changed its place since the engine was last told
         self._cells_of: dict[int, FormulaCell] = {id(call): cell for call, cell in work.whole}
         self._calls = [call for call, _ in work.whole] + [call for each in work.nested for call in each.calls]
-        self._levels: defaultdict[int, list[Call]] = defaultdict(list)
-        for call in self._calls:
-            self._levels[call.level].append(call)
+        self._watch = Watch(self._calls, len(self._book.sheets))
+        # What calls read of the cells that the engine computes.
+        self._read = [[key for key in keys if key in watched] for keys, watched in self._engine_and_watched()]
+
+    def _engine_and_watched(self) -> Iterator[tuple[list[int], set[int]]]:
+        for sheet, keys in enumerate(self._work.engine_cells):
+            yield keys, set(self._watch.watched(sheet))
 
     @property
     def _graph(self) -> Graph:
@@ -150,7 +155,10 @@ class _Rounds:
                 if not keys:
                     continue
                 values, odd = work.engine.read(sheet, keys)
-                work.values[sheet].update(zip(keys, values, strict=True))
+                known = work.values[sheet]
+                before = [known.get(key) for key in self._read[sheet]]
+                known.update(zip(keys, values, strict=True))
+                self._watch.stir(sheet, _changed(known, self._read[sheet], before))
                 strange += [((sheet, keys[index]), str(values[index])) for index in odd]
             if not strange or not self._keep_strange(strange):
                 break
@@ -204,6 +212,7 @@ class _Rounds:
             (sheet, _), cell, _ = found
             stored = work.keep(sheet, cell, reason)
             gone[sheet].update(stored)
+            self._watch.stir(sheet, stored)
             if work.has_engine:
                 work.engine.put(sheet, stored.items())
         for sheet, keys in gone.items():
@@ -215,14 +224,34 @@ class _Rounds:
     # -- Calls --------------------------------------------------------------------------------------------------------
 
     def _solve_all(self, *, first: bool) -> bool:
-        """Solve every call whose arguments have changed, one batch a function; whether any answer changed."""
+        """Solve every call whose arguments have changed, one batch a function; whether any answer changed.
+
+        Calls that read the cells of other calls follow at once, without the engine.
+        """
         changed = False
-        for level in sorted(self._levels):
+        calls: Sequence[Call] = self._calls if first else [*self._watch.take(), *self._watch.restless]
+        passes = 0
+        while calls:
+            changed |= self._solve_some(calls)
+            calls = self._watch.take()
+            passes += 1
+            if calls and passes == _PATIENCE:
+                self._stop_circles((call.sheet, call.key) for call in calls)
+            if passes > len(self._calls):
+                self._stop_unsettled()
+        return changed
+
+    def _solve_some(self, calls: Iterable[Call]) -> bool:
+        """Solve those of the calls whose arguments have changed, inner ones first; whether any answer changed."""
+        levels: defaultdict[int, list[Call]] = defaultdict(list)
+        for call in calls:
+            if not call.stopped:
+                levels[call.level].append(call)
+        changed = False
+        for level in sorted(levels):
             self._common.clear()  # an answer of the level before may stand in them
             batches: defaultdict[str, list[tuple[Call, tuple[Grid, ...]]]] = defaultdict(list)
-            for call in self._levels[level]:
-                if call.stopped or not (first or call.moves):
-                    continue
+            for call in levels[level]:
                 args = tuple(arg.read(self) for arg in call.args)
                 if call.solved and args == call.last:
                     continue
@@ -269,6 +298,7 @@ class _Rounds:
             self._note_truncated(call, range_name(stored))
         cells = list(laid(call.grid, stored, cell.dynamic)) if cell.kind == "array" else [(cell.key, plain(call.grid[0][0]))]
         self._work.values[call.sheet].update(cells)
+        self._watch.stir(call.sheet, (key for key, _ in cells))
         self._dirty[call.sheet] += cells
 
     def _note_truncated(self, call: Call, stored: str) -> None:
@@ -292,7 +322,7 @@ class _Rounds:
         self._dirty.clear()
         self._moved.clear()
 
-    def _stop_circles(self, places: list[Place]) -> bool:
+    def _stop_circles(self, places: Iterable[Place]) -> bool:
         """Give up those calls that rest on their own answers; whether there were any."""
         reasons: dict[Place, str] = {}
         for ring in self._graph.circles(places):
@@ -317,3 +347,11 @@ class _Rounds:
             if call.moves and not call.stopped
         }
         self._give_up(reasons)
+
+
+def _changed(known: Mapping[int, Cell], keys: Sequence[int], before: Sequence[Cell]) -> Iterator[int]:
+    """The cells that no longer hold what they held."""
+    for key, old in zip(keys, before, strict=True):
+        new = known.get(key)
+        if new != old or type(new) is not type(old):
+            yield key
