@@ -6,7 +6,7 @@ from pathlib import Path
 from typing import Any
 
 import pytest
-from book_samples import filled, made, with_sheet_xml
+from book_samples import filled, made, with_cells, with_sheet_xml
 
 
 def test_array_formulas(tmp_path: Path) -> None:
@@ -62,3 +62,59 @@ def test_shared_formulas(tmp_path: Path) -> None:
     cells, report, _ = filled(with_sheet_xml(tmp_path / "book.xlsx", data))
     assert [cells[f"B{row}"] for row in (1, 2, 3)] == [2, 5, 9]
     assert [(each.cell, each.reason) for each in report.not_computed] == [("C3", "the formula could not be read")]
+
+
+def data_table(first: str) -> str:
+    """A what-if table over B2:C3 as Excel keeps it: its formula in the first cell, the others hold values alone."""
+    return (
+        '<row r="1"><c r="A1"><f>1+1</f><v>2</v></c></row>'
+        f'<row r="2"><c r="B2"><f t="dataTable" ref="B2:C3" dt2D="1" dtr="1" r1="D1" r2="D2"{first}<v>1</v></c>'
+        '<c r="C2"><v>2</v></c><c r="D2"><f>SUM(B2:C2)</f><v>0</v></c></row>'
+        '<row r="3"><c r="B3"><v>3</v></c><c r="C3"><v>4</v></c><c r="D3"><f>C3*10</f><v>0</v></c><c r="E3"><f>A1*2</f></c></row>'
+    )
+
+
+@pytest.mark.parametrize("first", ["/>", "></f>"])
+def test_data_tables_keep_their_values(tmp_path: Path, first: str) -> None:
+    cells, report, _ = filled(with_sheet_xml(tmp_path / "book.xlsx", data_table(first)))
+    assert cells == {"A1": 2, "B2": 1, "C2": 2, "D2": 3, "B3": 3, "C3": 4, "D3": 40, "E3": 4}
+    assert [(each.cell, each.reason) for each in report.not_computed] == [
+        ("B2", "it is part of a what-if data table"),
+        ("D2", "rests on Data!B2, which was not computed"),
+        ("D3", "rests on Data!B2, which was not computed"),
+    ]
+
+
+def test_an_array_too_large_keeps_its_values(tmp_path: Path) -> None:
+    data = (
+        '<row r="1"><c r="A1"><f t="array" ref="A1:B1000000">1+1</f><v>7</v></c><c r="B1"><v>8</v></c>'
+        '<c r="C1"><f>A1+B1</f></c></row>'
+    )
+    cells, report, _ = filled(with_sheet_xml(tmp_path / "book.xlsx", data))
+    assert cells == {"A1": 7, "B1": 8, "C1": 15}
+    assert [(each.cell, each.reason) for each in report.not_computed] == [
+        ("A1", "its array has too many cells"),
+        ("C1", "rests on Data!A1, which was not computed"),
+    ]
+
+
+def test_a_long_chain_of_calls_is_followed_without_the_engine(tmp_path: Path) -> None:
+    cells = {"A1": "=INGLE.PEAK(1)", **{f"A{row}": f"=INGLE.PEAK(A{row - 1},1)" for row in range(2, 301)}, "B1": "=A300*2"}
+    values, report, solver = filled(with_cells(tmp_path / "book.xlsx", cells))
+    assert (values["A300"], values["B1"], report.not_computed) == (300, 600, ())
+    # All of them first; then each as soon as the one before has its answer, A2 having had it already.
+    assert solver.batches[0] == ("INGLE.PEAK", 300)
+    assert sum(count for _, count in solver.batches) < 900
+
+
+def test_a_call_that_reads_a_cell_given_up_is_asked_again(tmp_path: Path) -> None:
+    data = (
+        '<row r="1"><c r="A1"><f>INGLE.PEAK(B1)</f><v>4</v></c><c r="B1"><f>A1+1</f><v>5</v></c>'
+        '<c r="C1"><f>INGLE.PEAK(B1,A1)</f><v>0</v></c><c r="D1"><f>INGLE.PEAK(C1)</f><v>0</v></c></row>'
+    )
+    values, report, _ = filled(with_sheet_xml(tmp_path / "book.xlsx", data))
+    assert values == {"A1": 4, "B1": 5, "C1": 9, "D1": 9}
+    ring = "the cells go round in a circle: Data!A1, Data!B1"
+    kept = [(each.cell, each.reason) for each in report.not_computed if not each.rests]
+    assert kept == [("A1", ring), ("B1", ring)]
+    assert {each.cell for each in report.not_computed if each.rests} == {"C1", "D1"}

@@ -8,9 +8,10 @@ from typing import Any
 
 import pytest
 from book_samples import filled, made, with_cells, with_sheet_xml
-from ingle_addin.book import open_book
+from ingle_addin.book import open_book, summary
 from ingle_addin.cells import CellError
 
+CRITERION = "it uses a criterion (<>text, or one with ~) that the calculation engine does not read as spreadsheets do"
 DATA = {
     **{f"A{row}": row for row in range(1, 6)},
     **{f"B{row}": row * 10 for row in range(1, 6)},
@@ -61,6 +62,59 @@ def test_ordinary_formula(tmp_path: Path, formula: str, value: object) -> None:
     assert cells["E8"] == value
     assert report.not_computed == ()
     assert (report.ingle_cells, report.ordinary_cells) == (0, 1)
+
+
+@pytest.mark.parametrize(
+    ("formula", "value"),
+    [
+        ("=LET(x,A2,y,x*10,x+y)", 22),
+        ("=_xlfn.LET(_xlpm.x,A2,INGLE.PEAK(_xlpm.x,_xlpm.x*3))", 8),
+        ("=_xlfn.LET(_xlpm.r,A1:A3,SUM(_xlpm.r)+INGLE.PEAK(_xlpm.r))", 12),
+        ("=LET(x,1,LET(x,x+1,x*10)+x)", 21),
+        ("=LET(rate,2,rate*A3)", 6),
+        ("=SUM(_xlfn.MAP(A1:A3,_xlfn.LAMBDA(_xlpm.x,_xlpm.x*2)))", 12),
+        ("=SUM(MAP(A1:A3,LAMBDA(x,x*2)))", 12),
+    ],
+)
+def test_names_of_let_and_lambda(tmp_path: Path, formula: str, value: object) -> None:
+    def build(book: Any, page: Any) -> None:
+        for name, each in DATA.items():
+            page.write(name, each)
+        book.define_name("rate", "=7")
+        page.write_formula("E8", formula)
+
+    cells, report, _ = filled(made(tmp_path / "book.xlsx", build))
+    assert cells["E8"] == value
+    assert report.not_computed == ()
+
+
+def test_calls_inside_names_belong_to_the_cell(tmp_path: Path) -> None:
+    def build(book: Any, page: Any) -> None:
+        page.write_row("A1", [1, 2])
+        book.define_name("hot", "=INGLE.PEAK(Data!$A$1:$B$1)")
+        book.define_name("twice", "=hot*2")
+        book.define_name("lost", "=STRANGE(INGLE.PEAK(1))")
+        book.define_name("made", "=_xlfn.LAMBDA(_xlpm.x,INGLE.PEAK(_xlpm.x))")
+        page.write_formula("C1", "=twice+1")
+        page.write_formula("C2", "=lost")
+        page.write_formula("C3", "=made(A1)")
+
+    cells, report, _ = filled(made(tmp_path / "book.xlsx", build))
+    assert cells["C1"] == 7
+    assert (report.ingle_cells, report.complete) == (1, False)
+    assert [(each.cell, each.reason, each.ingle) for each in report.not_computed] == [
+        ("C2", "it uses STRANGE, which the calculation engine does not have", True),
+        ("C3", "it uses the name made as a function (LAMBDA)", True),
+    ]
+
+
+def test_a_criterion_in_a_cell(tmp_path: Path) -> None:
+    cells = {**DATA, "E1": "=COUNTIF(A1:A5,F1)", "E2": '=COUNTIF(A1:A5,"<>3")', "E3": "=COUNTIF(A1:A5,3)"}
+    values, report, _ = filled(with_cells(tmp_path / "fine.xlsx", {**cells, "F1": ">2"}))
+    assert (values["E1"], values["E2"], values["E3"], report.not_computed) == (3, 4, 1, ())
+    values, report, _ = filled(with_cells(tmp_path / "odd.xlsx", {**cells, "F1": "<>x"}))
+    assert (values["E2"], values["E3"]) == (4, 1)
+    assert [(each.cell, each.reason) for each in report.not_computed] == [("E1", CRITERION)]
 
 
 @pytest.mark.parametrize(("cell", "value"), [("E3", 60), ("E9", "#VALUE!")])
@@ -269,6 +323,10 @@ def test_arguments(tmp_path: Path, argument: str, grid: object) -> None:
     [
         ("=AGGREGATE(9,6,A1:A2)", "it uses AGGREGATE, which the calculation engine does not have"),
         ("=IFERROR(STRANGE(A1),1)", "it uses STRANGE, which the calculation engine does not have"),
+        ('=COUNTIF(A1:A6,"<>x")', CRITERION),
+        ('=SUMIFS(A1:A6,A1:A6,">0",A1:A6,"<>"&D9)', CRITERION),
+        ('=COUNTIF(A1:A6,"a~*")', CRITERION),
+        ("=MAXA(A1,2)", "the calculation engine passes over truth values and texts of single cells in it (MAXA)"),
         ("=RAND()*2", "it draws random numbers (RAND)"),
         ("=A1:A3 A2:A5", "it takes the overlap of two ranges (a blank between them)"),
         ("=SUM((A1,A2))", "it joins ranges with a comma"),
@@ -280,7 +338,17 @@ def test_arguments(tmp_path: Path, argument: str, grid: object) -> None:
         ("=SUM(A1#)", "it refers to the spilled range of a cell (A1#)"),
         ("=SUMPRODUCT(--ISNUMBER(A1:A5))", "it uses ISNUMBER on whole arrays, which the calculation engine cannot"),
         ("=INGLE.PEAK(OFFSET(A1,1,0))", "an argument is made by OFFSET; give the range itself"),
-        ("=_xlfn.LET(_xlpm.x,1,INGLE.PEAK(_xlpm.x))", "it uses a LET or LAMBDA name inside an Ingle call"),
+        ("=SUM(_xlfn.MAP(A1:A2,_xlfn.LAMBDA(_xlpm.x,INGLE.PEAK(_xlpm.x))))", "it uses a LET or LAMBDA name inside an Ingle call"),
+        (
+            "=_xlfn.LET(_xlpm.f,_xlfn.LAMBDA(_xlpm.x,_xlpm.x+1),_xlpm.f(1))",
+            "it gives a name to a function of its own (LET with LAMBDA)",
+        ),
+        ("=LET(a,1,b)", "it uses the name b, which the workbook does not define"),
+        ("=LET(A1,1,2)", "the formula could not be read"),
+        (
+            "=LET(" + ",".join(f"x_{i},x_{i - 1}+x_{i - 1}" if i else "x_0,1+A1" for i in range(20)) + ",x_19)",
+            "the names of its LET stand for too long an expression",
+        ),
         ("=1+" + "(" * 65 + "1" + ")" * 65, "the formula is nested deeper than 64 levels"),
         ("=1" + "+1" * 4096, "the formula is longer than 8,192 characters"),
         ("=1+", "the formula could not be read"),
@@ -327,7 +395,11 @@ def test_rows_without_an_answer(tmp_path: Path) -> None:
     assert [(each.sheet, each.cell, each.row, each.error, each.reason) for each in report.no_answers] == [
         ("Data", "B1", 1, "#DIV/0!", "a cell holds #DIV/0!"),
     ]
-    assert report.hidden == 1  # B2 shows a value
+    # B2 shows a value.
+    assert [(each.cell, each.row, each.error, each.reason) for each in report.hidden] == [
+        ("B2", 2, "#DIV/0!", "a cell holds #DIV/0!")
+    ]
+    assert summary(report)[3] == "1 Ingle call without an answer stands inside formulas that show a value: Data!B2."
 
 
 def test_dates_from_1904(tmp_path: Path) -> None:

@@ -10,8 +10,9 @@ import pytest
 from hypothesis import given
 from hypothesis import strategies as st
 from ingle_addin import book as package
-from ingle_addin.book import NoAnswer, NotComputed, Report, Truncated, summary
+from ingle_addin.book import BookError, NoAnswer, NotComputed, Report, Truncated, summary
 from ingle_addin.book.book import Formulas
+from ingle_addin.book.criteria import is_odd, may_make_odd
 from ingle_addin.book.dates import moment_of, serial_of
 from ingle_addin.book.engine import Engine, Strange
 from ingle_addin.book.formula import UnreadableError, join, parse, shifted, split
@@ -36,9 +37,10 @@ from openpyxl.styles.numbers import is_date_format as openpyxl_is_date_format
 
 
 def test_the_public_names() -> None:
-    assert sorted(package.__all__) == sorted(
-        name for name, value in vars(package).items() if not name.startswith("_") and getattr(value, "__module__", None)
-    )
+    assert sorted(package.__all__) == sorted(package._MODULES)
+    assert all(getattr(package, name) is not None for name in package.__all__)
+    with pytest.raises(AttributeError, match=r"^module 'ingle_addin.book' has no attribute 'nothing'$"):
+        _ = package.nothing
 
 
 def test_columns() -> None:
@@ -198,7 +200,7 @@ def test_spelling() -> None:
 
 
 def test_the_engine_has_the_functions_it_is_given(tmp_path: Path) -> None:
-    with Engine(tmp_path / "book.xlsx", ["Sheet1"]) as engine:
+    with Engine(tmp_path / "book.xlsx").open(["Sheet1"]) as engine:
         functions = sorted(ENGINE_FUNCTIONS)
         keys = [key_of(row, 1) for row in range(1, len(functions) + 1)]
         engine.put_formulas(0, keys, [f"{name}()" for name in functions])
@@ -227,7 +229,7 @@ def test_the_engine_works_element_by_element_where_it_is_said_to(tmp_path: Path)
         "REPT": '"a",2',
         "EXACT": '"a","A"',
     }
-    with Engine(tmp_path / "book.xlsx", ["Sheet1"]) as engine:
+    with Engine(tmp_path / "book.xlsx").open(["Sheet1"]) as engine:
         for row, (number, text) in enumerate([(0.25, "abac"), (0.5, "bcd"), (0.75, "a")], 1):
             engine.put(0, [(key_of(row, 1), number), (key_of(row, 2), text), (key_of(row, 3), 2000.0 + row)])
         for place, name in enumerate(sorted(VECTORISED), 1):
@@ -262,9 +264,7 @@ def test_the_tables_of_functions_agree() -> None:
 
 
 def test_engine_values(tmp_path: Path) -> None:
-    with Engine(tmp_path / "book.xlsx", ["it's", "x" * 40, "Data"]) as engine:
-        assert engine.sheet_names[0] == "it's"
-        assert engine.sheet_names[2] == "Data"
+    with Engine(tmp_path / "book.xlsx").open(["it's", "x" * 31, "Data"]) as engine:
         values: list[Cell] = [1.5, "=1+1", "#N/A", True, CellError.NUM, "", None, 3, float("inf")]
         keys = [key_of(1, column) for column in range(1, 10)]
         engine.put(2, zip(keys, values, strict=True))
@@ -272,6 +272,12 @@ def test_engine_values(tmp_path: Path) -> None:
         engine.evaluate()
         assert engine.values(2, keys) == [1.5, "=1+1", "#N/A", True, CellError.NUM, "", None, 3.0, CellError.NUM]
         assert engine.values(2, [key_of(2, 1)]) == [Strange("#CIRC!")]
+
+
+def test_a_sheet_name_that_the_engine_refuses(tmp_path: Path) -> None:
+    with Engine(tmp_path / "book.xlsx").open(["Data", "a/b"]) as engine, pytest.raises(BookError) as caught:
+        engine.values(0, [key_of(1, 1)])
+    assert str(caught.value) == f"{tmp_path / 'book.xlsx'}: the calculation engine takes no sheet of the name a/b; rename it"
 
 
 @pytest.mark.parametrize(
@@ -353,3 +359,33 @@ def test_summary() -> None:
         "The workbook as it was is kept in case.xlsx.bak.",
         "Written to case.filled.xlsx.",
     ]
+
+
+@pytest.mark.parametrize(
+    ("criterion", "odd"),
+    [
+        ("<>x", True), ("<>", False), ("<>5", False), ("<>-1.5E3", False), ("<>TRUE", False), ("<>#N/A", False), ("<>x*", False),
+        ("<>?y", False), ("<> ", True), ("<>1/2", True), ("~*", True), ("=x", False), ("x", False), (">3", False), ("", False),
+    ],
+)  # fmt: skip
+def test_criteria(criterion: str, odd: bool) -> None:
+    assert is_odd(criterion) == odd
+
+
+@pytest.mark.parametrize(
+    ("formula", "may"),
+    [('"<>"&A1', True), ('"<>"', False), ('"<>3"', False), ('IF(A1<>B1,"<>x")', True), ('"a~b"', True), ("A1<>B1", False)],
+)
+def test_formulas_that_may_make_such_criteria(formula: str, may: bool) -> None:
+    assert may_make_odd(formula) == may
+
+
+def test_the_engine_still_reads_those_criteria_wrongly(tmp_path: Path) -> None:
+    """When this fails the engine has been mended, and book/criteria.py can go. Five of six cells do not hold x."""
+    with Engine(tmp_path / "book.xlsx").open(["Data"]) as engine:
+        engine.put(0, [(key_of(1, 1), "x"), (key_of(3, 1), "y"), (key_of(4, 1), 5.0), (key_of(5, 1), True)])
+        texts = ["<>x", "<>x*", "~x", "<>5", "<>"]
+        keys = [key_of(row, 3) for row in range(1, 6)]
+        engine.put_formulas(0, keys, [f'COUNTIF(A1:A6,"{text}")' for text in texts])
+        engine.evaluate()
+        assert engine.values(0, keys) == [1.0, 5.0, 0.0, 5.0, 4.0]

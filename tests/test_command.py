@@ -66,7 +66,7 @@ def book(path: Path, second: object = 10.0) -> Path:
 
 # Help.
 
-HELP = [(), ("fill",), ("ask",), ("reference",), ("doctor",), ("install", "calc")]
+HELP = [(), ("fill",), ("check",), ("respell",), ("ask",), ("reference",), ("doctor",), ("install", "calc")]
 
 
 @pytest.fixture(scope="module")
@@ -103,6 +103,7 @@ def test_ingle_alone_says_how_to_begin() -> None:
     assert run() == Ran(0, [
         "Ingle fills workbooks whose cells ask how hot self-heating parts get.",
         "  ingle fill BOOK.xlsx    computes a workbook into BOOK.filled.xlsx",
+        "  ingle check BOOK.xlsx   compares a workbook with its stored values",
         "  ingle ask ANSWERS CASE  answers one case here",
         "  ingle install calc      puts the functions into LibreOffice Calc",
         "  ingle doctor            says what is wrong with that",
@@ -263,6 +264,23 @@ NOT_READ = {
     "it is not)",
     "fill good.xlsx -o open.xlsx": "open.xlsx is open in a spreadsheet program; close it there first (or delete .~lock.open.xlsx# "
     "if it is not)",
+    "fill good.xlsx -o out.csv": "out.csv does not end in .xlsx; a workbook stays of its own kind, so name it out.xlsx",
+    "fill good.xlsx -o out": "out does not end in .xlsx; a workbook stays of its own kind, so name it out.xlsx",
+    "fill good.xlsx -o out.xlsm": "out.xlsm does not end in .xlsx; a workbook stays of its own kind, so name it out.xlsx",
+    "check absent.xlsx": "absent.xlsx does not exist; check the folder and the spelling",
+    "check .": ". is a folder; name the workbook in it",
+    "check cut.xlsx": "cut.xlsx is cut short or damaged; take an earlier copy of it",
+    "respell absent.xlsx --to dotted": "absent.xlsx does not exist; check the folder and the spelling",
+    "respell cut.xlsx --to dotted": "cut.xlsx is cut short or damaged; take an earlier copy of it",
+    "respell good.xlsx": "missing option '--to'; see ingle respell --help",
+    "respell good.xlsx --to spotted": "--to is spotted; write dotted (INGLE.PEAK) or underscored (INGLE_PEAK)",
+    "respell good.xlsx --to dotted -o good.xlsx": "good.xlsx is the workbook itself; name another file, or say --in-place to "
+    "replace it",
+    "respell good.xlsx --to dotted -o out.csv": "out.csv does not end in .xlsx; a workbook stays of its own kind, so name it "
+    "out.xlsx",
+    "respell good.xlsx --to dotted --in-place -o out.xlsx": "either --in-place or an output file (out.xlsx) can be given, not both",
+    "respell open.xlsx --to dotted --in-place": "open.xlsx is open in a spreadsheet program; close it there first (or delete "
+    ".~lock.open.xlsx# if it is not)",
     "fill good.xlsx --zzzzz": f"no such option: --zzzzz; {USAGE}",
     "fill": f"missing argument 'book'; {USAGE}",
     "fill good.xlsx -o": "option '-o' requires an argument; see ingle --help",

@@ -54,7 +54,8 @@ def test_a_hundred_thousand_rows(tmp_path: Path) -> None:
 
 
 def test_a_killed_fill_leaves_the_old_file_or_the_new(tmp_path: Path) -> None:
-    book = tmp_path / "cases.xlsx"
+    """Fifty fills in place killed at random moments, drawn more densely where the file is written."""
+    book, backup = tmp_path / "cases.xlsx", tmp_path / "cases.xlsx.bak"
     write_cases(book, 3000)
     old = book.read_bytes()
     command = [sys.executable, "-c", "from ingle_addin.command import main; main()", "fill", str(book), "--in-place"]
@@ -64,16 +65,25 @@ def test_a_killed_fill_leaves_the_old_file_or_the_new(tmp_path: Path) -> None:
     new = book.read_bytes()
     assert new != old
     draw = random.Random(11)
-    killed = 0
-    for _ in range(20):
+    killed = left_over = replaced = 0
+    for number in range(50):
         book.write_bytes(old)
+        backup.unlink(missing_ok=True)
         process = subprocess.Popen(command, stdout=subprocess.DEVNULL, stderr=subprocess.DEVNULL)
-        time.sleep(draw.uniform(0.3, 1.1) * whole)
+        time.sleep(draw.uniform(*((0.3, 1.1) if number % 2 else (0.75, 1.05))) * whole)
         process.send_signal(signal.SIGKILL)
         killed += process.wait() == -signal.SIGKILL
         assert book.read_bytes() in (old, new)
-    print(f"{killed} of 20 fills were killed before their end")
-    assert killed > 3
+        assert not backup.exists() or backup.read_bytes() == old
+        assert backup.exists() or book.read_bytes() == old
+        replaced += book.read_bytes() == new
+        left_over += any(path.name.endswith(".ingle.part") for path in tmp_path.iterdir())
+    print(f"{killed} of 50 fills killed before their end, {left_over} times a half file beside the workbook, {replaced} times filled")
+    assert killed > 10
+    book.write_bytes(old)
+    subprocess.run(command, check=True, capture_output=True)
+    assert sorted(path.name for path in tmp_path.iterdir()) == ["cases.xlsx", "cases.xlsx.bak"]
+    assert (book.read_bytes(), backup.read_bytes()) == (new, old)
 
 
 def refusal(book: Path) -> str | None:

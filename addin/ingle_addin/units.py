@@ -5,8 +5,8 @@ Factors are exact ratios until the last step, so each is the double nearest to t
 and NIST SP 811 appendix B. A BTU is that of the International Table, 1055.05585262 J. A calorie is the thermochemical
 one, 4.184 J. `mil` is the length, 0.001 in.
 
-Spelling is `unit_spelling`'s task; pint turns the names into factors and dimensions. It is imported on first use, since
-that takes longer than most workbooks.
+Spelling is `unit_spelling`'s task; pint turns the names into factors and dimensions, but for the commonest, which
+`unit_sizes` knows: importing it takes longer than most workbooks.
 """
 
 from __future__ import annotations
@@ -19,6 +19,7 @@ from enum import Enum
 from fractions import Fraction
 from typing import TYPE_CHECKING, Any, TypeVar
 
+from ingle_addin.unit_sizes import Dimension, size_of
 from ingle_addin.unit_spelling import Spelling, SpellingError, read_spelling
 
 if TYPE_CHECKING:
@@ -28,7 +29,6 @@ if TYPE_CHECKING:
 __all__ = ["Kind", "Unit", "UnitError", "read_unit"]
 
 Value = TypeVar("Value", float, "npt.NDArray[np.float64]")
-Dimension = frozenset[tuple[str, Fraction]]
 
 
 class Kind(Enum):
@@ -202,7 +202,8 @@ def _read(text: str, kinds: tuple[Kind, ...]) -> Unit | str:
             shift, factor = _SCALES[spelling.degree]
             return Unit(kind, factor, shift if kind is Kind.TEMPERATURE else 0.0)
     with _pint_lock:
-        _registry()  # here, so that a missing or broken pint is not blamed on the unit
+        if size_of(spelling.powers) is None:
+            _registry()  # here, so that a missing or broken pint is not blamed on the unit
         try:
             return _measured(text, spelling, kinds, remedy)
         except Exception as error:  # pint has raised AssertionError, TypeError, RecursionError, … for what it cannot read
@@ -259,6 +260,9 @@ def _dimension(kind: Kind) -> Dimension:
 
 def _size(powers: Mapping[str, int]) -> tuple[Fraction, Dimension]:
     """Exact factor to SI, and the dimension. Only with the lock held: pint's own caches are not made for threads."""
+    known = size_of(powers)
+    if known is not None:
+        return known
     registry = _registry()
     unit = registry.parse_units(" * ".join(f"{name} ** {power}" for name, power in sorted(powers.items())))
     factor, _ = registry.get_base_units(unit)

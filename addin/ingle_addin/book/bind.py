@@ -119,6 +119,16 @@ class Binder:
                     None if column is None else self._single(column, slots, key, made, state),
                 )
 
+    def area(self, sheet: int, rect: Rect, band: bool) -> tuple[Area, bool, bool]:
+        """A range as an argument, whether it can move, and whether it is a whole column."""
+        state = _State()
+        return self._area(sheet, rect, band, state), state.moves, state.whole_column
+
+    def moving_in(self, sheet: int, left: int, right: int) -> set[int] | None:
+        """The cells of a sheet that can change between rounds, None if there are none in those columns."""
+        columns = self._moving_columns[sheet]
+        return self._moving[sheet] if any(column in columns for column in range(left, right + 1)) else None
+
     def _area(self, sheet: int, rect: Rect, band: bool, state: _State) -> Area:
         if band or rect.rows * rect.columns > _MAX_ELEMENTS:
             state.whole_column = state.whole_column or (band and rect.bottom == MAX_ROW)
@@ -141,9 +151,8 @@ class Binder:
         )
 
     def _can_move(self, sheet: int, rect: Rect) -> bool:
-        moving = self._moving[sheet]
-        columns = self._moving_columns[sheet]
-        if not any(column in columns for column in range(rect.left, rect.right + 1)):
+        moving = self.moving_in(sheet, rect.left, rect.right)
+        if moving is None:
             return False
         for row in range(rect.top, rect.bottom + 1):
             start = key_of(row, rect.left)

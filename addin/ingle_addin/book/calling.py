@@ -18,6 +18,9 @@ class Cells(Protocol):
     def grid(self, sheet: int, rect: Rect) -> Grid:
         """The cells of a rectangle, empty ones None."""
 
+    def common(self, area: Area) -> Grid:
+        """The cells of a range that many calls read."""
+
     def helper(self, key: int) -> Cell:
         """The value of a cell of the helper sheet."""
 
@@ -48,6 +51,16 @@ class Area(NamedTuple):
     def read(self, cells: Cells) -> Grid:
         """The range's cells."""
         return cells.grid(self.sheet, self.rect)
+
+
+class Common(NamedTuple):
+    """A range that the calls of a whole column share, such as their headings."""
+
+    area: Area
+
+    def read(self, cells: Cells) -> Grid:
+        """The range's cells, read once for all calls of a batch."""
+        return cells.common(self.area)
 
 
 class Answer(NamedTuple):

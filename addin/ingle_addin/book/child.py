@@ -2,7 +2,7 @@
 
 Run as a script, not as a module of the package, so that it starts with nothing but IronCalc. Commands come in on the
 standard input and answers go out on the standard output, each as one marshalled object behind its length. An error value
-travels as a tuple that holds its text.
+travels in as a tuple that holds its text.
 """
 
 from __future__ import annotations
@@ -47,21 +47,14 @@ class Model:
         self._model = ironcalc.create("book", "en", "UTC", "en")
         self._is_error = ironcalc.CellType.ErrorValue
         self._refused: list[tuple[int, int]] = []
-        self.names: list[str] = []
         for index, name in enumerate(names):
-            # A name the engine does not like is replaced: formulas are written with the names given back.
-            for attempt in (name, f"sheet {index} of the book"):
-                try:
-                    if index:
-                        self._model.add_sheet(attempt)
-                    else:
-                        self._model.rename_sheet(0, attempt)
-                except ironcalc.WorkbookError:
-                    continue
-                self.names.append(attempt)
-                break
-            else:
-                raise ValueError(name)
+            try:
+                if index:
+                    self._model.add_sheet(name)
+                else:
+                    self._model.rename_sheet(0, name)
+            except ironcalc.WorkbookError:
+                raise NameError(name) from None
 
     def put(self, sheet: int, keys: Sequence[int], values: Sequence[Any]) -> None:
         """Set constants; None empties the cell."""
@@ -106,19 +99,19 @@ class Model:
         """Work everything out."""
         self._model.evaluate()
 
-    def values(self, sheet: int, keys: Sequence[int]) -> list[object]:
-        """Read cells."""
+    def values(self, sheet: int, keys: Sequence[int]) -> tuple[list[object], list[tuple[int, str]]]:
+        """Read cells; errors come apart, as (index, text)."""
         model = self._model
         get = model.get_cell_value
         found: list[object] = []
+        errors: list[tuple[int, str]] = []
         for key in keys:
             row, column = key >> _BITS, (key & _MASK) + 1
             value = get(sheet, row, column)
             if type(value) is str and value[:1] == "#" and model.get_cell_type(sheet, row, column) == self._is_error:
-                found.append((value,))
-            else:
-                found.append(value)
-        return found
+                errors.append((len(found), value))
+            found.append(value)
+        return found, errors
 
 
 def main() -> None:
@@ -134,9 +127,12 @@ def main() -> None:
             try:
                 model = Model(*args)
             except ImportError:
-                send(stdout, None)
+                send(stdout, False)
                 return
-            send(stdout, model.names)
+            except NameError as refused:
+                send(stdout, str(refused))
+                return
+            send(stdout, True)
         else:
             answer = getattr(model, name)(*args)
             # What only puts is not answered, so that the parent prepares the next batch meanwhile.

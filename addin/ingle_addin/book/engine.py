@@ -34,13 +34,17 @@ class Engine:
     """One workbook in the engine, sheets by index, cells by :func:`ingle_addin.book.refs.key_of`.
 
     Lives in a process of its own, so that a crash of native code loses nothing; whatever the process does wrong is a
-    :class:`BookError` that names the workbook. Close it, or use it in ``with``.
+    :class:`BookError` that names the workbook. It starts while its owner reads the workbook, and is given work after
+    :meth:`open`. Close it, or use it in ``with``.
     """
 
-    def __init__(self, path: Path, sheet_names: Sequence[str]) -> None:
-        if not _is_installed():
-            raise BookError(NOT_INSTALLED)
+    def __init__(self, path: Path) -> None:
         self._path = path
+        self._is_waiting = False  # for the answer to what opened it
+        self.is_open = False
+        self._process: subprocess.Popen[bytes] | None = None
+        if not _is_installed():
+            return
         environment = {**os.environ, "PYTHONPATH": os.pathsep.join(each for each in sys.path if each)}
         self._process = subprocess.Popen(
             [sys.executable, "-P", _SCRIPT],
@@ -51,11 +55,14 @@ class Engine:
         )
         # Both are there, since both were asked for.
         self._input, self._output = cast(BinaryIO, self._process.stdin), cast(BinaryIO, self._process.stdout)
-        names = self._ask("start", list(sheet_names))
-        if names is None:
-            self.close()
+
+    def open(self, sheet_names: Sequence[str]) -> Engine:
+        """Give it sheets of these names. Raises :class:`BookError` if the engine is not installed."""
+        if self._process is None:
             raise BookError(NOT_INSTALLED)
-        self.sheet_names: tuple[str, ...] = tuple(names)
+        self.is_open = self._is_waiting = True
+        self._tell("start", list(sheet_names))
+        return self
 
     def __enter__(self) -> Engine:
         return self
@@ -65,6 +72,8 @@ class Engine:
 
     def close(self) -> None:
         """End the process."""
+        if self._process is None:
+            return
         self._process.kill()
         with contextlib.suppress(OSError):  # what is still in the pipe has no reader
             self._input.close()
@@ -76,15 +85,30 @@ class Engine:
         try:
             child.send(self._input, (name, args))
         except OSError:
+            with contextlib.suppress(OSError, EOFError):
+                self._await_start()  # it may have said why it ended
             raise self._stopped() from None
 
     def _ask(self, name: str, *args: object) -> Any:
         """Send a command and wait for its answer."""
         self._tell(name, *args)
         try:
+            self._await_start()
             return child.receive(self._output)
         except (OSError, EOFError):
             raise self._stopped() from None
+
+    def _await_start(self) -> None:
+        """Hear, once, how its start went."""
+        if not self._is_waiting:
+            return
+        self._is_waiting = False
+        answer = child.receive(self._output)
+        if answer is not True:
+            self.close()
+            if answer is False:
+                raise BookError(NOT_INSTALLED)
+            raise BookError(f"{self._path}: the calculation engine takes no sheet of the name {answer}; rename it")
 
     def _stopped(self) -> BookError:
         self.close()
@@ -125,11 +149,20 @@ class Engine:
 
     def values(self, sheet: int, keys: Sequence[int]) -> list[Cell]:
         """Read cells; an error that no spreadsheet knows comes back as :class:`Strange`."""
+        return self.read(sheet, keys)[0]
+
+    def read(self, sheet: int, keys: Sequence[int]) -> tuple[list[Cell], list[int]]:
+        """The same, and which of them (counted from 0) are :class:`Strange`."""
         found: list[Cell] = []
+        strange: list[int] = []
         for at in range(0, len(keys), _BATCH):
-            for value in self._ask("values", sheet, keys[at : at + _BATCH]):
-                found.append(_inward(value[0]) if type(value) is tuple else value)
-        return found
+            values, errors = self._ask("values", sheet, keys[at : at + _BATCH])
+            for index, text in errors:
+                values[index] = error = _inward(text)
+                if isinstance(error, Strange):
+                    strange.append(at + index)
+            found += values
+        return found, strange
 
 
 NOT_INSTALLED = (

@@ -13,21 +13,23 @@ from typing import IO
 from ingle_addin.book.archive import Archive
 from ingle_addin.book.book import Book, open_book
 from ingle_addin.book.computed import Computed
+from ingle_addin.book.engine import Engine
 from ingle_addin.book.errors import BookError
 from ingle_addin.book.insert import insert
+from ingle_addin.book.progress import WRITING, Progress
 from ingle_addin.book.report import Report
 from ingle_addin.book.rounds import compute
-from ingle_addin.book.save import check_target, place
+from ingle_addin.book.save import check_target, kind_of, place
 from ingle_addin.book.scan import Sheet
 from ingle_addin.book.splice import NotWritableError, Span, splice
-from ingle_addin.book.work import Progress, elements_of
+from ingle_addin.book.work import elements_of
 from ingle_addin.calls import SolveCalls
 from ingle_addin.cells import Cell
 
 
 def default_out(book: Path) -> Path:
     """``STEM.filled.xlsx`` beside the workbook (the suffix stays what it is)."""
-    return book.with_name(f"{book.stem}.filled{book.suffix}")
+    return book.with_name(f"{book.stem}.filled{kind_of(book)}")
 
 
 def fill(
@@ -43,8 +45,9 @@ def fill(
     """Evaluate the workbook ``book`` and write it, with every computed value in its cell, to ``out``.
 
     ``functions`` are the canonical names (``INGLE.PEAK``) that ``solve`` answers, many calls at a time. ``out`` is
-    :func:`default_out` if None; with ``in_place`` the workbook itself, of which ``NAME.bak`` is kept. Everything else in
-    the file stays byte for byte. Raises :class:`BookError` (one line) if anything prevents it; then nothing is changed.
+    :func:`default_out` if None; with ``in_place`` the workbook itself, of which ``NAME.bak`` is kept (if no value changed,
+    neither is touched). Everything else in the file stays byte for byte. Raises :class:`BookError` (one line) if anything
+    prevents it; then nothing is changed.
     """
     book = Path(book)
     if in_place and out is not None:
@@ -52,22 +55,25 @@ def fill(
     target = book if in_place else default_out(book) if out is None else Path(out)
     if book.is_file():
         check_target(book, target, in_place=in_place)
-    with _no_collections():
-        opened = open_book(book)
-        computed = compute(opened, functions, solve, progress, now)
+    with no_collections(), Engine(book) as engine:
+        opened = open_book(book, progress)
+        computed = compute(opened, functions, solve, progress, now, engine=engine)
         changes = [Changes.of(sheet, values) for sheet, values in zip(opened.sheets, computed.values, strict=True)]
+        count = sum(map(len, changes))
+        if in_place and not count:  # an older copy is worth more than another of the same
+            return report_of(opened, computed, 0, None, None)
         if progress is not None:
-            progress("writing", 0.9)
+            progress("writing", WRITING)
 
         def write(file: IO[bytes]) -> None:
             write_values(opened, changes, file)
 
         backup = place(book, opened.mark, target, write, in_place=in_place)
-        return report_of(opened, computed, sum(map(len, changes)), target, backup)
+        return report_of(opened, computed, count, target, backup)
 
 
 @contextlib.contextmanager
-def _no_collections() -> Iterator[None]:
+def no_collections() -> Iterator[None]:
     """Without the search for cyclic garbage, of which there is none: among a million cells it takes a third of the time."""
     was_on = gc.isenabled()
     gc.disable()
@@ -90,7 +96,7 @@ def report_of(book: Book, computed: Computed, changed: int, out: Path | None, ba
         ordinary_cells=computed.ordinary_cells,
         changed_cells=changed,
         no_answers=tuple(computed.no_answers),
-        hidden=computed.hidden,
+        hidden=tuple(computed.hidden),
         not_computed=tuple(computed.not_computed),
         truncated=tuple(computed.truncated),
         backup=backup,
@@ -121,7 +127,8 @@ class Changes:
         get, children = values.get, sheet.children
         for cell in sheet.formulas:
             value = get(cell.key)
-            if value is not None and not same(value, cell.stored):
+            stored = cell.stored
+            if value is not None and (value != stored or type(value) is not type(stored)):
                 cells[cell.key] = (Span(cell.start, cell.end), value)
             if cell.rect is not None and cell.key in values:
                 for key, _ in elements_of(cell):

@@ -17,7 +17,13 @@ MAX_NESTING = 64
 Slot = int | str
 
 _REFERENCE, _NUMBER, _STRING, _BAND = "\x01", "\x02", "\x03", "\x04"
-_MARKS = (_BAND, _REFERENCE, _NUMBER, _STRING)
+MARKS = (_BAND, _REFERENCE, _NUMBER, _STRING)
+REFERENCE_MARKS = (_BAND, _REFERENCE)
+# Stands for the row's own number where formulas filled down a column are told together.
+ROW = "\x05"
+_OURS = re.compile(f"[{''.join(MARKS)}{ROW}]")
+# A shape that no parser takes.
+UNREADABLE = "\x06"
 _SLOT = re.compile(
     r"""
       (?<![\w.\\$]) ( \$?[A-Z]{1,3}:\$?[A-Z]{1,3} | \$?\d{1,7}:\$?\d{1,7} ) (?![\w.(!\[$])   # A:B  1:2
@@ -45,6 +51,10 @@ _TOKEN = re.compile(
 
 class UnreadableError(Exception):
     """A formula that cannot be taken apart; ``str`` is the reason, for people."""
+
+
+class VolatileError(UnreadableError):
+    """A formula whose value changes from one moment to the next."""
 
 
 @dataclass(frozen=True, slots=True)
@@ -115,13 +125,15 @@ Expr = tuple[Node, ...]
 def split(text: str) -> tuple[str, list[str]]:
     """A formula's shape and its slots: the same shape in every row of a column filled down."""
     slots: list[str] = []
+    if not text.isprintable() and _OURS.search(text):  # no file can hold these, so nobody means them
+        return UNREADABLE, slots
 
     def mark(match: re.Match[str]) -> str:
         group = match.lastindex or 5
         if group == 5:
             return match[0]
         slots.append(match[0])
-        return _MARKS[group - 1]
+        return MARKS[group - 1]
 
     return _SLOT.sub(mark, text), slots
 
@@ -129,9 +141,9 @@ def split(text: str) -> tuple[str, list[str]]:
 def shifted(shape: str, slots: Sequence[str], rows: int, columns: int) -> list[str] | None:
     """The slots of the same formula copied down and right; None if a reference leaves the sheet."""
     moved = []
-    marks = (letter for letter in shape if letter in _MARKS)
+    marks = (letter for letter in shape if letter in MARKS)
     for mark, slot in zip(marks, slots, strict=True):
-        if mark in (_REFERENCE, _BAND):
+        if mark in REFERENCE_MARKS:
             copy = shift(slot, rows, columns)
             if copy is None:
                 return None
@@ -144,7 +156,7 @@ def shifted(shape: str, slots: Sequence[str], rows: int, columns: int) -> list[s
 def join(shape: str, slots: Sequence[str]) -> str:
     """The formula's text again."""
     each = iter(slots)
-    return "".join(next(each) if letter in _MARKS else letter for letter in shape)
+    return "".join(next(each) if letter in MARKS else letter for letter in shape)
 
 
 def check_size(text: str) -> None:
@@ -345,6 +357,17 @@ class _Parser:
     def _close(self, bracket: str) -> None:
         if self._take() != ("op", bracket):
             raise UnreadableError("the formula could not be read")
+
+
+def walk(expression: Expr) -> Iterator[Node]:
+    """Every node of a tree, those inside brackets and arguments too."""
+    for node in expression:
+        yield node
+        if isinstance(node, Group):
+            yield from walk(node.body)
+        elif isinstance(node, Func):
+            for each in node.args:
+                yield from walk(each)
 
 
 def is_space(node: Node) -> bool:

@@ -61,7 +61,11 @@ KEPT_FUNCTIONS: Mapping[str, str] = {
     **dict.fromkeys(("CELL", "INFO"), "it asks the spreadsheet program about itself"),
     **dict.fromkeys(("FORMULATEXT", "ISFORMULA"), "it asks for the formula of a cell"),
     **dict.fromkeys(("SHEET", "SHEETS"), "it counts sheets"),
+    **dict.fromkeys(("MAXA", "MINA"), "the calculation engine passes over truth values and texts of single cells in it"),
 }
+
+# What gives another value each time it is worked out.
+VOLATILE_FUNCTIONS = _words("RAND RANDBETWEEN RANDARRAY TODAY NOW")
 
 # The engine reckons in the 1900 date system only.
 DATE_FUNCTIONS = _words(

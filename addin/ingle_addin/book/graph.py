@@ -2,13 +2,14 @@
 
 from __future__ import annotations
 
+from bisect import bisect_left, bisect_right
 from collections import defaultdict
-from collections.abc import Collection, Iterable, Iterator, Sequence
+from collections.abc import Collection, Iterable, Iterator, Mapping, Sequence
 
 from ingle_addin.book.book import Book, Formulas
 from ingle_addin.book.plan import Plan, rect_of
-from ingle_addin.book.refs import Rect, key_of, place_of
-from ingle_addin.book.scan import FormulaCell
+from ingle_addin.book.refs import MAX_COLUMN, Rect, key_of, place_of
+from ingle_addin.book.scan import MAX_ARRAY, FormulaCell
 
 # A cell of the workbook: (index of its sheet, its number).
 Place = tuple[int, int]
@@ -22,11 +23,12 @@ class Graph:
     def __init__(self, book: Book, formulas: Sequence[Formulas], plans: Sequence[Sequence[Plan]]) -> None:
         self._book, self._formulas, self._plans = book, formulas, plans
         self._index: dict[Place, int] = {}
+        self._sorted = [sorted(cell.key for cell in sheet.formulas) for sheet in book.sheets]
         for sheet, each in enumerate(book.sheets):
             for index, cell in enumerate(each.formulas):
                 self._index[sheet, cell.key] = index
                 if cell.rect is not None:
-                    for key in _keys(cell.rect) if _size(cell.rect) <= 10_000 else ():
+                    for key in _keys(cell.rect) if _size(cell.rect) <= MAX_ARRAY else ():
                         self._index.setdefault((sheet, key), index)
 
     def _owner(self, place: Place) -> Place | None:
@@ -66,10 +68,12 @@ class Graph:
             if rect is not None:
                 yield (sheet if ref.sheet is None else int(ref.sheet)), rect
 
-    def dependents(self, places: Collection[Place]) -> dict[Place, Place]:
-        """All formulas that rest on the given cells, each with the given cell it rests on."""
+    def dependents(self, places: Mapping[Place, Place]) -> dict[Place, Place]:
+        """All formulas that rest on the given cells, each with what ``places`` names as the cause of one of them."""
         small: defaultdict[Place, list[Place]] = defaultdict(list)
-        large: list[defaultdict[Rect, list[Place]]] = [defaultdict(list) for _ in self._book.sheets]
+        large: defaultdict[tuple[int, Rect], list[Place]] = defaultdict(list)
+        over: defaultdict[tuple[int, int], set[Rect]] = defaultdict(set)  # (sheet, column) -> large ranges there
+        wide: defaultdict[int, set[Rect]] = defaultdict(set)
         for sheet, each in enumerate(self._book.sheets):
             for index, cell in enumerate(each.formulas):
                 for owner, rect in self._precedents(sheet, index):
@@ -77,21 +81,29 @@ class Graph:
                         for key in _keys(rect):
                             small[owner, key].append((sheet, cell.key))
                     else:
-                        large[owner][rect].append((sheet, cell.key))
+                        if (owner, rect) not in large:
+                            if rect.columns > _SMALL:
+                                wide[owner].add(rect)
+                            for column in range(rect.left, rect.right + 1) if rect.columns <= _SMALL else ():
+                                over[owner, column].add(rect)
+                        large[owner, rect].append((sheet, cell.key))
         found: dict[Place, Place] = {}
-        waiting = [(place, place) for place in places]
+        waiting = list(places.items())
         while waiting:
             (sheet, key), cause = waiting.pop()
             row, column = place_of(key)
             hit = list(small.get((sheet, key), ()))
-            for rect in [rect for rect in large[sheet] if rect.holds(row, column)]:
-                hit += large[sheet].pop(rect)  # once reached, all that rest on it are known
+            for ranges in (over.get((sheet, column), set()), wide[sheet]):
+                reached = {rect for rect in ranges if rect.holds(row, column)}
+                ranges -= reached  # once reached, all that rest on it are known
+                for rect in reached:
+                    hit += large.pop((sheet, rect), ())
             for place in hit:
                 if place not in found and place not in places:
                     found[place] = cause
                     index = self._index[place]
                     rect_filled = self._book.sheets[place[0]].formulas[index].rect
-                    filled = [place[1]] if rect_filled is None or _size(rect_filled) > 10_000 else _keys(rect_filled)
+                    filled = [place[1]] if rect_filled is None or _size(rect_filled) > MAX_ARRAY else _keys(rect_filled)
                     waiting.extend(((place[0], each_key), cause) for each_key in filled)
         return found
 
@@ -164,9 +176,16 @@ class Graph:
                 if place is not None:
                     yield place
             return
-        for cell in self._book.sheets[sheet].formulas:
-            if rect.holds(*place_of(cell.key)):
-                yield sheet, cell.key
+        keys = self._sorted[sheet]
+        start = bisect_left(keys, key_of(rect.top, 1))
+        end = bisect_right(keys, key_of(rect.bottom, MAX_COLUMN))
+        if end - start <= 2 * rect.rows:  # few formulas to look through
+            yield from ((sheet, key) for key in keys[start:end] if rect.left <= place_of(key)[1] <= rect.right)
+            return
+        for row in range(rect.top, rect.bottom + 1):
+            first = bisect_left(keys, key_of(row, rect.left), start, end)
+            last = bisect_right(keys, key_of(row, rect.right), first, end)
+            yield from ((sheet, key) for key in keys[first:last])
 
 
 def _is_place(node: object) -> bool:

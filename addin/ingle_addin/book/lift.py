@@ -5,6 +5,7 @@ from __future__ import annotations
 import datetime
 from dataclasses import dataclass
 
+from ingle_addin.book.criteria import criteria_of
 from ingle_addin.book.formula import (
     Block,
     Const,
@@ -16,8 +17,12 @@ from ingle_addin.book.formula import (
     Op,
     Ref,
     UnreadableError,
+    VolatileError,
+    check_size,
     is_space,
     parse,
+    split,
+    walk,
 )
 from ingle_addin.book.functions import (
     ARRAY_PARAMETERS,
@@ -29,6 +34,7 @@ from ingle_addin.book.functions import (
     REFERENCE_RETURNING,
     VECTORISED,
     VECTORISED_BY_FIRST,
+    VOLATILE_FUNCTIONS,
     takes_range,
 )
 from ingle_addin.book.plan import (
@@ -67,14 +73,17 @@ _NEVER_PLAIN = frozenset(["OFFSET", "INDIRECT", "CHOOSE"])
 
 @dataclass(frozen=True)
 class Lifter:
-    """Makes plans for the formulas of one workbook. ``now`` is the moment that TODAY and NOW mean throughout."""
+    """Makes plans for the formulas of one workbook.
+
+    ``now`` is the moment that TODAY and NOW mean throughout; None leaves them, and what draws random numbers, as volatile.
+    """
 
     resolver: Resolver
     spelling: Spelling
     sheet_names: tuple[str, ...]
     date1904: bool
     hidden_rows: bool
-    now: datetime.datetime
+    now: datetime.datetime | None
 
     def plan(self, shape: str, sheet: int, place: tuple[int, int], *, in_array: bool) -> Plan:
         """The plan of a shape on a sheet; ``place`` is (row, column) of one of its cells.
@@ -82,32 +91,53 @@ class Lifter:
         Never raises for a formula's sake: what cannot be done is a plan to keep the stored value, with the reason.
         """
         work = _Work(self, sheet, in_array)
-        work.result.is_ingle = self._mentions(shape)
+        result = work.result
+        result.is_ingle = _mentions(shape)
         try:
             tree = parse(shape)
-            work.result.is_ingle = _has_call(tree, self.spelling)
+            result.is_local = any(isinstance(node, Named) and node.bracket is not None and not node.name for node in walk(tree))
+            result.is_ingle = _has_call(tree, self.spelling) or self._named_call(tree, sheet, set())
             work.compile(self.resolver.resolve(tree, sheet, place))
         except UnreadableError as reason:
-            work.result.keep = str(reason)
+            result.keep = " ".join(str(reason).split())  # a name in it may hold line breaks
+            result.volatile = isinstance(reason, VolatileError)
         except RecursionError:
-            work.result.keep = "the formula is nested too deep"
-        return work.result
+            result.keep = "the formula is nested too deep"
+        return result
 
-    def _mentions(self, shape: str) -> bool:
-        # Only for a formula that cannot be parsed: better one line too many in the report than a missing one.
-        text = shape.upper()
-        return "INGLE." in text or "INGLE_" in text
+    def _named_call(self, tree: Expr, sheet: int, seen: set[str]) -> bool:
+        """Whether a defined name that the formula uses holds a call."""
+        for name in _names_in(tree) - seen:
+            seen.add(name)
+            meaning = self.resolver.meaning(name, sheet)
+            if meaning is None:
+                continue
+            if _mentions(meaning):
+                return True
+            try:
+                check_size(meaning)
+                inside = parse(split(meaning)[0])
+            except UnreadableError:
+                continue
+            if self._named_call(inside, sheet, seen):
+                return True
+        return False
+
+
+def _mentions(text: str) -> bool:
+    # Only for what cannot be parsed: better one line too many in the report than a missing one.
+    text = text.upper()
+    return "INGLE." in text or "INGLE_" in text
+
+
+def _names_in(expression: Expr) -> set[str]:
+    return {
+        node.name for node in walk(expression) if isinstance(node, Func) or (isinstance(node, Named) and node.bracket is None)
+    }  # fmt: skip
 
 
 def _has_call(expression: Expr, spelling: Spelling) -> bool:
-    for node in expression:
-        if isinstance(node, Func) and (
-            spelling.canonical(node.name) or spelling.is_misspelt(node.name) or any(_has_call(a, spelling) for a in node.args)
-        ):
-            return True
-        if isinstance(node, Group) and _has_call(node.body, spelling):
-            return True
-    return False
+    return any(isinstance(node, Func) and spelling.is_of_family(node.name) for node in walk(expression))
 
 
 class _Work:
@@ -192,6 +222,7 @@ class _Work:
 
     def _emit_ref(self, ref: Ref, mode: str, out: list[Piece], crossing: bool) -> bool:
         self.result.refs.append(ref)
+        self.result.asked.append(ref)
         prefix = self._prefix(ref)
         if ref.this_row:
             if ref.last is not None and mode == _ONE:
@@ -233,6 +264,8 @@ class _Work:
             out.append(")")
             return False
         self._check(call, name)
+        self.result.criteria += criteria_of(name, call.args)
+        self.result.asks_anywhere |= name in ("INDIRECT", "OFFSET")
         if name in ("TODAY", "NOW") and not call.args:
             out.append(self._moment(name))
             return False
@@ -271,6 +304,8 @@ class _Work:
             raise UnreadableError(f"{name} is not a function of Ingle")
         if "[" in call.name or "!" in call.name:
             raise UnreadableError(f"it uses {name} of another add-in or workbook")
+        if self._lifter.now is None and name in VOLATILE_FUNCTIONS:
+            raise VolatileError(f"it is volatile ({name})")
         if name in KEPT_FUNCTIONS:
             raise UnreadableError(f"{KEPT_FUNCTIONS[name]} ({name})")
         if name not in ENGINE_FUNCTIONS:
@@ -281,6 +316,7 @@ class _Work:
             raise UnreadableError("it uses SUBTOTAL in a workbook with hidden rows")
 
     def _moment(self, name: str) -> str:
+        assert self._lifter.now is not None
         elapsed = self._lifter.now - datetime.datetime(1899, 12, 30)
         days = elapsed.days if name == "TODAY" else elapsed / datetime.timedelta(days=1)
         return repr(days)
@@ -368,14 +404,7 @@ def _lone(expression: Expr) -> Node | None:
 
 
 def _function_names(expression: Expr) -> set[str]:
-    names: set[str] = set()
-    for node in expression:
-        if isinstance(node, Func):
-            names.add(node.name)
-            names.update(*(_function_names(arg) for arg in node.args))
-        elif isinstance(node, Group):
-            names |= _function_names(node.body)
-    return names
+    return {node.name for node in walk(expression) if isinstance(node, Func)}
 
 
 def _merged(pieces: list[Piece]) -> tuple[Piece, ...]:

@@ -67,7 +67,9 @@ def unescape(text: str) -> str:
     """``_xHHHH_`` back to its character: workbooks write so what XML cannot hold."""
     if "_x" not in text:
         return text
-    return _ESCAPE.sub(lambda match: chr(int(match[1], 16)), text)
+    plain = _ESCAPE.sub(lambda match: chr(int(match[1], 16)), text)
+    # Two halves of one character may each have been escaped; a half alone cannot be written anywhere.
+    return plain if plain.isprintable() else plain.encode("utf-16-le", "surrogatepass").decode("utf-16-le", "replace")
 
 
 def escape(text: str) -> str:

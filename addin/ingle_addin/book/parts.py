@@ -13,6 +13,9 @@ from ingle_addin.book.markup import SEPARATOR, feed, main_name, parser, unescape
 from ingle_addin.book.refs import Rect, parse_rect
 
 _PACKAGE_RELATIONS = "_rels/.rels"
+MAX_CELL_CHARACTERS = 32_767
+# What a cell's text may grow to inside the file, where escapes and formulas stand beside it.
+MAX_RAW = 8 * MAX_CELL_CHARACTERS
 # Numbers of the built-in formats that show a date or a time of day.
 _DATE_FORMATS = frozenset({*range(14, 23), *range(27, 37), *range(45, 48), *range(50, 59)})
 _NOT_FORMAT = re.compile(r'"[^"]*"|\\.|_.|\*.|\[(?![hms]+\])[^\]]*\]', re.IGNORECASE)
@@ -160,7 +163,7 @@ def _read_workbook(archive: Archive, part: str, relations: dict[str, tuple[str, 
     for name, local, content in names:
         if local is None:
             parts.names.append(DefinedName(name, None, content))
-        elif local.isdecimal() and int(local) in positions:
+        elif local.isdecimal() and len(local) < 6 and int(local) in positions:
             parts.names.append(DefinedName(name, positions[int(local)], content))
 
 
@@ -181,18 +184,21 @@ def _read_texts(archive: Archive, part: str) -> list[str]:
     def end(element: str) -> None:
         name = main_name(element)
         if name == "si":
-            texts.append(unescape("".join(pieces)))
+            text = "".join(pieces)
+            if len(text) > MAX_RAW:
+                raise BookError(f"{archive.path}: a cell holds more than {MAX_CELL_CHARACTERS:,} characters; shorten it")
+            texts.append(unescape(text))
         elif name == "rPh":
             state["phonetic"] -= 1
         elif name == "t":
             state["text"] = False
 
-    def text(data: str) -> None:
+    def characters(data: str) -> None:
         if state["text"]:
             pieces.append(data)
 
     made = parser(archive.path, part)
-    made.StartElementHandler, made.EndElementHandler, made.CharacterDataHandler = start, end, text
+    made.StartElementHandler, made.EndElementHandler, made.CharacterDataHandler = start, end, characters
     feed(made, archive.stream(part), archive.path, part)
     return texts
 
@@ -248,13 +254,14 @@ def _read_table(archive: Archive, part: str, sheet: int) -> Table:
     made.StartElementHandler = start
     feed(made, archive.stream(part), archive.path, part)
     rect = parse_rect(head.get("ref", ""))
-    if rect is None:
+    rows = [head.get("headerRowCount", "1"), head.get("totalsRowCount", "0")]
+    if rect is None or not all(text.isdecimal() and len(text) < 8 for text in rows):
         raise BookError(f"{archive.path} is damaged in its part {part}; open it in the spreadsheet program and save it anew")
     return Table(
         name=head.get("displayName", head.get("name", "")),
         sheet=sheet,
         rect=rect,
-        headings=int(head.get("headerRowCount", "1")),
-        totals=int(head.get("totalsRowCount", "0")),
+        headings=int(rows[0]),
+        totals=int(rows[1]),
         columns=tuple(columns),
     )

@@ -6,6 +6,7 @@ from collections.abc import Callable, Sequence
 from dataclasses import dataclass, field
 from enum import Enum, auto
 
+from ingle_addin.book.criteria import Criterion
 from ingle_addin.book.formula import Block, Const, Ref, Slot
 from ingle_addin.book.refs import MAX_COLUMN, MAX_ROW, Rect, column_letters, column_number, key_of, parse_cell, place_of
 
@@ -133,9 +134,12 @@ class CallPlan:
 class Plan:
     """How every formula of one shape is computed.
 
-    ``keep`` is the reason for leaving the stored value, else None. ``whole`` formulas are a single call; ``array`` ones
+    ``keep`` is the reason for leaving the stored value, else None; ``volatile`` if that is because it changes from moment
+    to moment. ``whole`` formulas are a single call; ``array`` ones
     the engine must work out as one array; all others are rendered from ``pieces``. ``refs`` are all references, for
-    following what rests on what.
+    following what rests on what (in an ``is_local`` plan they hold for one cell only, "[column]" being of the table around
+    it); ``asked`` are those of them that the engine follows, and if it ``asks_anywhere`` it may
+    look at any cell. ``criteria`` must be looked at in each formula.
     """
 
     keep: str | None = None
@@ -144,7 +148,12 @@ class Plan:
     whole: bool = False
     array: bool = False
     is_ingle: bool = False
+    is_local: bool = False
+    volatile: bool = False
     refs: list[Ref] = field(default_factory=list)
+    asked: list[Ref] = field(default_factory=list)
+    asks_anywhere: bool = False
+    criteria: list[Criterion] = field(default_factory=list)
 
 
 # (call, whole, element or None) -> the address of a lifted call's answer

@@ -46,7 +46,7 @@ class Truncated:
 
     def __str__(self) -> str:
         used = f"fills only {self.stored}" if self.stored else "uses only its first value"
-        return f"the answer has {_count(self.rows, 'row')} and {_count(self.columns, 'column')}, but the formula {used}"
+        return f"the answer has {count(self.rows, 'row')} and {count(self.columns, 'column')}, but the formula {used}"
 
 
 @dataclass(frozen=True)
@@ -59,7 +59,7 @@ class Report:
     ordinary_cells: int = 0
     changed_cells: int = 0
     no_answers: tuple[NoAnswer, ...] = ()
-    hidden: int = 0
+    hidden: tuple[NoAnswer, ...] = ()
     not_computed: tuple[NotComputed, ...] = ()
     truncated: tuple[Truncated, ...] = ()
     backup: Path | None = None
@@ -74,32 +74,43 @@ class Report:
 def summary(report: Report) -> list[str]:
     """Plain lines, the main result first, at most ten examples of each kind."""
     lines = [
-        f"{_count(report.ingle_cells, 'cell')} with Ingle formulas and {_count(report.ordinary_cells, 'other formula')} "
-        f"computed; {_count(report.changed_cells, 'value')} changed."
+        f"{count(report.ingle_cells, 'cell')} with Ingle formulas and {count(report.ordinary_cells, 'other formula')} "
+        f"computed; {count(report.changed_cells, 'value')} changed."
     ]
-    if report.no_answers:
-        rows = _by_row(report.no_answers)
-        lines.append(f"{_count(len(rows), 'row')} without an answer:")
-        _examples(lines, rows)
-    if report.hidden:
-        verb = "stands" if report.hidden == 1 else "stand"
-        lines.append(f"{_count(report.hidden, 'Ingle call')} without an answer {verb} inside formulas that show a value.")
-    left = [each for each in report.not_computed if not each.rests]
-    resting = [each for each in report.not_computed if each.rests]
-    if left:
-        lines.append(f"{_count(len(left), 'formula')} not computed; the stored value was kept:")
-        _examples(lines, [f"{_at(each.sheet, each.cell)}: {each.reason}" for each in left])
-    if resting:
-        lines.append(f"{_count(len(resting), 'formula')} computed from such kept values:")
-        _examples(lines, [f"{_at(each.sheet, each.cell)}: {each.reason}" for each in resting])
-    if report.truncated:
-        lines.append(f"{_count(len(report.truncated), 'answer')} larger than the cells to hold it:")
-        _examples(lines, [f"{_at(each.sheet, each.cell)}: {each}" for each in report.truncated])
+    lines += amiss(report)
     lines.extend(report.remarks)
     if report.backup is not None:
         lines.append(f"The workbook as it was is kept in {report.backup}.")
-    if report.out is not None:
-        lines.append(f"Written to {report.out}.")
+    lines.append("The workbook was left as it is." if report.out is None else f"Written to {report.out}.")
+    return lines
+
+
+def amiss(report: Report) -> list[str]:
+    """Rows without an answer, formulas that could not be computed, answers too large for their cells."""
+    lines: list[str] = []
+    if report.no_answers:
+        rows = _by_row(report.no_answers)
+        lines.append(f"{count(len(rows), 'row')} without an answer:")
+        examples(lines, rows)
+    if report.hidden:
+        verb = "stands" if len(report.hidden) == 1 else "stand"
+        cells = list(dict.fromkeys(at(each.sheet, each.cell) for each in report.hidden))
+        more = f" and {len(cells) - SHOWN:,} more cells" if len(cells) > SHOWN else ""
+        lines.append(
+            f"{count(len(report.hidden), 'Ingle call')} without an answer {verb} inside formulas that show a value: "
+            f"{', '.join(cells[:SHOWN])}{more}."
+        )
+    left = [each for each in report.not_computed if not each.rests]
+    resting = [each for each in report.not_computed if each.rests]
+    if left:
+        lines.append(f"{count(len(left), 'formula')} not computed; the stored value was kept:")
+        examples(lines, [f"{at(each.sheet, each.cell)}: {each.reason}" for each in left])
+    if resting:
+        lines.append(f"{count(len(resting), 'formula')} computed from such kept values:")
+        examples(lines, [f"{at(each.sheet, each.cell)}: {each.reason}" for each in resting])
+    if report.truncated:
+        lines.append(f"{count(len(report.truncated), 'answer')} larger than the cells to hold it:")
+        examples(lines, [f"{at(each.sheet, each.cell)}: {each}" for each in report.truncated])
     return lines
 
 
@@ -110,24 +121,23 @@ def _by_row(missing: Sequence[NoAnswer]) -> list[str]:
         found.setdefault((each.sheet, each.row, each.reason), []).append(each)
     lines = []
     for (sheet, _, reason), cells in found.items():
-        more = f" and {_count(len(cells) - 1, 'cell')} beside it" if len(cells) > 1 else ""
-        lines.append(f"{_at(sheet, cells[0].cell)}{more} {cells[0].error}: {reason}")
+        more = f" and {count(len(cells) - 1, 'cell')} beside it" if len(cells) > 1 else ""
+        lines.append(f"{at(sheet, cells[0].cell)}{more} {cells[0].error}: {reason}")
     return lines
 
 
-def _examples(lines: list[str], texts: list[str]) -> None:
+def examples(lines: list[str], texts: Sequence[str]) -> None:
+    """Add the first few of them, and how many more there are."""
     lines.extend("  " + text for text in texts[:SHOWN])
     if len(texts) > SHOWN:
-        lines.append(f"  … and {_number(len(texts) - SHOWN)} more")
+        lines.append(f"  … and {len(texts) - SHOWN:,} more")
 
 
-def _at(sheet: str, cell: str) -> str:
+def at(sheet: str, cell: str) -> str:
+    """A cell with its sheet's name."""
     return f"{sheet}!{cell}"
 
 
-def _number(count: int) -> str:
-    return f"{count:,}"
-
-
-def _count(count: int, noun: str) -> str:
-    return f"{_number(count)} {noun}" + ("" if count == 1 else "s")
+def count(number: int, noun: str) -> str:
+    """``1 row``, ``2,000 rows``."""
+    return f"{number:,} {noun}" + ("" if number == 1 else "s")

@@ -3,7 +3,7 @@
 from __future__ import annotations
 
 import re
-from collections.abc import Iterable
+from collections.abc import Iterable, Mapping
 
 from ingle_addin.book.formula import (
     Block,
@@ -16,14 +16,24 @@ from ingle_addin.book.formula import (
     Op,
     Ref,
     UnreadableError,
+    check_size,
+    is_space,
     parse,
     split,
+    walk,
 )
 from ingle_addin.book.parts import DefinedName, Parts, Table
 from ingle_addin.book.refs import Rect, column_letters
+from ingle_addin.book.spelling import bare
 
 _MAX_NAME_DEPTH = 16
+# LET(a, 1+1, b, a+a, c, b+b, ...) doubles with every name, and so do names defined by names.
+_MAX_NODES = 2_000
 _ITEM = re.compile(r"\s*(?:\[((?:[^\[\]']|'.)*)\]|([^,:\[\]]+))\s*([,:]?)", re.DOTALL)
+
+
+# The names that LET and LAMBDA give -> what they stand for; None for a parameter, which is known only at work.
+Bound = Mapping[str, Expr | None]
 
 
 class Resolver:
@@ -33,6 +43,7 @@ class Resolver:
         self._parts = parts
         self._sheets = {sheet.name.casefold(): index for index, sheet in enumerate(parts.sheets)}
         self._names: dict[tuple[str, int | None], DefinedName] = {(name.name.casefold(), name.scope): name for name in parts.names}
+        self._meanings: dict[tuple[DefinedName, int], Node] = {}
         self._tables = {table.name.casefold(): table for table in parts.tables}
 
     def sheet(self, name: str) -> int:
@@ -46,28 +57,59 @@ class Resolver:
             raise UnreadableError(f"it refers to the sheet {name}, which the workbook does not have")
         return index
 
-    def resolve(self, expression: Expr, own_sheet: int, row: tuple[int, int], depth: int = 0) -> Expr:
-        """The same tree with sheets as indices and names replaced by what they stand for.
+    def resolve(self, expression: Expr, own_sheet: int, row: tuple[int, int], depth: int = 0, bound: Bound | None = None) -> Expr:
+        """The same tree with sheets as indices and names, those of LET too, replaced by what they stand for.
 
         ``row`` is (row, column) of a cell of the formula: brackets without a table's name mean the table around it.
         """
-        return tuple(self._node(node, own_sheet, row, depth) for node in expression)
+        return tuple(self._node(node, own_sheet, row, depth, bound or {}) for node in expression)
 
-    def _node(self, node: Node, own_sheet: int, place: tuple[int, int], depth: int) -> Node:
+    def meaning(self, name: str, own_sheet: int) -> str | None:
+        """The text of a defined name as a sheet sees it, None if there is none."""
+        key = name.casefold()
+        found = self._names.get((key, own_sheet)) or self._names.get((key, None))
+        return None if found is None else found.text
+
+    def _node(self, node: Node, own_sheet: int, place: tuple[int, int], depth: int, bound: Bound) -> Node:
         match node:
             case Ref(sheet=str() as sheet):
                 return Ref(self.sheet(sheet), node.first, node.last, node.band)
             case Group(body=body):
-                return Group(self.resolve(body, own_sheet, place, depth))
-            case Func(name=name, args=args):
-                return Func(name, tuple(self.resolve(each, own_sheet, place, depth) for each in args))
+                return Group(self.resolve(body, own_sheet, place, depth, bound))
+            case Func():
+                return self._function(node, own_sheet, place, depth, bound)
             case Named():
-                return self._named(node, own_sheet, place, depth)
+                return self._named(node, own_sheet, place, depth, bound)
         return node
 
-    def _named(self, node: Named, own_sheet: int, place: tuple[int, int], depth: int) -> Node:
+    def _function(self, call: Func, own_sheet: int, place: tuple[int, int], depth: int, bound: Bound) -> Node:
+        def resolved(args: Iterable[Expr], names: Bound) -> tuple[Expr, ...]:
+            return tuple(self.resolve(each, own_sheet, place, depth, names) for each in args)
+
+        kind = bare(call.name)
+        if kind == "LAMBDA" and call.args:
+            return Func(call.name, resolved(call.args, {**bound, **{_own_name(each): None for each in call.args[:-1]}}))
+        if kind == "LET" and len(call.args) % 2 == 1:
+            inside = dict(bound)
+            for name, meaning in zip(call.args[::2], call.args[1::2], strict=False):
+                (value,) = resolved([meaning], inside)
+                if any(isinstance(each, Func) and bare(each.name) == "LAMBDA" for each in value):
+                    raise UnreadableError("it gives a name to a function of its own (LET with LAMBDA)")
+                inside[_own_name(name)] = value
+                if _count(value, _MAX_NODES) < 0:
+                    raise UnreadableError("the names of its LET stand for too long an expression")
+            return Group(*resolved([call.args[-1]], inside))
+        if call.name.casefold().removeprefix("_xlpm.") in bound or self.meaning(call.name, own_sheet) is not None:
+            raise UnreadableError(f"it uses the name {call.name.removeprefix('_xlpm.')} as a function (LAMBDA)")
+        return Func(call.name, resolved(call.args, bound))
+
+    def _named(self, node: Named, own_sheet: int, place: tuple[int, int], depth: int, bound: Bound) -> Node:
         if node.bracket is not None:
             return self._structured(node, own_sheet, place)
+        local = node.name.casefold().removeprefix("_xlpm.")
+        if node.sheet is None and local in bound:
+            meant = bound[local]
+            return node if meant is None else Group(meant)
         if node.name.lower().startswith("_xlpm."):
             return node
         scope = own_sheet if node.sheet is None else self.sheet(node.sheet)
@@ -78,18 +120,28 @@ class Resolver:
             if table is not None and node.sheet is None:
                 return _area(table, _body(table), 0, len(table.columns) - 1)
             raise UnreadableError(f"it uses the name {node.name}, which the workbook does not define")
+        cached = (found, own_sheet)
+        known = self._meanings.get(cached)
+        if known is not None:
+            return known
         if depth >= _MAX_NAME_DEPTH:
             raise UnreadableError(f"it uses the name {node.name}, which is defined by itself")
-        shape, slots = split(found.text)
         try:
-            tree = parse(shape, slots)
+            check_size(found.text)
+            tree = parse(*split(found.text))
         except UnreadableError:
             raise UnreadableError(f"it uses the name {node.name}, whose meaning could not be read") from None
         if not _is_fixed(tree):
             raise UnreadableError(f"it uses the name {node.name}, whose meaning moves with the cell")
+        is_local = any(isinstance(each, Named) and each.bracket is not None and not each.name for each in walk(tree))
         tree = self.resolve(tree, own_sheet if found.scope is None else found.scope, place, depth + 1)
+        if _count(tree, _MAX_NODES) < 0:
+            raise UnreadableError(f"it uses the name {node.name}, whose meaning is too long")
         meaningful = [each for each in tree if not (isinstance(each, Op) and not each.text.strip())]
-        return meaningful[0] if len(meaningful) == 1 else Group(tree)
+        stands_for = meaningful[0] if len(meaningful) == 1 else Group(tree)
+        if not is_local:  # "[column]" means the table around the cell
+            self._meanings[cached] = stands_for
+        return stands_for
 
     def _structured(self, node: Named, own_sheet: int, place: tuple[int, int]) -> Node:
         if node.sheet is not None and ("[" in node.sheet or not node.name):
@@ -104,6 +156,31 @@ class Resolver:
                 raise UnreadableError("it uses a table's columns outside of the table")
             table = inside[0]
         return _bracket(table, (node.bracket or "[]")[1:-1])
+
+
+def _own_name(expression: Expr) -> str:
+    """The name that an argument of LET or LAMBDA introduces."""
+    nodes = [node for node in expression if not is_space(node)]
+    node = nodes[0] if len(nodes) == 1 else None
+    if not isinstance(node, Named) or node.sheet is not None or node.bracket is not None:
+        raise UnreadableError("the formula could not be read")
+    return node.name.casefold().removeprefix("_xlpm.")
+
+
+def _count(expression: Expr, left: int) -> int:
+    """How many nodes are left of so many when an expression is written out; below 0 as soon as they do not suffice."""
+    for node in expression:
+        left -= 1
+        if isinstance(node, Group):
+            left = _count(node.body, left)
+        elif isinstance(node, Func):
+            for each in node.args:
+                left = _count(each, left)
+                if left < 0:
+                    break
+        if left < 0:
+            break
+    return left
 
 
 def _bracket(table: Table, inner: str) -> Ref | Const:

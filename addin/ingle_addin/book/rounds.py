@@ -4,19 +4,23 @@ from __future__ import annotations
 
 import datetime
 from collections import defaultdict
-from collections.abc import Collection
+from collections.abc import Collection, Iterable, Iterator, Mapping, Sequence
+from operator import itemgetter
 
 from ingle_addin.book.book import Book
-from ingle_addin.book.calling import Call
+from ingle_addin.book.calling import Area, Call
+from ingle_addin.book.collect import Collector
 from ingle_addin.book.computed import Computed
 from ingle_addin.book.dates import moment_of
-from ingle_addin.book.engine import Strange
+from ingle_addin.book.engine import Engine, Strange
 from ingle_addin.book.graph import Graph, Place
-from ingle_addin.book.grids import laid, plain, range_name, size_of, unanswered
-from ingle_addin.book.refs import MAX_COLUMN, Rect, cell_name, key_of, place_of
-from ingle_addin.book.report import NoAnswer, NotComputed, Truncated
+from ingle_addin.book.grids import laid, plain, range_name, size_of
+from ingle_addin.book.progress import WORKING, WRITING, Progress, share
+from ingle_addin.book.refs import Rect, cell_name, key_of, place_of
+from ingle_addin.book.report import Truncated
 from ingle_addin.book.scan import FormulaCell
-from ingle_addin.book.work import Progress, Work
+from ingle_addin.book.watch import Watch
+from ingle_addin.book.work import Work
 from ingle_addin.calls import Outcome, SolveCalls
 from ingle_addin.cells import Cell, CellError, Grid
 
@@ -35,19 +39,22 @@ def compute(
     solve: SolveCalls,
     progress: Progress | None = None,
     now: datetime.datetime | None = None,
+    *,
+    keep_volatile: bool = False,
+    engine: Engine | None = None,
 ) -> Computed:
     """Evaluate every formula of ``book``, whose cells are used up: their values become the computed ones.
 
     ``functions`` are the canonical names of the functions that ``solve`` answers; ``now`` is what TODAY and NOW mean.
-    Formulas that cannot be computed keep their stored value and are listed. Raises
+    Formulas that cannot be computed keep their stored value and are listed; with ``keep_volatile`` so do those that give
+    another value each time. ``engine`` is one that has been started already, and is closed here. Raises
     :class:`~ingle_addin.book.errors.BookError` if the engine is missing or stops.
     """
-    work = Work(book, functions, now or datetime.datetime.now(), progress or _silent)
-    try:
+    moment = None if keep_volatile else now or datetime.datetime.now()
+    with engine or Engine(book.path) as used:
+        work = Work(book, functions, moment, progress or _silent, used)
         work.prepare()
         return _Rounds(work, solve).run()
-    finally:
-        work.close()
 
 
 def _silent(_what: str, _share: float) -> None:
@@ -61,14 +68,19 @@ class _Rounds:
         self._solve = solve
         self._helper_values: dict[int, Cell] = {}
         self._dirty: defaultdict[int, list[tuple[int, Cell]]] = defaultdict(list)
+        self._common: dict[Area, Grid] = {}
         self._graph_made: Graph | None = None
         self._truncated: dict[int, tuple[Place, Truncated]] = {}  # by the call's id
         self._moved: set[int] = set()  # calls whose block has changed its place since the engine was last told
         self._cells_of: dict[int, FormulaCell] = {id(call): cell for call, cell in work.whole}
         self._calls = [call for call, _ in work.whole] + [call for each in work.nested for call in each.calls]
-        self._levels: defaultdict[int, list[Call]] = defaultdict(list)
-        for call in self._calls:
-            self._levels[call.level].append(call)
+        self._watch = Watch(self._calls, len(self._book.sheets))
+        # What calls read of the cells that the engine computes.
+        self._read = [[key for key in keys if key in watched] for keys, watched in self._engine_and_watched()]
+
+    def _engine_and_watched(self) -> Iterator[tuple[list[int], set[int]]]:
+        for sheet, keys in enumerate(self._work.engine_cells):
+            yield keys, set(self._watch.watched(sheet))
 
     @property
     def _graph(self) -> Graph:
@@ -92,6 +104,13 @@ class _Rounds:
             rows.append(cells)
         return tuple(rows)
 
+    def common(self, area: Area) -> Grid:
+        """The same of a range that many calls of a batch read."""
+        found = self._common.get(area)
+        if found is None:
+            found = self._common[area] = self.grid(area.sheet, area.rect)
+        return found
+
     def _dated(self, value: Cell) -> Cell:
         return moment_of(value, self._book.parts.date1904) if type(value) is float else value
 
@@ -103,6 +122,7 @@ class _Rounds:
     # -- Rounds -------------------------------------------------------------------------------------------------------
 
     def run(self) -> Computed:
+        work = self._work
         count = 0
         limit = len(self._calls) + 2
         while True:
@@ -110,13 +130,15 @@ class _Rounds:
             if not self._solve_all(first=count == 0) and not self._stop_error_circles():
                 break
             count += 1
-            self._work.progress("solving", min(0.9, 0.3 + 0.1 * count))
+            work.progress("solving", share(WORKING, WRITING, 0.5 + 0.1 * count))
             if count == _PATIENCE or count > limit:
                 self._stop_circles([(call.sheet, call.key) for call in self._calls if call.moves and not call.stopped])
             if count > limit:
                 self._stop_unsettled()
             self._flush()
-        return self._collect()
+        result = Collector(work, self._calls, self._cells_of, lambda: self._graph).collect()
+        result.truncated = [note for _, note in sorted(self._truncated.values(), key=itemgetter(0))]
+        return result
 
     def _evaluate(self) -> None:
         work = self._work
@@ -126,15 +148,18 @@ class _Rounds:
         if refused:
             self._give_up(dict.fromkeys(refused, _NOT_READ))
         while True:
-            work.progress("calculating", 0.3)
+            work.progress("calculating", WORKING)
             work.engine.evaluate()
             strange: list[tuple[Place, str]] = []
             for sheet, keys in enumerate(work.engine_cells):
                 if not keys:
                     continue
-                values = work.engine.values(sheet, keys)
-                work.values[sheet].update(zip(keys, values, strict=True))
-                strange += [((sheet, key), value) for key, value in zip(keys, values, strict=True) if isinstance(value, Strange)]
+                values, odd = work.engine.read(sheet, keys)
+                known = work.values[sheet]
+                before = [known.get(key) for key in self._read[sheet]]
+                known.update(zip(keys, values, strict=True))
+                self._watch.stir(sheet, _changed(known, self._read[sheet], before))
+                strange += [((sheet, keys[index]), str(values[index])) for index in odd]
             if not strange or not self._keep_strange(strange):
                 break
         if work.helper.keys:
@@ -170,14 +195,11 @@ class _Rounds:
         }  # fmt: skip
 
     def _ring_text(self, ring: list[Place]) -> str:
-        names = [self._cell_text(place) for place in ring[:4]]
+        names = [self._work.cell_text(place) for place in ring[:4]]
         if len(ring) == 1:
             return f"{names[0]} rests on itself"
         more = f" and {len(ring) - 4} more" if len(ring) > 4 else ""
         return f"the cells go round in a circle: {', '.join(names)}{more}"
-
-    def _cell_text(self, place: Place) -> str:
-        return f"{self._book.name_of(place[0])}!{cell_name(place[1])}"
 
     def _give_up(self, reasons: dict[Place, str]) -> None:
         """Let these formulas keep their stored values, in the engine too."""
@@ -190,6 +212,7 @@ class _Rounds:
             (sheet, _), cell, _ = found
             stored = work.keep(sheet, cell, reason)
             gone[sheet].update(stored)
+            self._watch.stir(sheet, stored)
             if work.has_engine:
                 work.engine.put(sheet, stored.items())
         for sheet, keys in gone.items():
@@ -201,13 +224,34 @@ class _Rounds:
     # -- Calls --------------------------------------------------------------------------------------------------------
 
     def _solve_all(self, *, first: bool) -> bool:
-        """Solve every call whose arguments have changed, one batch a function; whether any answer changed."""
+        """Solve every call whose arguments have changed, one batch a function; whether any answer changed.
+
+        Calls that read the cells of other calls follow at once, without the engine.
+        """
         changed = False
-        for level in sorted(self._levels):
+        calls: Sequence[Call] = self._calls if first else [*self._watch.take(), *self._watch.restless]
+        passes = 0
+        while calls:
+            changed |= self._solve_some(calls)
+            calls = self._watch.take()
+            passes += 1
+            if calls and passes == _PATIENCE:
+                self._stop_circles((call.sheet, call.key) for call in calls)
+            if passes > len(self._calls):
+                self._stop_unsettled()
+        return changed
+
+    def _solve_some(self, calls: Iterable[Call]) -> bool:
+        """Solve those of the calls whose arguments have changed, inner ones first; whether any answer changed."""
+        levels: defaultdict[int, list[Call]] = defaultdict(list)
+        for call in calls:
+            if not call.stopped:
+                levels[call.level].append(call)
+        changed = False
+        for level in sorted(levels):
+            self._common.clear()  # an answer of the level before may stand in them
             batches: defaultdict[str, list[tuple[Call, tuple[Grid, ...]]]] = defaultdict(list)
-            for call in self._levels[level]:
-                if call.stopped or not (first or call.moves):
-                    continue
+            for call in levels[level]:
                 args = tuple(arg.read(self) for arg in call.args)
                 if call.solved and args == call.last:
                     continue
@@ -215,7 +259,7 @@ class _Rounds:
                     call.last = args
                 batches[call.name].append((call, args))
             for name, batch in batches.items():
-                self._work.progress(f"solving {len(batch):,} × {name}", 0.5)
+                self._work.progress(f"solving {len(batch):,} × {name}", share(WORKING, WRITING, 0.5))
                 outcomes = self._solve(name, [args for _, args in batch])
                 if len(outcomes) != len(batch):
                     raise RuntimeError(f"{name}: {len(outcomes)} outcomes for {len(batch)} calls")
@@ -254,6 +298,7 @@ class _Rounds:
             self._note_truncated(call, range_name(stored))
         cells = list(laid(call.grid, stored, cell.dynamic)) if cell.kind == "array" else [(cell.key, plain(call.grid[0][0]))]
         self._work.values[call.sheet].update(cells)
+        self._watch.stir(call.sheet, (key for key, _ in cells))
         self._dirty[call.sheet] += cells
 
     def _note_truncated(self, call: Call, stored: str) -> None:
@@ -277,7 +322,7 @@ class _Rounds:
         self._dirty.clear()
         self._moved.clear()
 
-    def _stop_circles(self, places: list[Place]) -> bool:
+    def _stop_circles(self, places: Iterable[Place]) -> bool:
         """Give up those calls that rest on their own answers; whether there were any."""
         reasons: dict[Place, str] = {}
         for ring in self._graph.circles(places):
@@ -303,74 +348,10 @@ class _Rounds:
         }
         self._give_up(reasons)
 
-    # -- Results ------------------------------------------------------------------------------------------------------
 
-    def _collect(self) -> Computed:
-        work, book = self._work, self._book
-        result = Computed([{} for _ in book.sheets])
-        for sheet, keys in enumerate(work.engine_cells):
-            values = work.values[sheet]
-            result.values[sheet].update((key, plain(values.get(key))) for key in keys)
-        answers: dict[tuple[int, int, int], NoAnswer] = {}
-        for call in self._calls:
-            place = (call.sheet, call.key)
-            if place in work.kept:
-                continue
-            result.ingle.add(place)
-            cell = self._cells_of.get(id(call))
-            if cell is not None:
-                keys = [cell.key] if cell.kind != "array" else [key for key, _ in laid(call.grid, cell.rect, False)]  # type: ignore[arg-type]
-                values = work.values[call.sheet]
-                result.values[call.sheet].update((key, values[key]) for key in keys)
-            if cell is None and not isinstance(work.values[call.sheet].get(call.key), CellError):
-                # A call in a branch not taken, or whose error its formula answers for: the cell shows a value.
-                result.hidden += any(True for _ in unanswered(call.grid, call.reasons))
-                continue
-            self._note_unanswered(call, cell, answers)
-        result.no_answers = [answers[key] for key in sorted(answers)]
-        result.truncated = [note for _, note in sorted(self._truncated.values(), key=lambda each: each[0])]
-        kept = dict(sorted(work.kept.items()))
-        result.not_computed = [self._not_computed(place, reason, rests=False) for place, reason in kept.items()]
-        if kept:
-            resting = self._graph.dependents(self._filled(kept))
-            result.not_computed += [
-                self._not_computed(place, f"rests on {self._cell_text(cause)}, which was not computed", rests=True)
-                for place, cause in sorted(resting.items())
-            ]
-        formulas = sum(len(sheet.formulas) for sheet in book.sheets)
-        result.ordinary_cells = formulas - len(result.ingle) - len(work.kept)
-        return result
-
-    def _filled(self, kept: dict[Place, str]) -> list[Place]:
-        """The cells of the kept formulas, those of their arrays included."""
-        found = list(kept)
-        for sheet, key in kept:
-            cell = self._graph.formula((sheet, key))
-            rect = cell[1].rect if cell is not None else None
-            if rect is not None and rect.rows * rect.columns <= 10_000:
-                found += [
-                    (sheet, key_of(row, column))
-                    for row in range(rect.top, rect.bottom + 1)
-                    for column in range(rect.left, rect.right + 1)
-                ]
-        return found
-
-    def _not_computed(self, place: Place, reason: str, *, rests: bool) -> NotComputed:
-        found = self._graph.formula(place)
-        is_ingle = not rests and found is not None and found[2].is_ingle
-        return NotComputed(self._book.name_of(place[0]), cell_name(place[1]), reason, rests, is_ingle)
-
-    def _note_unanswered(self, call: Call, cell: FormulaCell | None, answers: dict[tuple[int, int, int], NoAnswer]) -> None:
-        row, column = place_of(call.key)
-        for i, j, error, reason in unanswered(call.grid, call.reasons):
-            # A nested call's own rows are nowhere to be seen: its formula's cell stands for them.
-            spread = cell is not None and cell.kind == "array"
-            at_row, at_column = (row + i, min(column + j, MAX_COLUMN)) if spread else (row, column)
-            if spread and cell is not None and cell.rect is not None and not cell.rect.holds(at_row, at_column):
-                continue
-            if not spread and (i, j) != (0, 0) and cell is not None:
-                continue
-            name = self._book.name_of(call.sheet)
-            key = (call.sheet, at_row, at_column)
-            if key not in answers or cell is not None:
-                answers[key] = NoAnswer(name, cell_name(key_of(at_row, at_column)), at_row, error, reason)
+def _changed(known: Mapping[int, Cell], keys: Sequence[int], before: Sequence[Cell]) -> Iterator[int]:
+    """The cells that no longer hold what they held."""
+    for key, old in zip(keys, before, strict=True):
+        new = known.get(key)
+        if new != old or type(new) is not type(old):
+            yield key

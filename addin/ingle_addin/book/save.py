@@ -2,17 +2,23 @@
 
 from __future__ import annotations
 
-import contextlib
 import os
 import shutil
 import stat
-import tempfile
 from collections.abc import Callable
 from pathlib import Path
 from typing import IO
 
+from ingle_addin.book.beside import beside, sweep
 from ingle_addin.book.book import Fingerprint, fingerprint
 from ingle_addin.book.errors import BookError
+
+_SUFFIXES = (".xlsx", ".xlsm", ".xltx", ".xltm")
+
+
+def kind_of(book: Path) -> str:
+    """The ending that a copy of a workbook must have."""
+    return book.suffix if book.suffix.lower() in _SUFFIXES else ".xlsx"
 
 
 def refuse_if_open(path: Path) -> None:
@@ -26,6 +32,9 @@ def check_target(source: Path, out: Path, *, in_place: bool) -> None:
     """Refuse, before any work is done, a place that cannot be written."""
     if out.is_dir():
         raise BookError(f"{out} is a folder; name a file in it")
+    kind = kind_of(source)
+    if not in_place and out.suffix.lower() != kind.lower():
+        raise BookError(f"{out} does not end in {kind}; a workbook stays of its own kind, so name it {out.with_suffix(kind).name}")
     if not in_place and out.exists() and source.exists() and out.samefile(source):
         raise BookError(f"{out} is the workbook itself; name another file, or say --in-place to replace it")
     folder = out.parent
@@ -42,33 +51,28 @@ def check_target(source: Path, out: Path, *, in_place: bool) -> None:
 def place(source: Path, mark: Fingerprint, out: Path, write: Callable[[IO[bytes]], None], *, in_place: bool) -> Path | None:
     """Let ``write`` fill a file beside ``out``, then move it there; return the backup kept of ``source``, if any.
 
-    A run that is stopped at any moment leaves the old file whole. Refuses if ``source`` no longer is the file that was
-    read, or is open elsewhere by now.
+    A run that is stopped at any moment leaves the old file whole; what it leaves beside is swept away by the next one.
+    Refuses if ``source`` no longer is the file that was read, or is open elsewhere by now.
     """
+    target = out.resolve()  # a link stays a link: the file it leads to is replaced
+    backup = source.with_name(source.name + ".bak") if in_place else None
+    sweep(target)
     try:
-        handle, name = tempfile.mkstemp(prefix=f".{out.stem[:40]}.", suffix=".part", dir=out.parent)
-    except OSError as error:
-        raise BookError(f"the folder {out.parent} cannot be written to: {error.strerror}") from None
-    beside = Path(name)
-    backup: Path | None = None
-    try:
-        with os.fdopen(handle, "wb") as file:
+        with beside(target) as (file, half):
             write(file)
             file.flush()
             os.fsync(file.fileno())
-        _copy_mode(out if out.exists() else source, beside)
-        if fingerprint(source) != mark:
-            raise BookError(f"{source} was changed by another program meanwhile; nothing was written, run again")
-        if in_place:
-            refuse_if_open(source)
-            backup = source.with_name(source.name + ".bak")
-            _back_up(source, backup)
-        os.replace(beside, out)
+            _copy_mode(target if target.exists() else source, half)
+            if fingerprint(source) != mark:
+                raise BookError(f"{source} was changed by another program meanwhile; nothing was written, run again")
+            if backup is not None:
+                refuse_if_open(source)
+                _back_up(source, backup)
+            if os.name == "nt":
+                file.close()  # an open file cannot be moved there
+            os.replace(half, target)
     except OSError as error:
         raise BookError(f"{out} cannot be written: {error.strerror}; nothing was changed") from None
-    finally:
-        with contextlib.suppress(FileNotFoundError):
-            beside.unlink()
     return backup
 
 
@@ -78,10 +82,13 @@ def _copy_mode(model: Path, target: Path) -> None:
 
 def _back_up(source: Path, backup: Path) -> None:
     """Keep a copy, itself written beside and moved, so that it is never half a file."""
-    half = backup.with_name(backup.name + ".part")
-    try:
-        shutil.copy2(source, half)
+    sweep(backup)
+    with beside(backup) as (file, half):
+        with source.open("rb") as old:
+            shutil.copyfileobj(old, file)
+        file.flush()
+        os.fsync(file.fileno())
+        shutil.copystat(source, half)
+        if os.name == "nt":
+            file.close()
         os.replace(half, backup)
-    finally:
-        with contextlib.suppress(FileNotFoundError):
-            half.unlink()

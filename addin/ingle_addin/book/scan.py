@@ -9,14 +9,13 @@ from pathlib import Path
 from ingle_addin.book.dates import serial_of
 from ingle_addin.book.errors import BookError
 from ingle_addin.book.markup import MAIN_NAMESPACES, SEPARATOR, feed, parser, unescape
-from ingle_addin.book.parts import Parts
+from ingle_addin.book.parts import MAX_CELL_CHARACTERS, MAX_RAW, Parts
 from ingle_addin.book.refs import Rect, column_number, key_of, parse_cell, parse_rect
 from ingle_addin.cells import Cell, CellError
 
 MAX_CELLS = 5_000_000
-MAX_CELL_CHARACTERS = 32_767
-# What a cell's text may grow to inside the file, where escapes and formulas stand beside it.
-MAX_RAW = 8 * MAX_CELL_CHARACTERS
+# Larger arrays are not computed; the cells of all others count as cells, whether the file holds them or not.
+MAX_ARRAY = 1_000_000
 
 _ERRORS = {error.value: error for error in CellError}
 _DIGITS = "0123456789"
@@ -26,8 +25,8 @@ class FormulaCell:
     """A cell whose value is computed.
 
     ``kind`` is ``normal``, ``shared``, ``array`` or ``data table``; ``text`` is without ``=`` and empty for a follower of
-    the shared formula ``shared``; ``rect`` is the stored range of an array. ``start`` and ``end`` are the byte offsets of
-    ``<c`` and of ``</c``; ``stored`` is the value in the file.
+    the shared formula ``shared``; ``rect`` is the stored range of an array or a data table. ``start`` and ``end`` are the
+    byte offsets of ``<c`` and of ``</c``; ``stored`` is the value in the file.
     """
 
     __slots__ = ("dynamic", "end", "key", "kind", "rect", "shared", "start", "stored", "text")
@@ -53,10 +52,10 @@ class Sheet:
 
     ``values`` are the constants and, for formula cells and the children of arrays, nothing; ``children`` are the other
     cells of array ranges with their stored value and byte offsets; ``dated`` are cells that show their number as a date;
-    ``bottom`` and ``right`` bound the cells in use.
+    ``bottom`` and ``right`` bound the cells in use; ``count`` is of all cells, empty ones too.
     """
 
-    __slots__ = ("bottom", "children", "dated", "formulas", "has_hidden_rows", "right", "values")
+    __slots__ = ("bottom", "children", "count", "dated", "formulas", "has_hidden_rows", "right", "values")
 
     def __init__(self) -> None:
         self.values: dict[int, Cell] = {}
@@ -65,6 +64,7 @@ class Sheet:
         self.dated: set[int] = set()
         self.bottom = 0
         self.right = 0
+        self.count = 0
         self.has_hidden_rows = False
 
 
@@ -72,8 +72,29 @@ class Sheet:
 _OUTSIDE, _DATA, _ROW, _CELL, _VALUE, _FORMULA, _INLINE, _TEXT = range(8)
 
 
-def scan_sheet(chunks: Iterable[bytes], parts: Parts, path: Path, part: str) -> Sheet:
-    """Read a worksheet from its bytes. Raises :class:`BookError` for what is damaged or beyond the limits."""
+def small_number(text: str) -> int | None:
+    """The whole number of at most nine digits that a text is."""
+    return int(text) if text.isascii() and text.isdigit() and len(text) < 10 else None
+
+
+def row_number(text: str) -> int:
+    """The number of a row, 0 where there is none."""
+    return small_number(text) or 0
+
+
+def array_cells(rect: Rect) -> int:
+    """How many cells a range adds to those the file holds."""
+    size = rect.rows * rect.columns
+    return size if 1 < size <= MAX_ARRAY else 0
+
+
+def too_many(path: Path) -> BookError:
+    """The refusal of a workbook that is too large."""
+    return BookError(f"{path} has more than {MAX_CELLS:,} cells; split the workbook")
+
+
+def scan_sheet(chunks: Iterable[bytes], parts: Parts, path: Path, part: str, most: int = MAX_CELLS) -> Sheet:
+    """Read a worksheet of at most ``most`` cells from its bytes. Raises :class:`BookError` for what is damaged or beyond limits."""
     sheet = Sheet()
     values, formulas, children, dated = sheet.values, sheet.formulas, sheet.children, sheet.dated
     texts, date_styles = parts.texts, frozenset(str(index) for index in parts.date_styles)
@@ -130,8 +151,8 @@ def scan_sheet(chunks: Iterable[bytes], parts: Parts, path: Path, part: str) -> 
             dynamic = "cm" in attributes
             has_formula = has_value = False
             count += 1
-            if count > MAX_CELLS:
-                raise BookError(f"{path}: a sheet has more than {MAX_CELLS:,} cells; split the workbook")
+            if count > most:
+                raise too_many(path)
         elif state == _CELL:
             if kind == "v":
                 state, has_value = _VALUE, True
@@ -153,7 +174,7 @@ def scan_sheet(chunks: Iterable[bytes], parts: Parts, path: Path, part: str) -> 
         elif state == _DATA and kind == "row":
             state = _ROW
             number_text = attributes.get("r")
-            row = row + 1 if number_text is None else int(number_text) if number_text.isdecimal() else 0
+            row = row + 1 if number_text is None else row_number(number_text)
             row_text = str(row)
             column = 0
             if attributes.get("hidden") in ("1", "true"):
@@ -211,10 +232,10 @@ def scan_sheet(chunks: Iterable[bytes], parts: Parts, path: Path, part: str) -> 
         if kind_of_value == "s":
             if not raw.strip():
                 return None
-            try:
-                return texts[int(raw)]
-            except (ValueError, IndexError):
-                raise damaged() from None
+            index = small_number(raw.strip())
+            if index is None or index >= len(texts):
+                raise damaged()
+            return texts[index]
         if len(raw) > MAX_RAW:
             raise BookError(f"{path}: a cell holds more than {MAX_CELL_CHARACTERS:,} characters; shorten it")
         if kind_of_value == "b":
@@ -250,6 +271,12 @@ def scan_sheet(chunks: Iterable[bytes], parts: Parts, path: Path, part: str) -> 
         if row > sheet.bottom:
             sheet.bottom = row
 
+    def spread(rect: Rect) -> None:
+        nonlocal count
+        count += array_cells(rect)
+        if count > most:
+            raise too_many(path)
+
     def finish_formula(value: Cell) -> None:
         kind, shared, rect = "normal", None, None
         attributes = formula_attributes
@@ -257,14 +284,12 @@ def scan_sheet(chunks: Iterable[bytes], parts: Parts, path: Path, part: str) -> 
             match attributes.get("t", "normal"):
                 case "shared":
                     kind, shared = "shared", attributes.get("si", "")
-                case "array":
-                    kind, rect = "array", parse_rect(attributes.get("ref", ""))
-                    if rect is None:
-                        rect = Rect(row, column, row, column)
+                case "array" | "dataTable" as written:
+                    kind = "array" if written == "array" else "data table"
+                    rect = parse_rect(attributes.get("ref", "")) or Rect(row, column, row, column)
                     if rect.rows > 1 or rect.columns > 1:
                         open_arrays.append(rect)
-                case "dataTable":
-                    kind = "data table"
+                    spread(rect)
         text = formula_pieces[0] if len(formula_pieces) == 1 else "".join(formula_pieces)
         if shared is not None and text:
             shared_with_text.add(shared)
@@ -272,4 +297,5 @@ def scan_sheet(chunks: Iterable[bytes], parts: Parts, path: Path, part: str) -> 
 
     made.StartElementHandler, made.EndElementHandler, made.CharacterDataHandler = start, end, data
     feed(made, chunks, path, part)
+    sheet.count = count
     return sheet

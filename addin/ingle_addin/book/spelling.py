@@ -35,6 +35,10 @@ class Spelling:
         """``INGLE.PEAK`` for any spelling of it, None for a function that is not Ingle's."""
         return self._canonical.get(bare(name))
 
+    def is_of_family(self, name: str) -> bool:
+        """Whether the name is one of the functions, or looks like one."""
+        return self.canonical(name) is not None or self.is_misspelt(name)
+
     def is_misspelt(self, name: str) -> bool:
         """Whether the name looks like one of the family but is not in the table."""
         plain = bare(name)

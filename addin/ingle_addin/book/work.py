@@ -4,29 +4,29 @@ from __future__ import annotations
 
 import datetime
 import re
-from collections.abc import Callable, Collection, Sequence
+from collections.abc import Collection, Sequence
 from dataclasses import dataclass
+from functools import cached_property
 
 from ingle_addin.book.bind import Binder, HelperSheet
 from ingle_addin.book.blocks import Blocks
 from ingle_addin.book.book import Book, Formulas
 from ingle_addin.book.calling import Call
+from ingle_addin.book.criteria import is_odd, may_make_odd, odd_criterion
 from ingle_addin.book.engine import Engine
-from ingle_addin.book.formula import MAX_NESTING, UnreadableError, check_size
+from ingle_addin.book.filled_down import Filled
+from ingle_addin.book.formula import MAX_NESTING, ROW, UnreadableError, check_size
 from ingle_addin.book.lift import Lifter
-from ingle_addin.book.plan import Plan, Result, render
-from ingle_addin.book.refs import key_of, place_of
+from ingle_addin.book.plan import Plan, Result, rect_of, render
+from ingle_addin.book.progress import LOADING, PLANNING, WORKING, Progress, share
+from ingle_addin.book.refs import MAX_COLUMN, cell_name, key_of, place_of
 from ingle_addin.book.resolve import Resolver
-from ingle_addin.book.scan import FormulaCell
+from ingle_addin.book.scan import MAX_ARRAY, FormulaCell, Sheet
 from ingle_addin.book.spelling import Spelling
 from ingle_addin.cells import Cell, CellError
 
-# Told about the work as (what is being done, share done from 0 to 1).
-Progress = Callable[[str, float], None]
-
 _BATCH = 50_000
 _FORBIDDEN_IN_NAMES = re.compile(r"[\[\]*?/\\:\x00-\x1f]")
-_MAX_ARRAY = 1_000_000
 
 
 @dataclass(slots=True)
@@ -45,11 +45,15 @@ class Work:
     """A workbook taken apart, ready for the rounds of :mod:`ingle_addin.book.rounds`.
 
     ``values`` holds every cell as it is known now; ``engine_cells`` are those the engine computes; ``whole`` are the
-    calls that are a cell's whole formula; ``kept`` says why a formula keeps its stored value.
+    calls that are a cell's whole formula; ``kept`` says why a formula keeps its stored value, and ``volatile`` are those
+    of them that would give another one each time.
     """
 
-    def __init__(self, book: Book, functions: Collection[str], now: datetime.datetime, progress: Progress) -> None:
+    def __init__(
+        self, book: Book, functions: Collection[str], now: datetime.datetime | None, progress: Progress, engine: Engine
+    ) -> None:
         self.book = book
+        self._engine = engine
         self.progress = progress
         count = len(book.sheets)
         self.helper_index, self.block_index, self.test_index = count, count + 1, count + 2
@@ -59,13 +63,13 @@ class Work:
         self.whole: list[tuple[Call, FormulaCell]] = []
         self.nested: list[Lifted] = []
         self.kept: dict[tuple[int, int], str] = {}
+        self.volatile: set[tuple[int, int]] = set()
         self.plans: list[list[Plan]] = []
         self.formulas: list[Formulas] = []
         self._waiting: list[tuple[list[int], list[str]]] = [([], []) for _ in book.sheets]
         self.helper = HelperSheet()
         self.blocks = Blocks(self.sheet_names[self.block_index])
         self.tests: list[tuple[int, Plan]] = []
-        self._engine: Engine | None = None
         self._lifter = Lifter(
             Resolver(book.parts),
             Spelling(functions),
@@ -75,55 +79,111 @@ class Work:
             now,
         )
         self._cache: dict[tuple[int, str, bool], Plan] = {}
-        self._table_sheets = {table.sheet for table in book.parts.tables}
+        self._asked: list[set[int]] = [set() for _ in book.sheets]
 
     @property
     def engine(self) -> Engine:
-        """The engine, started when first needed."""
-        if self._engine is None:
-            self._engine = Engine(self.book.path, self.sheet_names)
-        return self._engine
+        """The engine, opened when first needed."""
+        return self._engine if self._engine.is_open else self._engine.open(self.sheet_names)
 
     @property
     def has_engine(self) -> bool:
         """Whether any formula needed the engine."""
-        return self._engine is not None
+        return self._engine.is_open
 
-    def close(self) -> None:
-        """End the engine."""
-        if self._engine is not None:
-            self._engine.close()
+    def cell_text(self, place: tuple[int, int]) -> str:
+        """A cell (sheet, cell) with its sheet's name, for people."""
+        return f"{self.book.name_of(place[0])}!{cell_name(place[1])}"
 
     # -- taking the formulas apart ------------------------------------------------------------------------------------
 
     def prepare(self) -> None:
         """Plan and bind every formula, and put into the engine what it is to compute."""
-        moving = [{key for cell in sheet.formulas for key, _ in elements_of(cell)} for sheet in self.book.sheets]
+        moving = [_filled_cells(sheet) for sheet in self.book.sheets]
         binder = Binder(self.book.sheets, moving, self.helper, self.blocks.address)
         for sheet, each in enumerate(self.book.sheets):
             formulas = Formulas(each)
             self.formulas.append(formulas)
-            plans: list[Plan] = []
-            self.plans.append(plans)
+            self.plans.append([])
+            known: dict[tuple[str, int], Filled] = {}
             for index, cell in enumerate(each.formulas):
                 if index % _BATCH == 0:
-                    self.progress("reading formulas", index / len(each.formulas))
-                plan, slots = self._plan_of(formulas, cell, sheet)
-                plans.append(plan)
-                if plan.keep is not None:
-                    self.keep(sheet, cell, plan.keep)
-                elif plan.calls:
-                    self._bind(binder, sheet, cell, plan, slots)
-                elif cell.rect is not None:
-                    self._put_array(sheet, cell, plan, slots)
-                else:
-                    self._queue(sheet, [cell.key], [render(plan.pieces, slots, cell.key)])
-                    self.engine_cells[sheet].append(cell.key)
+                    done = (sheet + index / len(each.formulas)) / len(self.book.sheets)
+                    self.progress("reading formulas", share(PLANNING, LOADING, done))
+                if cell.rect is not None:
+                    self._take(binder, formulas, cell, sheet)
+                    continue
+                pattern = formulas.pattern(cell)
+                filled = known.get(pattern)
+                if filled is not None:
+                    self.plans[sheet].append(filled.plan)
+                    self._fill_down(binder, filled, cell, sheet)
+                    continue
+                plan = self._take(binder, formulas, cell, sheet)
+                patterns = formulas.patterns(cell)
+                if patterns is not None and plan.keep is None and not plan.is_local:
+                    known[pattern] = Filled.of(plan, patterns, sheet, binder)
             self._send(sheet)
         if self.helper.keys:
             self.engine.put_formulas(self.helper_index, self.helper.keys, self.helper.texts)
         if self.has_engine:
             self._load()
+
+    def _take(self, binder: Binder, formulas: Formulas, cell: FormulaCell, sheet: int) -> Plan:
+        """Plan and bind one formula."""
+        plan, slots = self._plan_of(formulas, cell, sheet)
+        self.plans[sheet].append(plan)
+        if plan.keep is not None:
+            self.keep(sheet, cell, plan.keep)
+            if plan.volatile:
+                self.volatile.add((sheet, cell.key))
+            return plan
+        self._note_asked(plan, slots, sheet)
+        if plan.calls:
+            try:
+                calls = binder.calls(plan, slots, sheet, cell.key)
+            except UnreadableError as reason:
+                self.keep(sheet, cell, str(reason))
+            else:
+                self._bind(calls, sheet, cell, plan, slots)
+        elif cell.rect is not None:
+            self._put_array(sheet, cell, plan, slots)
+        else:
+            self._queue(sheet, [cell.key], [render(plan.pieces, slots, cell.key)])
+            self.engine_cells[sheet].append(cell.key)
+        return plan
+
+    def _fill_down(self, binder: Binder, filled: Filled, cell: FormulaCell, sheet: int) -> None:
+        """The same for a formula whose like stands in another row."""
+        key, plan = cell.key, filled.plan
+        row = key >> 14
+        if plan.calls:
+            if filled.calls is None or not plan.whole:
+                slots = filled.slots(str(row))
+                try:
+                    calls = binder.calls(plan, slots, sheet, key)
+                except UnreadableError as reason:
+                    self.keep(sheet, cell, str(reason))
+                    return
+            else:
+                slots = []
+                calls = [each.at(sheet, key, row) for each in filled.calls]
+            self._bind(calls, sheet, cell, plan, slots)
+            return
+        text = filled.text.replace(ROW, str(row)) if filled.text else render(plan.pieces, filled.slots(str(row)), key)
+        self._queue(sheet, [key], [text])
+        self.engine_cells[sheet].append(key)
+
+    def _note_asked(self, plan: Plan, slots: Sequence[str], sheet: int) -> None:
+        """Remember the columns that the engine is asked about: it need not hold the others."""
+        for ref in plan.asked:
+            rect = rect_of(ref, slots, 0)
+            owner = sheet if ref.sheet is None else int(ref.sheet)
+            if rect is not None:
+                self._asked[owner].update(range(rect.left, rect.right + 1))
+        if plan.asks_anywhere:
+            for each in self._asked:
+                each.update(range(1, MAX_COLUMN + 1))
 
     def _queue(self, sheet: int, keys: list[int], texts: list[str]) -> None:
         """Have formulas put into the engine, many at a time."""
@@ -156,12 +216,21 @@ class Work:
         plan = self._cache.get(cached)
         if plan is None:
             plan = self._lifter.plan(shape, sheet, place_of(cell.key), in_array=in_array)
-            # "[column]" without a table's name means the table around the cell: not the same for every cell.
-            if not (sheet in self._table_sheets and "[" in shape):
+            if not plan.is_local:
                 self._cache[cached] = plan
             if plan.keep is None and not plan.whole and not plan.array:
                 self._add_test(plan, slots, cell.key)
-        return plan, slots
+        odd = odd_criterion(plan.criteria, slots, self._odd_texts) if plan.criteria and plan.keep is None else None
+        return (plan if odd is None else Plan(keep=odd, is_ingle=plan.is_ingle, refs=plan.refs)), slots
+
+    @cached_property
+    def _odd_texts(self) -> bool:
+        """Whether a cell holds a criterion that the engine does not read as it should, or a formula may make one."""
+        return any(
+            any(type(value) is str and is_odd(value) for value in sheet.values.values())
+            or any(may_make_odd(cell.text) for cell in sheet.formulas)
+            for sheet in self.book.sheets
+        )
 
     def _add_test(self, plan: Plan, slots: Sequence[str], key: int) -> None:
         """One formula of each shape stands on a sheet of its own, to tell a formula the engine cannot read."""
@@ -175,6 +244,8 @@ class Work:
         self.kept[sheet, cell.key] = reason
         children = self.book.sheets[sheet].children
         stored = {key: children.get(key, (None, 0, 0))[0] for key, _ in elements_of(cell)}
+        if cell.rect is not None and len(stored) == 1:  # an array too large for us; its cells are those of the file
+            stored = {key: value for key, (value, _, _) in children.items() if cell.rect.holds(*place_of(key))}
         stored[cell.key] = cell.stored
         values = self.values[sheet]
         for key, value in stored.items():
@@ -199,13 +270,8 @@ class Work:
             self._queue(sheet, [key for key, _ in elements], texts)
         self.engine_cells[sheet] += [key for key, _ in elements]
 
-    def _bind(self, binder: Binder, sheet: int, cell: FormulaCell, plan: Plan, slots: Sequence[str]) -> None:
-        """Make the calls of a formula."""
-        try:
-            calls = binder.calls(plan, slots, sheet, cell.key)
-        except UnreadableError as reason:
-            self.keep(sheet, cell, str(reason))
-            return
+    def _bind(self, calls: list[Call], sheet: int, cell: FormulaCell, plan: Plan, slots: Sequence[str]) -> None:
+        """Take the calls of a formula to work."""
         elements = elements_of(cell)
         for piece in plan.pieces if cell.kind != "array" else ():
             if isinstance(piece, Result) and not piece.whole:
@@ -245,8 +311,12 @@ class Work:
 
     def _load(self) -> None:
         for sheet, values in enumerate(self.values):
-            self.progress("loading the calculation engine", sheet / len(self.values))
-            self.engine.put(sheet, values.items())
+            self.progress("loading the calculation engine", share(LOADING, WORKING, sheet / len(self.values)))
+            asked = self._asked[sheet]
+            if asked:
+                # Numbers of cells hold the column less 1 in their last 14 bits.
+                columns = {column - 1 for column in asked}
+                self.engine.put(sheet, ((key, value) for key, value in values.items() if key & 16_383 in columns))
         self.engine.put(self.block_index, ((key, CellError.NA) for key in self.blocks.first_cells()))
 
 
@@ -254,12 +324,21 @@ def _one(_call: int, _whole: bool, _element: tuple[int, int] | None) -> str:
     return "1"
 
 
+def _filled_cells(sheet: Sheet) -> set[int]:
+    """All cells that formulas fill."""
+    found = {cell.key for cell in sheet.formulas}
+    for cell in sheet.formulas:
+        if cell.rect is not None:
+            found.update(key for key, _ in elements_of(cell))
+    return found
+
+
 def elements_of(cell: FormulaCell) -> list[tuple[int, tuple[int, int] | None]]:
     """The cells that a formula fills, with their place in its array (None outside of an array formula)."""
     rect = cell.rect
     if rect is None:
         return [(cell.key, None)]
-    if rect.rows * rect.columns > _MAX_ARRAY:
+    if rect.rows * rect.columns > MAX_ARRAY:
         return [(cell.key, (0, 0))]
     return [(key_of(rect.top + i, rect.left + j), (i, j)) for i in range(rect.rows) for j in range(rect.columns)]
 

@@ -71,6 +71,7 @@ def _first(
         print(
             "Ingle fills workbooks whose cells ask how hot self-heating parts get.\n"
             "  ingle fill BOOK.xlsx    computes a workbook into BOOK.filled.xlsx\n"
+            "  ingle check BOOK.xlsx   compares a workbook with its stored values\n"
             "  ingle ask ANSWERS CASE  answers one case here\n"
             "  ingle install calc      puts the functions into LibreOffice Calc\n"
             "  ingle doctor            says what is wrong with that\n"
@@ -90,6 +91,36 @@ def fill(
     from ingle_addin.command.filling import fill_book
 
     return fill_book(book, out, in_place, strict)
+
+
+@app.command(short_help="Compare a workbook with its stored values.", epilog="Example: ingle check workbooks/busbars.xlsx")
+def check(
+    book: Annotated[Path, typer.Argument(help="The workbook, .xlsx or .xlsm.", show_default=False)],
+    within: Annotated[str, typer.Option("--within", help="Largest difference, over the larger of the number and 1.")] = "1e-6",
+    as_json: Annotated[bool, typer.Option("--json", help="Print all that was found as JSON.")] = False,
+    allow_unanswered: Annotated[
+        bool, typer.Option("--allow-unanswered", help="Rows without an answer do not count; for books that keep a bad row.")
+    ] = False,
+) -> int:
+    """Compute a workbook and list the cells whose stored value differs and the rows without an answer; nothing is written."""
+    from ingle_addin.command.checking import check_book
+
+    return check_book(book, within, as_json, allow_unanswered)
+
+
+@app.command(short_help="Turn one spelling of the functions into the other.", epilog="Example: ingle respell old.xlsx --to dotted")
+def respell(
+    book: Annotated[Path, typer.Argument(help="The workbook, .xlsx or .xlsm.", show_default=False)],
+    to: Annotated[str, typer.Option("--to", help="dotted as in INGLE.PEAK, or underscored as in INGLE_PEAK.", show_default=False)],
+    out: Annotated[
+        Path | None, typer.Option("-o", "--out", help="Where to write; STEM.dotted.xlsx or the like if not given.")
+    ] = None,
+    in_place: Annotated[bool, typer.Option("--in-place", help="Write into BOOK itself, which is kept as BOOK.bak.")] = False,
+) -> int:
+    """Spell every Ingle function in a workbook one way; all else in the file stays as it is, the values too."""
+    from ingle_addin.command.respelling import respell_book
+
+    return respell_book(book, to, out, in_place)
 
 
 @app.command(
