@@ -171,7 +171,7 @@ def test_few_rows_are_refused() -> None:
 # The wider scope: layers and joints, laws in temperature, radiation, resistances, currents, windings, bars, contacts.
 
 WIDE_SEED, WIDE_ROWS = 77, 60
-MANY_SEED, MANY_ROWS = 78, 1000
+MANY_SEED, MANY_ROWS = 77, 240
 
 
 def disagreements(seed: int, rows: int) -> tuple[Counter[str], list[str]]:

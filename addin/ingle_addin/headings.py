@@ -96,9 +96,9 @@ INPUTS: tuple[Input, ...] = (
     Input("conductivity slope", _PER_K, "k = k₀[1 + slope (T − reference)]", _LAYER, -1e3, 1e3, above=False, available=True),
     _temperature("conductivity reference", "of the slope; 20 °C if blank", _LAYER, available=True),
     Input("material", _TEXT, "a row of the bundled materials table", _LAYER),
-    Input("generation", (Kind.GENERATION,), "heat per volume; a number or a text table", _LAYER, -1e30, 1e30, above=False,
+    Input("generation", (Kind.GENERATION,), "heat per volume; a number or a text table", _LAYER, -1e25, 1e25, above=False,
           table=True, available=True),
-    Input("specific generation", (Kind.SPECIFIC_GENERATION,), "heat per mass, with density", _LAYER, -1e27, 1e27,
+    Input("specific generation", (Kind.SPECIFIC_GENERATION,), "heat per mass, with density", _LAYER, -1e22, 1e22,
           above=False, available=True),
     Input("power", (Kind.POWER,), "spread evenly over the layer's volume; needs the area of a wall or the length of a "
           "cylinder", _LAYER, -1e15, 1e15, above=False, available=True),
