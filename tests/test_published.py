@@ -13,7 +13,7 @@ from ingle.conductivities import Conductivity
 from ingle_addin import ask
 from ingle_addin.batch import solve_calls
 from ingle_addin.cells import CellError
-from published import CHECKS, Check, Number
+from published import CHECKS, Check, Number, asked_currents
 from published.asking import answered
 
 Pair = tuple[Number, Any]  # what is printed, and what is answered
@@ -279,10 +279,11 @@ REACHED: dict[str, Callable[[Check], list[Pair]]] = {
     "kirchhoff-linear-k-slab": kirchhoff_slab,
     "linear-k-mean-rule": mean_conductivity,
     "manufactured-solution": manufactured,
+    **asked_currents.REACHED,
 }
 
 # What each of the others cannot be asked without: an input heading, an answer heading or a function.
-_ARRHENIUS, _LINEAR = "activation energy [J/mol]", "generation slope [1/K]"
+_ARRHENIUS = "activation energy [J/mol]"
 # Laws and properties themselves, which no heading asks for alone: held by tests/test_film_laws.py and tests/test_fluids.py.
 OF_LAWS = {
     "churchill-chu-plate",
@@ -306,17 +307,10 @@ WAITING = {
     "arrhenius-finite-eps-critical": _ARRHENIUS,
     "arrhenius-transition": _ARRHENIUS,
     "fk-dimensional-critical-temperature": _ARRHENIUS,
-    "linear-source-critical-fixed-faces": _LINEAR,
-    "linear-source-critical-convective": _LINEAR,
-    "linear-source-temperature": _LINEAR,
     "uo2-conductivity": "material",
     "nist-304-conductivity": "material",
     "nbs-copper-conductivity": "material",
-    "lorenz-number": "resistivity [Ω·m]",
-    "copper-iacs": "resistivity [Ω·m]",
-    "iec60228-resistance": "resistivity slope [1/K]",
-    "thin-wire-runaway": "resistivity slope [1/K]",
-    "cda-busbar-ampacity": "current [A]",
+    "copper-iacs": "material",  # its figures are the table's own
     "gum-H2": "± thickness [mm]",
     "gum-H1": "± thickness [mm]",
     "jcgm101-9.2.2-normal": "sd thickness [mm]",

@@ -271,10 +271,10 @@ def test_windings() -> None:
         ["heat made [W]", "resistance [Ω]", "voltage [V]"],
         *(text, "cylinder", a, b, 1.0, rho, amps, turns, fill, 1.2, long, 20.0),
     )
-    ohms = turns * rho * math.pi * (a + b) / (fill * section / turns)
+    ohms = 1.2 * turns * rho * math.pi * (a + b) / (fill * section / turns)  # of alternating current
     assert ohm == pytest.approx(ohms, rel=1e-9)
     assert volt == pytest.approx(ohms * amps, rel=1e-9)
-    assert made == pytest.approx(1.2 * ohms * amps**2, rel=1e-9)
+    assert made == pytest.approx(ohms * amps**2, rel=1e-9)
 
 
 def test_current_in_one_layer_of_a_wall() -> None:
