@@ -164,10 +164,7 @@ class CollocatedReadings(Port):
         inner = np.flatnonzero(np.where(right, j <= self.N, j > 0))
         if len(inner):
             x[inner] = self._turn(values[:, inner], slopes[:, inner], j[inner], right[inner])
-        found = self._read(values, Tb, mu, x, model, Ta)
-        # θ and back cost a face its last digit.
-        T = np.maximum(found.T, Tb)
-        return found._replace(T=T if self.solid else np.maximum(T, Ta))
+        return self._read(values, Tb, mu, x, model, Ta)
 
     def _turn(self, values: Array, slopes: Array, j: np.ndarray, right: np.ndarray) -> Array:
         """Where the interpolant is highest, of cases whose highest node is j and whose θ rises there to the ``right``, or falls."""

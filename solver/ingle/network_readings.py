@@ -16,8 +16,11 @@ def peaks_of(part: Part) -> tuple[Reading, ...]:
     state, faces = part.state, part.state.faces
     readings = []
     for e, (element, mu, theta) in enumerate(zip(part.network.elements, part.multiples, state.theta, strict=True)):
-        element.port.hold(mu, theta)
-        readings.append(element.port.peak(faces[2 * e], faces[2 * e + 1], mu, theta))
+        port, Ta, Tb = element.port, faces[2 * e], faces[2 * e + 1]
+        port.hold(mu, theta)
+        top = port.peak(Ta, Tb, mu, theta)
+        # A peak read at a face may miss it by a last digit.
+        readings.append(top._replace(T=np.maximum(top.T, Tb if port.solid else np.maximum(Ta, Tb))))
     return tuple(readings)
 
 
