@@ -19,7 +19,8 @@ ROUNDING = 1e-15
 def open_faces(state: NetworkState) -> np.ndarray:
     """Rows whose faces' laws, worked out here from the answered temperatures, miss the answered heats by more than 1e-8.
 
-    Allowed beside that is what the rounding of these temperatures makes of the law's flux, or of the flux through a resistance.
+    Allowed beside that is what the rounding of temperatures in °C makes of the law's flux, of the flux through a resistance, and
+    of a source or side loss that all but cancels.
     """
     problem = state.problem
     m, n = int(problem.shape), len(state.status)
@@ -30,23 +31,33 @@ def open_faces(state: NetworkState) -> np.ndarray:
     sides = [(problem.right, outer, state.right[-1], state.surfaces[1], state.Q_right[-1])]
     if not problem.solid:
         sides.append((problem.left, inner, state.left[0], state.surfaces[0], -state.Q_left[0]))
+    allowed = 1e-8 * heat + rounding_of_sources(state, (outer ** (m + 1) - inner ** (m + 1)) / (m + 1))
     for face, r, T, surface, leaving in sides:
-        wrong |= misses(face, r**m, T, surface, leaving, heat)
+        wrong |= misses(face, r**m, T, surface, leaving, allowed)
     return wrong & (state.status == Status.SOLVED)
 
 
+def rounding_of_sources(state: NetworkState, volume: np.ndarray) -> np.ndarray:
+    layer = state.problem.layers[0]
+    T = np.maximum(state.left[0], state.right[0])
+    slope = layer.source.scale * np.abs(layer.source.at(T)[1])
+    if layer.side is not None:
+        slope = slope + layer.side.at(T)[1]
+    return ROUNDING * (np.abs(T) + 273.15) * slope * volume
+
+
 def misses(
-    face: NetworkFace, area: np.ndarray, T: np.ndarray, surface: np.ndarray, leaving: np.ndarray, heat: np.ndarray
+    face: NetworkFace, area: np.ndarray, T: np.ndarray, surface: np.ndarray, leaving: np.ndarray, allowed: np.ndarray
 ) -> np.ndarray:
     noise = ROUNDING * (np.abs(T) + np.abs(surface) + 273.15)
     R = 0.0 * T if face.resistance is None else face.resistance / area
-    wrong = np.abs(T - surface - R * leaving) > 1e-8 * np.maximum(np.abs(T - surface), R * heat) + noise
+    wrong = np.abs(T - surface - R * leaving) > 1e-8 * np.abs(T - surface) + R * allowed + noise
     if face.held is not None:
         return wrong | (np.abs(surface - face.held) > noise)
     if face.law is None:
-        return wrong | (np.abs(leaving + (0.0 if face.flux is None else face.flux) * area) > 1e-12 * heat)
+        return wrong | (np.abs(leaving + (0.0 if face.flux is None else face.flux) * area) > 1e-3 * allowed)
     flux, slope = face.law(surface, np.arange(len(T)))
-    return wrong | (np.abs(leaving - area * flux) > 1e-8 * heat + area * slope * noise)
+    return wrong | (np.abs(leaving - area * flux) > allowed + area * slope * noise)
 
 
 def one_structure(number: int) -> tuple[Extreme, NetworkState]:

@@ -16,8 +16,11 @@ def peaks_of(part: Part) -> tuple[Reading, ...]:
     state, faces = part.state, part.state.faces
     readings = []
     for e, (element, mu, theta) in enumerate(zip(part.network.elements, part.multiples, state.theta, strict=True)):
-        element.port.hold(mu, theta)
-        readings.append(element.port.peak(faces[2 * e], faces[2 * e + 1], mu, theta))
+        port, Ta, Tb = element.port, faces[2 * e], faces[2 * e + 1]
+        port.hold(mu, theta)
+        top = port.peak(Ta, Tb, mu, theta)
+        # A peak read at a face may miss it by a last digit.
+        readings.append(top._replace(T=np.maximum(top.T, Tb if port.solid else np.maximum(Ta, Tb))))
     return tuple(readings)
 
 
@@ -71,8 +74,8 @@ def temperatures_of(part: Part) -> list[list[Array]]:
         outermost = T
         if end_of is not None and end_of.held is not None:
             outermost = end_of.held
-        elif end_of is not None and end_of.R is not None and end_of.law is not None:
-            outermost = state.surfaces[side]
+        elif end_of is not None and end_of.law is not None:
+            outermost = end_of.outermost(T, state.surfaces[side])
         elif end_of is not None and end_of.R is not None and end_of.flux is not None:
             outermost = T + end_of.R * end_of.flux
         surfaces.append(zero + outermost)
@@ -139,7 +142,7 @@ def _heats(part: Part) -> tuple[list[Array], list[Array], Array]:
         if end is None:
             ends.append((total, total, 0.0))
             continue
-        surface = T if end.R is None or end.law is None else state.surfaces[side]
+        surface = T if end.law is None else end.outermost(T, state.surfaces[side])
         P, B, A = (total + x for x in end.relation(T, surface))
         resistance = np.minimum(P / np.where(B > 0.0, B, 1e-300), 1e290)
         # What the rounding of a temperature in °C makes of the law's flux, or of that through a resistance to a held one.

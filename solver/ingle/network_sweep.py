@@ -60,8 +60,15 @@ class End:
     zero: Array
     numbers: np.ndarray
 
+    def outermost(self, T: Array, surface: Array) -> Array:
+        """The rise of the outermost surface: ``surface`` beyond R, and T where a case has none, alone or among others."""
+        if self.R is None:
+            return T
+        bare = self.R == 0.0
+        return np.where(bare, T, surface) if np.count_nonzero(bare) else surface
+
     def relation(self, T: Array, surface: Array) -> Relation:
-        """P, B and A. ``surface``: rise of the outermost surface, beyond R, where the law acts; without R it is T."""
+        """P, B and A. ``surface``: rise of the outermost surface, beyond R, where the law acts."""
         if self.held is not None:
             return (0.0 if self.R is None else self.R), 1.0, T - self.held
         if self.law is None:
@@ -69,10 +76,11 @@ class End:
         if self.R is None:
             flux, slope = self.law(self.zero + T, self.numbers)
             return (1.0, slope, flux) if self.measure is None else (1.0, self.measure * slope, self.measure * flux)
-        flux, slope = self.law(self.zero + surface, self.numbers)
+        at = self.outermost(T, surface)
+        flux, slope = self.law(self.zero + at, self.numbers)
         if self.measure is not None:
             flux, slope = self.measure * flux, self.measure * slope
-        return 1.0 + slope * self.R, slope, flux + slope * (T - surface)
+        return 1.0 + slope * self.R, slope, flux + slope * (T - at)
 
     def take(self, rows: np.ndarray) -> End:
         """The end of some of the cases."""
