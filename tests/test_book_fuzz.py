@@ -1,6 +1,6 @@
 """Scan and lifter under random input: they refuse or read, they never fail, and what they say is one line.
 
-The ordinary tests run every seed once. The long ones mutate them for INGLE_FUZZ_SECONDS each (two minutes if it is not set; ten
+The ordinary tests run every seed once. The long ones mutate them for INGLE_FUZZ_SECONDS each (45 if it is not set; ten
 minutes before a release: INGLE_FUZZ_SECONDS=600 pytest -m long tests/test_book_fuzz.py). A fault's input belongs into
 book_seeds.py.
 """
@@ -33,7 +33,7 @@ from ingle_addin.book.spelling import Spelling
 from ingle_addin.book.splice import NotWritableError, Span, splice
 from ingle_addin.cells import CellError
 
-SECONDS = float(os.environ.get("INGLE_FUZZ_SECONDS", "120"))
+SECONDS = float(os.environ.get("INGLE_FUZZ_SECONDS", "45"))
 ROUND = 200  # examples between two looks at the clock
 PATH = Path("book.xlsx")
 

@@ -1,6 +1,11 @@
-"""A hundred thousand extreme rows through both engines: their heats balance, their faces obey their laws, the others say why not."""
+"""Extreme rows through both engines: their heats balance, their faces obey their laws, the others say why not.
+
+INGLE_EXTREME_ROWS=100000 makes them a hundred thousand (a quarter of an hour on a busy machine).
+"""
 
 from __future__ import annotations
+
+import os
 
 import numpy as np
 import pytest
@@ -11,7 +16,8 @@ from ingle.network import CEILING, NetworkFace, NetworkState, Status, peak, solv
 pytestmark = pytest.mark.long
 
 STRUCTURES = structures()
-ROWS = 100_000 // len(STRUCTURES) + 1
+MANY = int(os.environ.get("INGLE_EXTREME_ROWS", "20000"))
+ROWS = MANY // len(STRUCTURES) + 1
 # What rounding leaves of a temperature in °C, in shares of it in kelvin.
 ROUNDING = 1e-15
 
@@ -86,6 +92,7 @@ def test_extreme_rows_close_or_say_why() -> None:
             rise = np.abs(top.T - case.problem.coldest) + np.abs(state.lowest - case.problem.coldest)
             off = np.abs(march.values["peak"] - top.T) > 1e-9 * rise + 1e-12 * (np.abs(top.T) + 273.15)
             apart += [(number, int(row)) for row in np.flatnonzero(~agreed | (both & off))]
-    assert answered > 60_000
-    assert failed + len(wrong) <= 1e-4 * answered, (failed, wrong[:20])
+    assert answered > 0.6 * MANY
+    # One in ten thousand; of a few rows, whose share of it is no whole number, two more.
+    assert failed + len(wrong) <= 1e-4 * answered + 2.0 * (MANY < 100_000), (failed, wrong[:20])
     assert len(apart) <= 10, apart[:20]
